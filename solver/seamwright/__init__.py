@@ -1,0 +1,16 @@
+"""Seamwright: form and wishes in, pattern out. The names below are the whole public face."""
+
+from .cover import cover
+from .errors import CoverError, FormError, SeamwrightError, WishError
+from .fit.goods import Goods, goods, read_goods
+from .form.form import Form
+from .pattern import Pattern, Piece, Seam
+from .seams import log_scale, seam_energy
+from .wishes import Wishes
+
+__version__ = "0.1.0"
+
+__all__ = [
+    "CoverError", "Form", "FormError", "Goods", "Pattern", "Piece", "Seam", "SeamwrightError", "WishError", "Wishes",
+    "cover", "goods", "log_scale", "read_goods", "seam_energy",
+]

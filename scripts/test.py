@@ -1,0 +1,28 @@
+"""Runs every check of the project: the linter, then the tests. Extra arguments go to pytest.
+
+    python3 scripts/test.py
+    python3 scripts/test.py tests/form -k mend
+"""
+
+import os
+import subprocess
+import sys
+
+import setup
+
+
+def main(arguments):
+    """Exit status of the first check that fails, after all have run; 0 where none does."""
+    # small systems: more threads than cores cost time and make sums depend on the machine
+    env = {**os.environ, "OPENBLAS_NUM_THREADS": "1"}
+    here = {"cwd": setup.ROOT, "env": env}
+    lint = subprocess.call([sys.executable, "-m", "ruff", "check", "."], **here)
+    # a path among the arguments is relative to the root; without one, all of tests/
+    where = [] if any(not word.startswith("-") and (setup.ROOT / word.split("::")[0]).exists() for word in arguments) else ["tests"]
+    tests = subprocess.call([sys.executable, "-m", "pytest", "-rs", *where, *arguments], **here)
+    return lint or tests
+
+
+if __name__ == "__main__":
+    setup.enter(__file__)
+    sys.exit(main(sys.argv[1:]))

@@ -85,7 +85,7 @@ class Surface:
 
     @cached_property
     def boundary_loops(self):
-        """List of (k,) point indices, each a closed loop with the surface on its left; a pinched loop is left as one walk."""
+        """List of (k,) point indices, each a closed loop with the surface on its left."""
         return walk_loops(self)
 
 
@@ -106,7 +106,7 @@ def walk_loops(surface):
     open_corner = surface.open_edges[table]
     at_tri, at_corner = np.nonzero(open_corner)
     next_of = {}
-    for t, k in zip(at_tri.tolist(), at_corner.tolist()):
+    for t, k in zip(at_tri.tolist(), at_corner.tolist(), strict=True):
         # turn about the head point, triangle by triangle, until the next open edge that leaves it
         face, corner = t, (k + 1) % 3
         while not open_corner[face, corner]:

@@ -1,0 +1,69 @@
+"""The cotangent Laplacian, its factors, and curvature smoothed with it."""
+
+import numpy as np
+from scipy.sparse import coo_matrix, diags_array
+from scipy.sparse.linalg import splu
+
+from ..errors import CoverError
+from .measure import angle_defects, areas, edge_vectors, open_points, total_area, vertex_areas
+
+THINNEST = 1e-2
+"""Least height of a triangle, as a share of its longest side, that the Laplacian counts with."""
+
+
+def cotangents(surface):
+    """(m, 3): half the cotangent of the angle opposite edge k of each triangle (the edge from corner k to k+1).
+
+    Triangles flatter than THINNEST are counted as if they were that high, which keeps the matrix positive semidefinite.
+    """
+    sides = edge_vectors(surface)
+    longest = np.einsum("tkx,tkx->tk", sides, sides).max(axis=1)
+    double_area = np.maximum(2 * areas(surface), THINNEST * longest)
+    dots = -np.einsum("tkx,tkx->tk", np.roll(sides, -1, axis=1), np.roll(sides, -2, axis=1))
+    return 0.5 * dots / np.where(double_area > 0, double_area, 1.0)[:, None]
+
+
+def cotangent_laplacian(surface):
+    """(n, n) csc, positive semidefinite, unitless: x @ L @ x is the integral of |grad x|^2 (Pinkall and Polthier 1993)."""
+    return edge_laplacian(surface, cotangents(surface))
+
+
+def edge_laplacian(surface, weights):
+    """(n, n) csc graph Laplacian with (m, 3) weights, weight k on the edge from corner k to k+1; shares are summed."""
+    n = len(surface.points)
+    tail, head = surface.triangles.ravel(), np.roll(surface.triangles, -1, axis=1).ravel()
+    w = weights.ravel()
+    rows = np.concatenate([tail, head, tail, head])
+    columns = np.concatenate([head, tail, tail, head])
+    return coo_matrix((np.concatenate([-w, -w, w, w]), (rows, columns)), shape=(n, n)).tocsc()
+
+
+class Factor:
+    """Factors of a symmetric positive definite sparse matrix (n, n), for many solves."""
+
+    def __init__(self, matrix):
+        matrix = matrix.tocsc()
+        if not np.isfinite(matrix.data).all():
+            raise CoverError("The form's equations hold numbers that are not finite; look for points that lie on top of "
+                             "each other or immensely far away, merge or delete them, and try again.")
+        try:
+            self._lu = splu(matrix, permc_spec="MMD_AT_PLUS_A", diag_pivot_thresh=0, options=dict(SymmetricMode=True))
+        except RuntimeError as fault:
+            raise CoverError("The form's equations have no single answer (their matrix is singular); look for loose points "
+                             "or faces without area, delete them, and try again.") from fault
+
+    def solve(self, load):
+        """Solution for a load (n,) or several, (n, k)."""
+        return self._lu.solve(np.ascontiguousarray(load, dtype=float))
+
+
+def smoothed_defects(surface, share=0.02):
+    """(n,) radians: angle defects of the inner points spread over `share` of the form's size, their total kept.
+
+    M (M + l^2 L)^-1 K with M the vertex areas, L the cotangent Laplacian and l = share * sqrt(area); one step of heat flow.
+    Points on an open edge bring no load of their own.
+    """
+    defects = np.where(open_points(surface), 0.0, angle_defects(surface))
+    mass = vertex_areas(surface)
+    reach = share**2 * total_area(surface)
+    return mass * Factor(diags_array(mass) + reach * cotangent_laplacian(surface)).solve(defects)

@@ -124,6 +124,7 @@ def of_level_set(function, low, high, cells):
     """
     low, high = np.asarray(low, dtype=float), np.asarray(high, dtype=float)
     step = (high - low).max() / cells
+    low = low - 0.37 * step  # no grid plane along a flat top, where the sign would be rounding
     shape = np.ceil((high - low) / step).astype(int) + 1
     grid = np.indices(shape)
     inside = function(*(low[a] + step * grid[a] for a in range(3))) < 0

@@ -91,8 +91,8 @@ def refuse_crowded_edges(polygons, name):
         faces = polygons.face[np.unique(polygons.owner[which == crowded[0]])]
         raise FormError(
             f"Form '{name}': {number(len(crowded), 'edge')} with three or more faces, such as the one from point {at[0]} to "
-            f"point {at[1]} ({few('face', faces)}). Goods cannot branch: delete the faces inside the form, or split it there "
-            "into separate parts. In the application, Select > Select All by Trait > Non Manifold shows these "
+            f"point {at[1]} ({few('face', faces)}). Goods cannot branch: delete the faces inside the form, or split it "
+            "there into separate parts. In the application, Select > Select All by Trait > Non Manifold shows these "
             "edges.")
 
 
@@ -114,8 +114,8 @@ def orient(points, polygons, mended, name):
     if len(one_sided):
         raise FormError(
             f"Form '{name}' is one-sided, like a twisted band closed on itself ({few('face', polygons.face[one_sided])}): "
-            "no inside and outside can be told apart. Cut the band along a row of edges (select them, Edge Split), or delete "
-            "the faces that close it.")
+            "no inside and outside can be told apart. Cut the band along a row of edges (select them, Edge Split), or "
+            "delete the faces that close it.")
     fewer = np.bincount(as_is, minlength=count)
     flip = (fewer[over] > fewer[as_is]) | ((fewer[over] == fewer[as_is]) & (over < as_is))
     polygons = polygons.turned(flip)

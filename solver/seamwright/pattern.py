@@ -97,8 +97,8 @@ class Pattern:
 
         return summary(self)
 
-    def save(self, folder, kinds=("pdf", "svg", "json", "html")):
+    def save(self, folder, kinds=("pdf", "svg", "json", "html"), paper="roll"):
         """Write the sheets; returns the list of paths. Whole files or none: a failure leaves the folder as it was."""
         from .sheets import save
 
-        return save(self, Path(folder), kinds)
+        return save(self, Path(folder), kinds, paper)

@@ -1,5 +1,7 @@
 """The form as the rest of the project sees it: read, mended, cut into triangles."""
 
+import numpy as np
+
 from ..errors import FormError
 from . import mend
 from .measure import total_area
@@ -26,6 +28,7 @@ class Form:
         points = read_points(points, self.name)
         polygons = read_faces(faces, len(points), self.name)
         self.face_count = len(polygons.sizes)
+        used = np.unique(polygons.corners)
         polygons = mend.drop_collapsed(polygons, self.mended)
         polygons, root = mend.weld(points, polygons, self.mended)
         polygons = mend.drop_doubled(polygons, self.mended)
@@ -34,7 +37,7 @@ class Form:
                             "Check its scale.")
         mend.refuse_crowded_edges(polygons, self.name)
         polygons = mend.orient(points, polygons, self.mended, self.name)
-        polygons, source, self.point_of = mend.separate(polygons, root, self.mended)
+        polygons, source, self.point_of = mend.separate(polygons, root, used, self.mended)
         triangles, which = triangulate(points[source], polygons)
         triangles, which = flip_needles(points[source], triangles, which, self.mended)
         self.surface = Surface(points[source], triangles)

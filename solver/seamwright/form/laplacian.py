@@ -2,6 +2,7 @@
 
 import numpy as np
 from scipy.sparse import coo_matrix, diags_array
+from scipy.sparse.csgraph import reverse_cuthill_mckee
 from scipy.sparse.linalg import splu
 
 from ..errors import CoverError
@@ -39,7 +40,11 @@ def edge_laplacian(surface, weights):
 
 
 class Factor:
-    """Factors of a symmetric positive definite sparse matrix (n, n), for many solves."""
+    """Factors of a symmetric positive definite sparse matrix (n, n), for many solves.
+
+    The unknowns are first put in reverse Cuthill-McKee order: minimum degree fills three times as much from the order in
+    which repeated subdivision numbers points, and loses nothing elsewhere.
+    """
 
     def __init__(self, matrix):
         matrix = matrix.tocsc()
@@ -47,6 +52,8 @@ class Factor:
             raise CoverError("The form's equations hold numbers that are not finite; look for points that lie on top of "
                              "each other or immensely far away, merge or delete them, and try again.")
         try:
+            self._order = reverse_cuthill_mckee(matrix, symmetric_mode=True)
+            matrix = matrix[self._order][:, self._order].tocsc()
             self._lu = splu(matrix, permc_spec="MMD_AT_PLUS_A", diag_pivot_thresh=0, options=dict(SymmetricMode=True))
         except RuntimeError as fault:
             raise CoverError("The form's equations have no single answer (their matrix is singular); look for loose points "
@@ -54,7 +61,9 @@ class Factor:
 
     def solve(self, load):
         """Solution for a load (n,) or several, (n, k)."""
-        return self._lu.solve(np.ascontiguousarray(load, dtype=float))
+        answer = np.empty(np.shape(load))
+        answer[self._order] = self._lu.solve(np.ascontiguousarray(np.asarray(load, dtype=float)[self._order]))
+        return answer
 
 
 def smoothed_defects(surface, share=0.02):

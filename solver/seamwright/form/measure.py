@@ -23,12 +23,14 @@ def areas(surface):
 def angles(surface):
     """(m, 3) radians at each corner, by the arc tangent of cross over dot (Kahan): right for needles too.
 
-    A triangle without area counts 0, 0, pi (the pi where its longest side is seen from), so its sum stays pi.
+    A triangle without area counts 0, 0, pi (the pi where its longest side is seen from), one with two corners in one place
+    pi/2, pi/2, 0: its sum stays pi.
     """
     sides = edge_vectors(surface)
     back = -np.roll(sides, 1, axis=1)
     dots = np.einsum("tkx,tkx->tk", sides, back)
-    return np.arctan2(2 * areas(surface)[:, None], dots)
+    double_area = np.broadcast_to(2 * areas(surface)[:, None], dots.shape)
+    return np.where((double_area == 0) & (dots == 0), np.pi / 2, np.arctan2(double_area, dots))
 
 
 def triangle_normals(surface):

@@ -12,36 +12,32 @@ from ..errors import FormError
 from .polygons import Polygons, few, number
 
 NEAR = 1e-6
-"""Points on open edges closer than this share of the form's size are one point."""
+"""Points closer than this share of the form's size are one point, where an edge joins them or both are on open edges."""
 
 
 def weld(points, polygons, mended):
-    """(polygons, root (n,)): points on open edges that coincide become one, unless an edge would get three faces.
+    """(polygons, root (n,)): points that coincide become one, unless an edge would get three faces.
 
-    Only open edges are closed: two closed parts that touch stay two parts.
+    Only open edges are closed and edges without length collapsed: two closed parts that touch stay two parts.
     """
     n = len(points)
-    edges, _, count = polygons.edges()
+    edges, _, count = polygons.edges
+    near = NEAR * np.linalg.norm(np.ptp(points[np.unique(polygons.corners)], axis=0))
+    pairs = edges[np.linalg.norm(points[edges[:, 1]] - points[edges[:, 0]], axis=1) <= near]
     loose = np.unique(edges[count == 1])
+    if len(loose):
+        pairs = np.concatenate([pairs, loose[cKDTree(points[loose]).query_pairs(near, output_type="ndarray")]])
     root = np.arange(n)
-    if len(loose) < 2:
-        return polygons, root
-    used = points[np.unique(polygons.corners)]
-    tree = cKDTree(points[loose])
-    pairs = loose[tree.query_pairs(NEAR * np.linalg.norm(np.ptp(used, axis=0)), output_type="ndarray")]
     if not len(pairs):
         return polygons, root
     _, cluster = connected_components(coo_matrix((np.ones(len(pairs)), pairs.T), shape=(n, n)), directed=False)
     _, first = np.unique(cluster, return_index=True)
     root = first[cluster]
-    edges, _, count = drop_doubled(renumbered(polygons, root), []).edges()
+    edges, _, count = drop_doubled(renumbered(polygons, root), []).edges
     crowded = np.zeros(n, dtype=bool)
     crowded[edges[count > 2]] = True
     apart = crowded[root] & (root != np.arange(n))
     root[apart] = np.flatnonzero(apart)
-    gone = np.flatnonzero(root != np.arange(n))
-    if len(gone):
-        mended.append(f"{number(len(gone), 'point')} lying on others joined with them ({few('point', gone)}).")
     if apart.any():
         apart = np.flatnonzero(apart)
         mended.append(f"{number(len(apart), 'point')} left apart from others in the same place, since joining them would "
@@ -84,7 +80,7 @@ def drop_doubled(polygons, mended):
 
 def refuse_crowded_edges(polygons, name):
     """FormError where three or more faces share an edge."""
-    edges, which, count = polygons.edges()
+    edges, which, count = polygons.edges
     crowded = np.flatnonzero(count > 2)
     if len(crowded):
         at = edges[crowded[0]]
@@ -102,7 +98,7 @@ def orient(points, polygons, mended, name):
     Parity is found as components of the double cover: face f as it is (2 f) and turned over (2 f + 1).
     """
     m = len(polygons.sizes)
-    twins = polygons.twins()
+    twins = polygons.twins
     a, b = polygons.owner[twins].T
     against = (polygons.corners[twins[:, 0]] == polygons.corners[twins[:, 1]]).astype(np.int64)
     rows = np.concatenate([2 * a, 2 * a + 1])
@@ -146,12 +142,14 @@ def inward_parts(points, polygons, part, twins):
     return ~is_open[part] & (volume[part] < 0)
 
 
-def separate(polygons, root, mended):
+def separate(polygons, root, used, mended):
     """(polygons in the final numbering, source (k,) caller's point of each, point_of (n,) or -1).
 
-    Where sheets of faces touch in a single point, each sheet gets a point of its own; unused points are gone.
+    Where sheets of faces touch in a single point, each sheet gets a point of its own; unused points are gone. Joining and
+    dividing are told as they come out: what `weld` joined and this step divides again is not worth a word.
     """
-    twins = polygons.twins()
+    given = np.bincount(root[used], minlength=len(root))
+    twins = polygons.twins
     after = polygons.following
     rows = np.concatenate([twins[:, 0], after[twins[:, 0]]])
     columns = np.concatenate([after[twins[:, 1]], twins[:, 1]])
@@ -169,11 +167,15 @@ def separate(polygons, root, mended):
     kept = len(order) - copy.sum()
     point_of = np.full(len(root), -1)
     point_of[source[:kept]] = np.arange(kept)
-    if copy.any():
-        pinched = np.unique(source[kept:])
-        mended.append(f"{number(len(pinched), 'point')} where parts only touch divided, one for each part "
-                      f"({few('point', pinched)}).")
-    unused = np.flatnonzero(point_of[root] < 0)
+    fans = np.bincount(source, minlength=len(root))
+    joined, divided = np.flatnonzero(given > np.maximum(fans, 1)), np.flatnonzero(fans > given)
+    if len(joined):
+        mended.append(f"{number((given - fans)[joined].sum(), 'point')} lying on others joined with them "
+                      f"({few('point', np.flatnonzero(np.isin(root, joined) & (root != np.arange(len(root)))))}).")
+    if len(divided):
+        mended.append(f"{number(len(divided), 'point')} where parts only touch divided, one for each part "
+                      f"({few('point', divided)}).")
+    unused = np.setdiff1d(np.arange(len(root)), used)
     if len(unused):
         mended.append(f"{number(len(unused), 'point')} without a face left out ({few('point', unused)}).")
     return Polygons(new[fan], polygons.sizes, polygons.face), source, point_of[root]

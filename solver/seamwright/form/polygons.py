@@ -1,5 +1,6 @@
 """The maker's faces as flat arrays: every corner of every face in one row, whatever the number of corners."""
 
+from functools import cached_property
 from itertools import chain
 
 import numpy as np
@@ -11,6 +12,7 @@ class Polygons:
     """Faces with any number of corners.
 
     corners (c,) point indices, face after face; sizes (m,) corners of each face; face (m,) the caller's index of each.
+    Never changed once made, so the tables are kept.
     """
 
     def __init__(self, corners, sizes, face=None):
@@ -32,15 +34,20 @@ class Polygons:
     def following(self):
         """(c,) place of the next corner around the same face."""
         after = np.arange(1, len(self.corners) + 1)
-        after[self.first + self.sizes - 1] = self.first
+        real = self.sizes > 0
+        after[(self.first + self.sizes - 1)[real]] = self.first[real]
         return after
 
     def keep(self, faces):
         """Only the faces where the mask (m,) is true."""
+        if faces.all():
+            return self
         return Polygons(self.corners[np.repeat(faces, self.sizes)], self.sizes[faces], self.face[faces])
 
     def turned(self, faces):
         """The faces where the mask (m,) is true run the other way round."""
+        if not faces.any():
+            return self
         place = np.arange(len(self.corners))
         first, size = np.repeat(self.first, self.sizes), np.repeat(self.sizes, self.sizes)
         place = np.where(np.repeat(faces, self.sizes), 2 * first + size - 1 - place, place)
@@ -51,6 +58,7 @@ class Polygons:
         which = np.flatnonzero(self.sizes == size)
         return which, self.corners[self.first[which][:, None] + np.arange(size)]
 
+    @cached_property
     def edges(self):
         """(edges (e, 2) smaller first and ascending, (c,) edge from each corner to the next, (e,) faces at each)."""
         head = self.corners[self.following]
@@ -59,9 +67,10 @@ class Polygons:
         key, which, count = np.unique(low * base + high, return_inverse=True, return_counts=True)
         return np.column_stack([key // base, key % base]), which.ravel(), count
 
+    @cached_property
     def twins(self):
         """(k, 2) places of the two corners from which the two faces run along each edge that has two faces."""
-        _, which, count = self.edges()
+        _, which, count = self.edges
         order = np.argsort(which, kind="stable")
         start = np.cumsum(count) - count
         shared = start[count == 2]
@@ -94,13 +103,9 @@ def read_faces(faces, count, name):
             raise FormError(f"Form '{name}': every face must be a row of point numbers.") from fault
         sizes = np.array([len(face) for face in faces], dtype=np.int64)
         corners = np.array(list(chain.from_iterable(faces)))
-    if not len(sizes):
+    if not len(corners):
         raise FormError(f"Form '{name}' has no faces, only {number(count, 'point')}; there is nothing to cover. "
                         "Curves and loose edges need a surface first (convert to mesh, fill).")
-    short = np.flatnonzero(sizes < 3)
-    if len(short):
-        raise FormError(f"Form '{name}': {number(len(short), 'face')} with fewer than three corners ({few('face', short)}). "
-                        "Delete them.")
     whole = corners.dtype.kind in "iu" or (corners.dtype.kind == "f" and (corners == np.floor(corners)).all())
     if not whole:
         raise FormError(f"Form '{name}': the corners of the faces must be whole numbers, the indices of points.")

@@ -13,8 +13,11 @@ def triangulate(points, polygons):
     parts = []
     for size in np.unique(polygons.sizes):
         which, rows = polygons.rows(size)
-        cut = cut_quads(points, rows, polygons) if size == 4 else clip_ears(points, rows)
-        parts.append((cut.reshape(-1, 3), np.repeat(which, size - 2)))
+        if size == 4:
+            rows = cut_quads(points, rows, polygons)
+        elif size > 4:
+            rows = clip_ears(points, rows)
+        parts.append((rows.reshape(-1, 3), np.repeat(which, size - 2)))
     triangles, polygon = (np.concatenate(arrays) for arrays in zip(*parts, strict=True))
     order = np.argsort(polygon, kind="stable")
     return triangles[order], polygon[order]
@@ -31,7 +34,7 @@ def cut_quads(points, quads, polygons):
     through_b = np.einsum("ij,ij->i", np.cross(c - b, d - b), np.cross(d - b, a - b)) > 0
     shorter = np.linalg.norm(d - b, axis=1) < np.linalg.norm(c - a, axis=1) * (1 - ROUNDING)
     use_b = np.where(through_a == through_b, shorter, through_b)
-    edges = polygons.edges()[0]
+    edges = polygons.edges[0]
     base = len(points)
     for _ in range(2):
         ends = np.where(use_b[:, None], quads[:, [1, 3]], quads[:, [0, 2]])

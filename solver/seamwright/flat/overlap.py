@@ -6,10 +6,11 @@ import numpy as np
 def overlaps(flat, outline):
     """List of (i, j), i < j: sides of the flat outline that cross; side k runs from outline[k] to the next point.
 
-    flat (n, 2), outline (q,) point indices in order. Sides that share a corner are not compared. Empty when the boundary
-    is simple, and then a flattening without flips nowhere lies on itself (its winding number is 1 everywhere inside).
+    flat (n, 2), outline (q,) point indices in order, counter-clockwise. Sides that share a corner are not compared. Empty
+    when the boundary is simple, and then a flattening without flips nowhere lies on itself (its winding number is 1
+    everywhere inside). Touching is no crossing: the outline is first drawn in by a millionth of its extent.
     """
-    corners = np.asarray(flat, dtype=float)[np.asarray(outline)]
+    corners = _drawn_in(np.asarray(flat, dtype=float)[np.asarray(outline)])
     ends = np.roll(corners, -1, axis=0)
     first, second = _near_pairs(corners, ends)
     q = len(corners)
@@ -18,6 +19,13 @@ def overlaps(flat, outline):
     a, b, c, d = corners[first], ends[first], corners[second], ends[second]
     crossing = (_side(a, b, c) * _side(a, b, d) < 0) & (_side(c, d, a) * _side(c, d, b) < 0)
     return list(zip(first[crossing].tolist(), second[crossing].tolist(), strict=True))
+
+
+def _drawn_in(corners):
+    ahead = np.roll(corners, -1, axis=0) - corners
+    ahead /= np.maximum(np.linalg.norm(ahead, axis=1, keepdims=True), 1e-300)
+    both = ahead + np.roll(ahead, 1, axis=0)
+    return corners + 1e-6 * np.ptp(corners, axis=0).max() * np.column_stack([-both[:, 1], both[:, 0]])
 
 
 def _near_pairs(starts, ends):

@@ -10,7 +10,7 @@ from .rest import solve_complex
 
 def start(surface, rest, loop):
     """(flat (n,) complex without flips, note or None) of a disk whose boundary is `loop`, scaled to least strain."""
-    conformal = conformal_start(surface, rest, loop)
+    conformal, _ = conformal_start(surface, rest, loop)
     if valid(rest, conformal):
         return conformal * best_scale(rest, conformal), None
     flat = embedded_start(surface, rest, loop)
@@ -20,7 +20,7 @@ def start(surface, rest, loop):
 
 
 def conformal_start(surface, rest, loop):
-    """(n,) complex least-stretch conformal flattening, boundary lengths kept (Springborn 2008; Sawhney, Crane 2017).
+    """(flat, log scale), (n,) complex and (n,): conformal, boundary lengths kept (Springborn 2008; Sawhney, Crane 2017).
 
     The log scale u solves Laplace u = curvature with u = 0 on the boundary; the boundary then turns by its own turn on the
     form plus the flow of u; its lengths give way a little so that it closes; both coordinates are harmonic inside.
@@ -30,17 +30,16 @@ def conformal_start(surface, rest, loop):
     inner[loop] = False
     inner = np.flatnonzero(inner)
     turn = angle_defects(surface)
-    flat = np.zeros(rest.count, dtype=complex)
-    factor = Factor(matrix[inner][:, inner]) if len(inner) else None
+    flat, log_scale = np.zeros(rest.count, dtype=complex), np.zeros(rest.count)
     shared = matrix[inner][:, loop]
-    corner = turn[loop]
-    if factor:
-        corner = corner + shared.T @ factor.solve(-turn[inner])
+    if len(inner):
+        factor = Factor(matrix[inner][:, inner])
+        log_scale[inner] = factor.solve(-turn[inner])
     sides = surface.points[np.roll(loop, -1)] - surface.points[loop]
-    flat[loop] = closed_polygon(np.linalg.norm(sides, axis=1), corner)
-    if factor:
+    flat[loop] = closed_polygon(np.linalg.norm(sides, axis=1), turn[loop] + shared.T @ log_scale[inner])
+    if len(inner):
         flat[inner] = solve_complex(factor, -(shared @ flat[loop]))
-    return flat
+    return flat, log_scale
 
 
 def closed_polygon(lengths, turns):

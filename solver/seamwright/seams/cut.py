@@ -1,0 +1,89 @@
+"""The exact cut: where per-region fields meet, faces fall into sub-triangles that never cross a seam.
+
+A region's field is largest where the region is; an edge whose ends differ is cut where the two fields are equal. A face
+with two regions falls into three triangles, one with three regions into six around the middle of its three cuts.
+"""
+
+from dataclasses import dataclass
+
+import numpy as np
+
+NEAREST = 1e-4  # a cut keeps this share of the edge away from its ends
+
+# Nodes of a cut face. Two regions: lone corner A, B, C, cut P on AB, cut Q on AC. Three: A, B, C, cuts on AB, BC, CA, middle.
+TWO = np.array([[0, 3, 4], [3, 1, 2], [3, 2, 4]])
+THREE = np.array([[0, 3, 6], [0, 6, 5], [1, 4, 6], [1, 6, 3], [2, 5, 6], [2, 6, 4]])
+TWO_SEAMS = np.array([[3, 4]])
+THREE_SEAMS = np.array([[3, 6], [4, 6], [5, 6]])
+
+
+@dataclass
+class CutFaces:
+    """Cut faces of one kind. face (k,); corners (k, 3) which corner is A, B, C; edges (k, c) the cut edges in node order;
+    tails (k, c) point each cut's share counts from; table: sub-triangles over the nodes; seams: segments over the nodes."""
+
+    face: np.ndarray
+    corners: np.ndarray
+    edges: np.ndarray
+    tails: np.ndarray
+    table: np.ndarray
+    seams: np.ndarray
+
+
+@dataclass
+class Cut:
+    """labels (n,), edge (c,) the cut edges, place (c,) share of the edge from its smaller point, kinds: CutFaces."""
+
+    labels: np.ndarray
+    edge: np.ndarray
+    place: np.ndarray
+    two: CutFaces
+    three: CutFaces
+
+
+def cut_by_fields(surface, fields, labels=None):
+    """Cut of a Surface by fields (n, K); labels default to the largest field of each point."""
+    if labels is None:
+        labels = fields.argmax(axis=1)
+    edges = surface.edges
+    low, high = labels[edges[:, 0]], labels[edges[:, 1]]
+    edge = np.flatnonzero(low != high)
+    tail, head = rises(surface, fields, labels, edge)
+    total = tail + head
+    place = np.divide(tail, total, out=np.full(len(edge), 0.5), where=total > 1e-300)
+    return Cut(labels, edge, np.clip(place, NEAREST, 1 - NEAREST), *cut_faces(surface, labels))
+
+
+def rises(surface, fields, labels, edge):
+    """(tail (c,), head (c,)): by how much each end of a cut edge prefers its own region to the other's."""
+    a, b = surface.edges[edge, 0], surface.edges[edge, 1]
+    i, j = labels[a], labels[b]
+    return fields[a, i] - fields[a, j], fields[b, j] - fields[b, i]
+
+
+def cut_faces(surface, labels):
+    """(CutFaces with two regions, CutFaces with three)."""
+    corner = labels[surface.triangles]
+    same = corner == np.roll(corner, -1, axis=1)  # corner k like corner k + 1
+    count = same.sum(axis=1)
+    face = np.flatnonzero(count == 1)
+    lone = (same[face].argmax(axis=1) + 2) % 3
+    two = _cut_faces(surface, face, lone, [0, 2], [0, 0], TWO, TWO_SEAMS)
+    face = np.flatnonzero(count == 0)
+    three = _cut_faces(surface, face, np.zeros(len(face), dtype=np.int64), [0, 1, 2], [0, 1, 2], THREE, THREE_SEAMS)
+    return two, three
+
+
+def _cut_faces(surface, face, first, sides, tails, table, seams):
+    corners = (first[:, None] + np.arange(3)) % 3
+    rows = face[:, None]
+    edges = surface.triangle_edges[rows, corners[:, sides]]
+    return CutFaces(face, corners, edges, surface.triangles[rows, corners[:, tails]], table, seams)
+
+
+def recut(surface, cut, labels):
+    """Cut for other labels (n,): edges cut before keep their place, new ones are cut in the middle."""
+    place = np.full(len(surface.edges), 0.5)
+    place[cut.edge] = cut.place
+    edge = np.flatnonzero(labels[surface.edges[:, 0]] != labels[surface.edges[:, 1]])
+    return Cut(labels, edge, place[edge], *cut_faces(surface, labels))

@@ -1,0 +1,109 @@
+"""Downhill flow of a seam network: L-BFGS on the region fields, in a smoothing metric, with the exact gradient."""
+
+from collections import deque
+from dataclasses import dataclass
+
+import numpy as np
+
+from .cut import cut_by_fields
+from .energy import evaluate, field_gradient
+from .fields import redistance
+
+MEMORY = 6
+FARTHEST = 2.0  # edge lengths a seam may move in one step
+ROUND = 8  # steps between two redistancings
+
+
+@dataclass
+class Descent:
+    """Where the flow ended: fields (n, K), cut, cost; steps taken; converged (False: the steps ran out); history of totals."""
+
+    fields: np.ndarray
+    cut: object
+    cost: object
+    steps: int
+    converged: bool
+    history: list
+
+
+def descend(level, fields, thrift, energy="square", weights=None, steps=30, tolerance=1e-4):
+    """Flow until a step gains less than `tolerance` of the total twice running, or for `steps` steps. Returns a Descent.
+
+    Nocedal, Wright: Numerical Optimization, 7.2 (two-loop recursion); the metric is (M + l^2 L)^-1 on each field.
+    """
+    count = fields.shape[1]
+    cut = cut_by_fields(level.surface, fields)
+    cost = evaluate(level, cut, thrift, energy, weights)
+    history, taken, small, stuck = [cost.total], 0, 0, 0
+    while taken < steps and small < 2 and stuck < 2:
+        fields = redistance(level, cut, count)
+        cut = cut_by_fields(level.surface, fields)
+        cost = evaluate(level, cut, thrift, energy, weights)
+        gradient = field_gradient(level, cut, fields, cost.slope)
+        pairs = deque(maxlen=MEMORY)
+        for _ in range(min(ROUND, steps - taken)):
+            taken += 1
+            direction = _two_loop(level, gradient, pairs)
+            if (direction * gradient).sum() >= 0:
+                direction, pairs = -_metric(level, gradient), deque(maxlen=MEMORY)
+            direction *= _allowed(level, cut, direction, first=not pairs)
+            step = _backtrack(level, fields, direction, gradient, cost, thrift, energy, weights)
+            if step is None:
+                stuck += 1
+                break
+            new_fields, cut, new_cost = step
+            new_gradient = field_gradient(level, cut, new_fields, new_cost.slope)
+            moved, bent = new_fields - fields, new_gradient - gradient
+            if (moved * bent).sum() > 1e-12 * np.linalg.norm(moved) * np.linalg.norm(bent):
+                pairs.append((moved, bent))
+            gain = (cost.total - new_cost.total) / cost.total
+            small = small + 1 if gain < tolerance else 0
+            stuck = 0
+            fields, gradient, cost = new_fields, new_gradient, new_cost
+            history.append(cost.total)
+            if small == 2:
+                break
+    return Descent(fields, cut, cost, taken, small >= 2 or stuck >= 2, history)
+
+
+def _metric(level, gradient):
+    return level.smoother.solve(gradient)
+
+
+def _two_loop(level, gradient, pairs):
+    q, factors = gradient.copy(), []
+    for moved, bent in reversed(pairs):
+        rho = 1.0 / (moved * bent).sum()
+        a = rho * (moved * q).sum()
+        q -= a * bent
+        factors.append((a, rho))
+    direction = _metric(level, q)
+    if pairs:
+        moved, bent = pairs[-1]
+        direction *= (moved * bent).sum() / (bent * _metric(level, bent)).sum()
+    for (moved, bent), (a, rho) in zip(pairs, reversed(factors), strict=True):
+        direction += (a - rho * (bent * direction).sum()) * moved
+    return -direction
+
+
+def _allowed(level, cut, direction, first):
+    """Factor that keeps every cut within FARTHEST edge lengths; a first step is stretched to one edge length."""
+    a, b = level.surface.edges[cut.edge].T
+    i, j = cut.labels[a], cut.labels[b]
+    rows = np.concatenate([a, b])
+    move = 0.5 * np.abs(direction[rows, np.concatenate([i, i])] - direction[rows, np.concatenate([j, j])]).max(initial=1e-300)
+    limit = FARTHEST * level.edge_length / move
+    return min(limit, 0.5 * level.edge_length / move) if first else min(limit, 1.0)
+
+
+def _backtrack(level, fields, direction, gradient, cost, thrift, energy, weights):
+    slope = (direction * gradient).sum()
+    share = 1.0
+    for _ in range(8):
+        trial = fields + share * direction
+        cut = cut_by_fields(level.surface, trial)
+        new = evaluate(level, cut, thrift, energy, weights)
+        if new.total <= cost.total + 1e-4 * share * slope:
+            return trial, cut, new
+        share *= 0.4
+    return None

@@ -1,0 +1,213 @@
+"""What a seam network costs, and its exact gradient.
+
+On the cut surface the least-stretch conformal flattening has log scale u with Laplace u = K, u = 0 on seams and open edges
+(Springborn, Schroeder, Pinkall 2008; Sawhney, Crane 2018 for the zero boundary). The distortion is the integral of j(u).
+The gradient differentiates the sub-triangles' energies with respect to the cut places (no estimate of normal derivatives):
+for nodal values u, p and F = area grad u . grad p, dF/dx_k = area ((grad u . grad p) grad phi_k - (grad phi_k . grad p) grad u
+- (grad phi_k . grad u) grad p).
+"""
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from ..form.laplacian import Factor
+from .cut import rises
+from .level import triangle_stiffness
+
+
+def _square(u):
+    return u * u
+
+
+def _square_slope(u):
+    return 2 * u
+
+
+def _hencky(u):
+    return u * u * np.exp(2 * u)
+
+
+def _hencky_slope(u):
+    return 2 * u * (1 + u) * np.exp(2 * u)
+
+
+# Hencky: squared logarithmic strain per area of the flat goods, whose area element is exp(2 u).
+DENSITIES = {"square": (_square, _square_slope), "hencky": (_hencky, _hencky_slope), "dirichlet": None}
+
+
+def density(energy):
+    """(j, dj/du) of a wished energy, None for Dirichlet."""
+    return DENSITIES[energy] if isinstance(energy, str) else tuple(energy)
+
+
+@dataclass
+class Cost:
+    """distortion, length (priced), total; u (n,) log scale; slope (c,) of the total by each cut's place."""
+
+    distortion: float
+    length: float
+    total: float
+    u: np.ndarray
+    slope: np.ndarray | None = None
+
+
+def evaluate(level, cut, thrift, energy, weights=None, gradient=True):
+    """Cost of a Cut on a Level. weights (K,) factor on each region's distortion, default 1."""
+    free, labels = level.free, cut.labels
+    kinds = [(kind, *seam_nodes(level, cut, kind)) for kind in (cut.two, cut.three) if len(kind.face)]
+    mass = level.mass.copy()
+    changed, change = [], []
+    for kind, nodes, whole in kinds:
+        stiffness, left = _corner_parts(kind, nodes)
+        np.subtract.at(mass, whole, level.areas[kind.face, None] / 3)
+        np.add.at(mass, whole, left)
+        local = np.zeros_like(stiffness)
+        rows = np.arange(len(kind.face))[:, None, None]
+        local[rows, kind.corners[:, :, None], kind.corners[:, None, :]] = stiffness
+        changed.append(kind.face)
+        change.append(local - level.stiffness[kind.face])
+    changed = np.concatenate(changed) if changed else np.zeros(0, dtype=np.int64)
+    change = np.concatenate(change) if change else np.zeros((0, 3, 3))
+    factor = Factor(level.matrix(changed, change))
+    u = np.zeros(len(free))
+    u[free] = factor.solve((level.density * mass)[free])
+    weight = np.ones(len(free)) if weights is None else np.asarray(weights, dtype=float)[labels]
+    pair = density(energy)
+    p = np.zeros(len(free))
+    if pair is None:
+        per_point = 0.5 * weight * level.density * u
+        distortion = float((per_point * mass).sum())
+        share, p = 0.5, weight * u
+        per_mass = weight * level.density * u
+    else:
+        value, rise = pair
+        per_point = weight * value(u)
+        distortion = float((per_point * mass).sum())
+        share = 1.0
+        if gradient:
+            p[free] = factor.solve((weight * mass * rise(u))[free])
+        per_mass = per_point + p * level.density
+    length, slope = 0.0, np.zeros(len(level.surface.edges)) if gradient else None
+    for kind, nodes, whole in kinds:
+        length += _lengths(level, cut, kind, nodes, thrift, slope)
+        if gradient:
+            _slopes(level, kind, nodes, whole, u, p, per_mass, share, slope)
+    total = distortion + thrift * length
+    return Cost(distortion, length, total, u, None if slope is None else slope[cut.edge])
+
+
+def _place_of(level, cut):
+    place = np.full(len(level.surface.edges), np.nan)
+    place[cut.edge] = cut.place
+    return place
+
+
+def seam_nodes(level, cut, kind):
+    """(coordinates (k, q, 2) of a kind's nodes in their face's plane, the points (k, 3) at its corners)."""
+    rows = np.arange(len(kind.face))[:, None]
+    corners = level.frames[kind.face][rows, kind.corners]
+    whole = level.surface.triangles[kind.face][rows, kind.corners]
+    place = _place_of(level, cut)[kind.edges]
+    share = np.where(kind.tails == level.surface.edges[kind.edges, 0], place, 1 - place)
+    start, end = cut_ends(kind)
+    points = corners[:, start] + share[:, :, None] * (corners[:, end] - corners[:, start])
+    nodes = np.concatenate([corners, points], axis=1)
+    if len(kind.seams) == 3:
+        nodes = np.concatenate([nodes, points.mean(axis=1, keepdims=True)], axis=1)
+    return nodes, whole
+
+
+def _corner_parts(kind, nodes):
+    """(stiffness (k, 3, 3), mass (k, 3)) of a kind's corners after the cut."""
+    stiffness = np.zeros((len(kind.face), 3, 3))
+    mass = np.zeros((len(kind.face), 3))
+    for triangle in kind.table:
+        area, local, _ = triangle_stiffness(nodes[:, triangle])
+        for i, node in enumerate(triangle):
+            if node < 3:
+                mass[:, node] += area / 3
+                for j, other in enumerate(triangle):
+                    if other < 3:
+                        stiffness[:, node, other] += local[:, i, j]
+    return stiffness, mass
+
+
+def cut_ends(kind):
+    """(start, end) node of the corner each cut's share counts from and to."""
+    return ([0, 0], [1, 2]) if len(kind.seams) == 1 else ([0, 1, 2], [1, 2, 0])
+
+
+def _pull(level, kind, nodes, pull, slope):
+    """Bring a gradient by node positions (k, q, 2) down to the cut places; adds into slope (e,)."""
+    cuts = pull[:, 3 : 3 + kind.edges.shape[1]]
+    if len(kind.seams) == 3:
+        cuts = cuts + pull[:, 6:7] / 3
+    start, end = cut_ends(kind)
+    along = nodes[:, end] - nodes[:, start]
+    sign = np.where(kind.tails == level.surface.edges[kind.edges, 0], 1.0, -1.0)
+    np.add.at(slope, kind.edges, sign * (cuts * along).sum(axis=2))
+
+
+def _slopes(level, kind, nodes, whole, u, p, per_mass, share, slope):
+    count = nodes.shape[1]
+    value = {name: np.zeros((len(nodes), count)) for name in ("u", "p", "c")}
+    for name, source in (("u", u), ("p", p), ("c", per_mass)):
+        value[name][:, :3] = source[whole]
+    pull = np.zeros_like(nodes)
+    for triangle in kind.table:
+        area, _, rises_ = triangle_stiffness(nodes[:, triangle])
+        grad_u = np.einsum("ki,kid->kd", value["u"][:, triangle], rises_)
+        grad_p = np.einsum("ki,kid->kd", value["p"][:, triangle], rises_)
+        inner = value["c"][:, triangle].sum(axis=1) / 3 - share * (grad_u * grad_p).sum(axis=1)
+        for i, node in enumerate(triangle):
+            phi = rises_[:, i]
+            turn = (phi * grad_p).sum(1)[:, None] * grad_u + (phi * grad_u).sum(1)[:, None] * grad_p
+            pull[:, node] += area[:, None] * (inner[:, None] * phi + share * turn)
+    _pull(level, kind, nodes, pull, slope)
+
+
+def _lengths(level, cut, kind, nodes, thrift, slope):
+    """Priced seam length of a kind; adds thrift times its gradient into slope (e,) unless that is None."""
+    low, high = level.surface.edges[kind.edges, 0], level.surface.edges[kind.edges, 1]
+    place = _place_of(level, cut)[kind.edges]
+    gain = level.price[high] - level.price[low]
+    price = level.price[low] + place * gain
+    if len(kind.seams) == 3:
+        price = np.concatenate([price, price.mean(axis=1, keepdims=True)], axis=1)
+    total, pull, pull_price = 0.0, np.zeros_like(nodes), np.zeros_like(price)
+    for a, b in kind.seams:
+        along = nodes[:, b] - nodes[:, a]
+        length = np.maximum(np.linalg.norm(along, axis=1), 1e-30)
+        mean = 0.5 * (price[:, a - 3] + price[:, b - 3])
+        total += float((mean * length).sum())
+        if slope is not None:
+            force = thrift * (mean / length)[:, None] * along
+            pull[:, b] += force
+            pull[:, a] -= force
+            for node in (a, b):
+                pull_price[:, node - 3] += 0.5 * thrift * length
+    if slope is not None:
+        _pull(level, kind, nodes, pull, slope)
+        cuts = pull_price[:, : kind.edges.shape[1]]
+        if len(kind.seams) == 3:
+            cuts = cuts + pull_price[:, 3:4] / 3
+        np.add.at(slope, kind.edges, cuts * gain)
+    return total
+
+
+def field_gradient(level, cut, fields, slope):
+    """(n, K) gradient by the fields from the slope (c,) by the cut places."""
+    surface, labels, edge = level.surface, cut.labels, cut.edge
+    tail, head = rises(surface, fields, labels, edge)
+    total = np.maximum(tail + head, 1e-12)
+    inside = (cut.place * total == tail) | (np.abs(cut.place * total - tail) <= 1e-9 * total)
+    by_tail, by_head = slope * inside * head / total**2, -slope * inside * tail / total**2
+    a, b = surface.edges[edge, 0], surface.edges[edge, 1]
+    i, j = labels[a], labels[b]
+    gradient = np.zeros_like(fields)
+    np.add.at(gradient, (a, i), by_tail)
+    np.add.at(gradient, (a, j), -by_tail)
+    np.add.at(gradient, (b, j), by_head)
+    np.add.at(gradient, (b, i), -by_head)
+    return gradient

@@ -1,0 +1,65 @@
+"""Per-region fields: signed distances from each region's border, so that every region can move against every other."""
+
+import numpy as np
+from scipy.sparse import coo_matrix
+from scipy.sparse.csgraph import dijkstra
+
+from .energy import seam_nodes
+
+REACH = 8.0  # edge lengths beyond which a distance no longer matters within one round
+
+
+def from_labels(level, labels, smooth=1.0):
+    """(n, K) fields whose borders are the labels' borders, rounded by diffusion over `smooth` edge lengths."""
+    return smoothed(level, (labels[:, None] == np.arange(int(labels.max()) + 1)).astype(float), smooth)
+
+
+def smoothed(level, fields, smooth):
+    """(n, K) fields after diffusion over `smooth` edge lengths."""
+    return level.diffusion(smooth * level.edge_length).solve(level.mass[:, None] * fields)
+
+
+def redistance(level, cut, count):
+    """(n, K) signed distance of every point to the border of every region, positive inside; capped at REACH edge lengths.
+
+    Exact within the cut faces (so the cut stays where it is up to second order), along edges beyond them.
+    """
+    n, reach = len(cut.labels), REACH * level.edge_length
+    points, regions, near = [], [], []
+    for kind in (cut.two, cut.three):
+        if not len(kind.face):
+            continue
+        nodes, whole = seam_nodes(level, cut, kind)
+        around = cut.labels[whole]
+        for a, b in kind.seams:
+            sides = [0, 1] if len(kind.seams) == 1 else [a - 3, (a - 2) % 3]
+            for corner in range(3):
+                gap = _segment_distance(nodes[:, corner], nodes[:, a], nodes[:, b])
+                for side in sides:
+                    points.append(whole[:, corner])
+                    regions.append(around[:, side])
+                    near.append(gap)
+    fields = np.full((n, count), -reach)
+    if points:
+        points, regions, near = map(np.concatenate, (points, regions, near))
+        edges, lengths = level.surface.edges, level.surface.edge_lengths
+        order = np.lexsort((near, regions * n + points))
+        points, regions, near = points[order], regions[order], near[order]
+        first = np.ones(len(points), dtype=bool)
+        first[1:] = (points[1:] != points[:-1]) | (regions[1:] != regions[:-1])
+        points, regions, near = points[first], regions[first], np.maximum(near[first], 1e-12)
+        rows = np.concatenate([edges[:, 0], edges[:, 1], n + regions])
+        columns = np.concatenate([edges[:, 1], edges[:, 0], points])
+        graph = coo_matrix((np.concatenate([lengths, lengths, near]), (rows, columns)), shape=(n + count,) * 2).tocsr()
+        gap = dijkstra(graph, indices=n + np.arange(count), limit=reach)[:, :n].T
+        fields = -np.minimum(gap, reach)
+    own = (np.arange(n), cut.labels)
+    fields[own] = -fields[own]
+    return fields
+
+
+def _segment_distance(point, a, b):
+    along = b - a
+    share = ((point - a) * along).sum(1) / np.maximum((along * along).sum(1), 1e-300)
+    nearest = a + np.clip(share, 0, 1)[:, None] * along
+    return np.linalg.norm(point - nearest, axis=1)

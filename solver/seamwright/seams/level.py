@@ -1,0 +1,116 @@
+"""One level of the coarse-to-fine ladder: a triangle surface with its curvature load, seam prices and matrix pattern.
+
+Lengths on a level are scaled so that the form's area is 4 pi (the scale on which thrift is counted).
+"""
+
+from functools import cached_property
+
+import numpy as np
+from scipy.sparse import csc_matrix
+
+from ..form.laplacian import Factor, cotangent_laplacian
+from ..form.measure import areas, vertex_areas
+from ..form.surface import Surface
+
+FORM_AREA = 4 * np.pi
+
+
+class Level:
+    """surface: Surface at scale (area near 4 pi). load (n,) curvature, radians. price (n,) factor on the seam's length."""
+
+    def __init__(self, surface, load, price=None):
+        self.surface = surface
+        self.load = np.asarray(load, dtype=float)
+        self.price = np.ones(len(surface.points)) if price is None else np.asarray(price, dtype=float)
+        self.areas = areas(surface)
+        self.mass = vertex_areas(surface)
+        self.density = np.divide(self.load, self.mass, out=np.zeros_like(self.load), where=self.mass > 0)
+
+    @cached_property
+    def edge_length(self):
+        """Mean edge length."""
+        return float(self.surface.edge_lengths.mean())
+
+    @cached_property
+    def frames(self):
+        """(m, 3, 2) corners of each triangle in its own plane: first at the origin, second on the x axis."""
+        a, b, c = (self.surface.points[self.surface.triangles[:, k]] for k in range(3))
+        ab, ac = b - a, c - a
+        length = np.maximum(np.linalg.norm(ab, axis=1), 1e-30)
+        along = (ab * ac).sum(1) / length
+        away = np.sqrt(np.maximum((ac * ac).sum(1) - along**2, 0))
+        away = np.maximum(away, 1e-2 * np.maximum(length, np.linalg.norm(ac, axis=1)))  # a flat triangle keeps some height
+        flat = np.zeros((len(a), 3, 2))
+        flat[:, 1, 0], flat[:, 2, 0], flat[:, 2, 1] = length, along, away
+        return flat
+
+    @cached_property
+    def free(self):
+        """(n,) bool: points off the open edges, where u is unknown."""
+        free = np.ones(len(self.surface.points), dtype=bool)
+        free[self.surface.edges[self.surface.open_edges].ravel()] = False
+        return free
+
+    @cached_property
+    def _pattern(self):
+        """Sparsity of the Laplacian over the free points, with the slot of every triangle's nine entries in its data."""
+        triangles, free = self.surface.triangles, self.free
+        count = int(free.sum())
+        number = np.full(len(free), -1)
+        number[free] = np.arange(count)
+        rows = number[np.repeat(triangles, 3, axis=1)].ravel()
+        columns = number[np.tile(triangles, (1, 3))].ravel()
+        inside = (rows >= 0) & (columns >= 0)
+        key = columns[inside] * count + rows[inside]
+        unique, slot = np.unique(key, return_inverse=True)
+        slots = np.full(len(rows), len(unique))  # one slot past the end swallows what touches an open edge
+        slots[inside] = slot.ravel()
+        pointers = np.concatenate([[0], np.cumsum(np.bincount(unique // count, minlength=count))])
+        return slots.reshape(-1, 3, 3), unique % count, pointers, count
+
+    @cached_property
+    def stiffness(self):
+        """(m, 3, 3) cotangent stiffness of every whole triangle."""
+        return triangle_stiffness(self.frames)[1]
+
+    @cached_property
+    def _base(self):
+        slots, rows, _, _ = self._pattern
+        return np.bincount(slots.ravel(), self.stiffness.ravel(), minlength=len(rows) + 1)
+
+    def matrix(self, changed, change):
+        """Laplacian over the free points after adding change (k, 3, 3) to the triangles `changed` (k,)."""
+        slots, rows, pointers, count = self._pattern
+        data = self._base + np.bincount(slots[changed].ravel(), change.ravel(), minlength=len(rows) + 1)
+        matrix = csc_matrix((data[:-1], rows, pointers), shape=(count, count))
+        matrix.data[np.abs(matrix.data) < 1e-12] = 0.0
+        matrix = matrix.copy()
+        matrix.eliminate_zeros()  # what lies across a seam is exactly zero: the blocks fall apart
+        return matrix
+
+    @cached_property
+    def smoother(self):
+        """Factor of M + l^2 L, l three edge lengths: the metric in which seams move."""
+        return self.diffusion(3 * self.edge_length)
+
+    def diffusion(self, length):
+        """Factor of M + length^2 L over all points."""
+        laplacian = cotangent_laplacian(self.surface)
+        mass = csc_matrix((self.mass, (np.arange(len(self.mass)),) * 2), shape=laplacian.shape)
+        return Factor((mass + length**2 * laplacian).tocsc())
+
+
+def triangle_stiffness(corners):
+    """(area (k,), stiffness (k, 3, 3), gradients (k, 3, 2)) of plane triangles with corners (k, 3, 2): linear elements."""
+    a, b, c = corners[:, 0], corners[:, 1], corners[:, 2]
+    twice = (b[:, 0] - a[:, 0]) * (c[:, 1] - a[:, 1]) - (b[:, 1] - a[:, 1]) * (c[:, 0] - a[:, 0])
+    opposite = np.stack([c - b, a - c, b - a], axis=1)
+    gradients = np.stack([-opposite[:, :, 1], opposite[:, :, 0]], axis=2) / np.maximum(twice, 1e-30)[:, None, None]
+    area = 0.5 * twice
+    return area, area[:, None, None] * np.einsum("kid,kjd->kij", gradients, gradients), gradients
+
+
+def scaled(surface, area):
+    """(the surface with its area brought to 4 pi, the factor on lengths)."""
+    factor = float(np.sqrt(FORM_AREA / area))
+    return Surface(surface.points * factor, surface.triangles), factor

@@ -1,0 +1,87 @@
+"""Seams along edges that exist: every face goes whole to one region, and borders are shortened face by face."""
+
+import numpy as np
+
+from ..form.surface import Surface
+from .energy import seam_nodes
+from .level import triangle_stiffness
+from .network import Network
+from .opened import opened
+
+SWEEPS = 12
+
+
+def cut_along(level, cut, polygon, diagonal, metric):
+    """Network on the level's own edges. polygon (m,) the maker's face of each triangle; diagonal (e,) bool: edges that only
+    triangulation made and that are never seams. metric: metres over lengths on the level."""
+    surface = level.surface
+    labels = _face_labels(level, cut, polygon)
+    labels = _shortened(surface, labels, polygon, level.price)
+    sides = surface.edge_triangles
+    inner = ~surface.open_edges
+    seam = inner & (labels[polygon[sides[:, 0]]] != labels[polygon[sides[:, 1]]])
+    network = Network(Surface(surface.points * metric, surface.triangles), seam, np.arange(len(surface.triangles)))
+    return opened(_without_specks(network, level), ~diagonal)
+
+
+def _face_labels(level, cut, polygon):
+    """(f,) the region that holds most of each of the maker's faces."""
+    count, faces = int(cut.labels.max()) + 1, int(polygon.max()) + 1
+    share = np.zeros((faces, count))
+    whole = np.ones(len(polygon), dtype=bool)
+    for kind in (cut.two, cut.three):
+        if not len(kind.face):
+            continue
+        whole[kind.face] = False
+        nodes, corners = seam_nodes(level, cut, kind)
+        lead = cut.labels[corners]
+        for triangle in kind.table:
+            corner = min(node for node in triangle if node < 3)
+            area = triangle_stiffness(nodes[:, triangle])[0]
+            np.add.at(share, (polygon[kind.face], lead[:, corner]), area)
+    plain = cut.labels[level.surface.triangles[whole, 0]]
+    np.add.at(share, (polygon[whole], plain), level.areas[whole])
+    return share.argmax(axis=1)
+
+
+def _shortened(surface, labels, polygon, price):
+    """Labels after flips of single faces that shorten the priced border, until none does (at most SWEEPS sweeps)."""
+    sides = polygon[surface.edge_triangles]
+    inner = np.flatnonzero(~surface.open_edges & (sides[:, 0] != sides[:, 1]))
+    cost = surface.edge_lengths[inner] * price[surface.edges[inner]].mean(axis=1)
+    around = {}
+    for (a, b), length in zip(sides[inner].tolist(), cost.tolist(), strict=True):
+        around.setdefault(a, []).append((b, length))
+        around.setdefault(b, []).append((a, length))
+    labels = labels.copy()
+    for _ in range(SWEEPS):
+        border = labels[sides[inner, 0]] != labels[sides[inner, 1]]
+        changed = False
+        for face in np.unique(sides[inner[border]]).tolist():
+            total = {}
+            for other, length in around[face]:
+                total[labels[other]] = total.get(labels[other], 0.0) + length
+            best = max(total, key=lambda label: (total[label], -label))
+            if total[best] > total.get(labels[face], 0.0) * (1 + 1e-9) + 1e-12:
+                labels[face], changed = best, True
+        if not changed:
+            break
+    return labels
+
+
+def _without_specks(network, level, share=0.005):
+    """Pieces under a share of the area go to the neighbour with the longest common border."""
+    while True:
+        count, piece = network.pieces
+        area = np.bincount(piece, level.areas, minlength=count)
+        small = int(area.argmin())
+        if count == 1 or area[small] > share * area.sum():
+            return network
+        sides = piece[network.surface.edge_triangles]
+        border = np.flatnonzero(network.seam & (sides == small).any(axis=1) & (sides[:, 0] != sides[:, 1]))
+        other = sides[border].sum(axis=1) - small
+        length = np.bincount(other, network.surface.edge_lengths[border], minlength=count)
+        seam = network.seam.copy()
+        seam[border[other == length.argmax()]] = False
+        seam[network.seam & (sides == small).all(axis=1)] = False
+        network = Network(network.surface, seam, network.source)

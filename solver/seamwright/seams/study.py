@@ -1,0 +1,40 @@
+"""The energy of a partition that is given: for study, comparison and tests."""
+
+import numpy as np
+
+from ..errors import WishError
+from ..form.laplacian import smoothed_defects
+from ..form.measure import total_area
+from .cut import cut_by_fields
+from .energy import evaluate
+from .fields import from_labels
+from .level import Level, scaled
+from .topology import point_labels
+
+
+def log_scale(form, labels):
+    """(n,) log scale u at the form's points of the least-stretch conformal flattening of a partition.
+
+    labels (face_count,): the piece of every face. Seams run between the points of different pieces (see `seam_energy`).
+    """
+    level, cut = _cut(form, labels)
+    return evaluate(level, cut, 0.0, "square", gradient=False).u
+
+
+def seam_energy(form, labels, thrift=1.0, energy="square"):
+    """(distortion, length, total) of a partition, on the form scaled to area 4 pi; total = distortion + thrift * length."""
+    level, cut = _cut(form, labels)
+    cost = evaluate(level, cut, thrift, energy, gradient=False)
+    return cost.distortion, cost.length, cost.total
+
+
+def _cut(form, labels):
+    labels = np.asarray(labels)
+    if labels.shape != (form.face_count,):
+        raise WishError(f"labels: {labels.size} for a form of {form.face_count} faces. Give one for each face.")
+    numbers = np.unique(labels, return_inverse=True)[1].ravel()
+    surface, _ = scaled(form.surface, total_area(form.surface))
+    level = Level(surface, smoothed_defects(surface))
+    points = point_labels(surface, numbers[form.polygon])
+    cut = cut_by_fields(surface, from_labels(level, points), points)
+    return level, cut

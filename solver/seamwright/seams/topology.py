@@ -1,0 +1,172 @@
+"""Regions of a level's points as a combinatorial thing: components, disks, splits and merges.
+
+The points of one label, with the edges and faces all of whose corners bear it, carry the region's topology (the cut region
+retracts onto them): a connected region is a disk exactly when points - edges + faces = 1.
+"""
+
+from dataclasses import dataclass
+
+import numpy as np
+from scipy.sparse import coo_matrix
+from scipy.sparse.csgraph import connected_components, dijkstra
+
+CELLS = 8  # cells that a region which is no disk is first cut into
+MOST_CELLS = 128
+
+
+def split_components(surface, labels):
+    """(n,) labels renumbered 0..K-1 so that every connected region has its own, ordered by its first point."""
+    edges = surface.edges
+    same = edges[labels[edges[:, 0]] == labels[edges[:, 1]]]
+    graph = coo_matrix((np.ones(len(same)), (same[:, 0], same[:, 1])), shape=(len(labels),) * 2)
+    component = connected_components(graph, directed=False)[1]
+    first = np.unique(component, return_index=True)[1]
+    number = np.empty(len(first), dtype=np.int64)
+    number[np.argsort(first, kind="stable")] = np.arange(len(first))
+    return number[component]
+
+
+@dataclass
+class Regions:
+    """K regions: euler (K,); pairs (q, 2) of neighbours; border (q,) length; pair_euler (q,) of each pair's union; area (K,)."""
+
+    euler: np.ndarray
+    pairs: np.ndarray
+    border: np.ndarray
+    pair_euler: np.ndarray
+    area: np.ndarray
+
+
+def regions(level, labels):
+    """The Regions of connected labels 0..K-1."""
+    surface, count = level.surface, int(labels.max()) + 1
+    ends = np.sort(labels[surface.edges], axis=1)
+    corner = np.sort(labels[surface.triangles], axis=1)
+    inside = ends[:, 0] == ends[:, 1]
+    whole = corner[:, 0] == corner[:, 2]
+    euler = (
+        np.bincount(labels, minlength=count)
+        - np.bincount(ends[inside, 0], minlength=count)
+        + np.bincount(corner[whole, 0], minlength=count)
+    )
+    across = ends[~inside, 0] * count + ends[~inside, 1]
+    keys, which = np.unique(across, return_inverse=True)
+    two = ~whole & ((corner[:, 0] == corner[:, 1]) | (corner[:, 1] == corner[:, 2]))
+    shared = np.searchsorted(keys, corner[two, 0] * count + corner[two, 2])
+    pairs = np.column_stack([keys // count, keys % count])
+    edges_across = np.bincount(which.ravel(), minlength=len(keys))
+    faces_across = np.bincount(shared, minlength=len(keys))
+    border = np.bincount(shared, 0.7 * np.sqrt(level.areas[two]), minlength=len(keys))  # a face's cut is about this long
+    pair_euler = euler[pairs[:, 0]] + euler[pairs[:, 1]] - edges_across + faces_across
+    return Regions(euler, pairs, border, pair_euler, np.bincount(labels, level.mass, minlength=count))
+
+
+def merged(labels, i, j):
+    """Labels with region j given to region i, renumbered without a gap."""
+    labels = np.where(labels == j, i, labels)
+    return labels - (labels > j)
+
+
+def make_disks(level, labels):
+    """(n,) labels whose regions are all disks: what is none falls into cells, cells merge again while disks stay disks."""
+    labels = split_components(level.surface, labels)
+    for region in np.flatnonzero(regions(level, labels).euler != 1):
+        inside = np.flatnonzero(labels == region)
+        cells = CELLS
+        while True:
+            trial = labels.copy()
+            trial[inside] = labels.max() + 1 + voronoi(level, min(cells, len(inside)), inside)
+            trial = split_components(level.surface, trial)
+            parts = np.unique(trial[inside])
+            if (regions(level, trial).euler[parts] == 1).all() or cells > MOST_CELLS:
+                break
+            cells *= 2
+        labels = _merge_cells(level, trial, set(parts.tolist()))
+    return split_components(level.surface, labels)
+
+
+def _merge_cells(level, labels, parts):
+    """Merge the cells `parts`, longest shared border first, while the union is a disk."""
+    cell = np.isin(labels, sorted(parts))
+    while True:
+        tables = regions(level, labels)
+        ours = np.zeros(int(labels.max()) + 1, dtype=bool)
+        ours[np.unique(labels[cell])] = True
+        fit = ours[tables.pairs].all(axis=1) & (tables.pair_euler == 1)
+        if not fit.any():
+            return labels
+        # the border against the smaller cell's size: round cells first, or a sleeve is swallowed ring by ring
+        size = np.sqrt(tables.area[tables.pairs].min(axis=1))
+        best = np.argmax(np.where(fit, tables.border / np.maximum(size, 1e-12), -1))
+        labels = merged(labels, *tables.pairs[best])
+
+
+def absorb(level, labels, smallest):
+    """Give every region under the area `smallest` to the neighbour with the longest border whose union is a disk."""
+    while int(labels.max()) > 0:
+        tables = regions(level, labels)
+        small = tables.area < smallest
+        fit = small[tables.pairs].any(axis=1) & (tables.pair_euler == 1)
+        if not fit.any():
+            return labels
+        area = np.where(small[tables.pairs], tables.area[tables.pairs], np.inf).min(axis=1)
+        order = np.lexsort((-tables.border, np.where(fit, area, np.inf)))
+        labels = merged(labels, *tables.pairs[order[0]])
+    return labels
+
+
+def voronoi(level, count, inside=None, first=None):
+    """(k,) cell of each point of `inside` (all by default): farthest points by distance along edges, two Lloyd sweeps.
+
+    first: a point to begin at (index into the level), else the one farthest from the region's middle.
+    """
+    surface = level.surface
+    n = len(surface.points)
+    inside = np.arange(n) if inside is None else inside
+    keep = np.zeros(n, dtype=bool)
+    keep[inside] = True
+    edges = keep[surface.edges].all(axis=1)
+    number = np.cumsum(keep) - 1
+    rows, columns = number[surface.edges[edges]].T
+    graph = coo_matrix((surface.edge_lengths[edges], (rows, columns)), shape=(len(inside),) * 2).tocsr()
+    points, mass = surface.points[inside], np.maximum(level.mass[inside], 1e-30)
+    if first is None:
+        middle = (points * mass[:, None]).sum(0) / mass.sum()
+        start = int(np.argmax(np.linalg.norm(points - middle, axis=1)))
+    else:
+        start = int(number[first])
+    seeds = [start]
+    gap = _distance(graph, seeds)[0]
+    while len(seeds) < count:
+        seeds.append(int(np.argmax(gap)))
+        gap = np.minimum(gap, _distance(graph, seeds[-1:])[0])
+    for _ in range(2):
+        owner = _distance(graph, seeds)[1]
+        total = np.bincount(owner, mass, minlength=count)
+        middle = np.column_stack([np.bincount(owner, mass * points[:, k], minlength=count) for k in range(3)]) / total[:, None]
+        off = np.linalg.norm(points - middle[owner], axis=1)
+        order = np.lexsort((off, owner))
+        seeds = order[np.unique(owner[order], return_index=True)[1]].tolist()
+    return _distance(graph, seeds)[1]
+
+
+def _distance(graph, seeds):
+    """(distance, index of the nearest seed) along edges; points no seed reaches go to seed 0 at a large distance."""
+    gap, _, source = dijkstra(graph, directed=False, indices=seeds, min_only=True, return_predecessors=True)
+    place = np.zeros(graph.shape[0] + 1, dtype=np.int64)
+    place[seeds] = np.arange(len(seeds))
+    owner = place[source]  # a negative source (unreached) reads the last place, which is 0
+    return np.where(np.isfinite(gap), gap, 1e6), np.where(source >= 0, owner, 0)
+
+
+def point_labels(surface, triangle_labels):
+    """(n,) for each point the label that most of its triangles bear (the smallest of equals)."""
+    count = int(triangle_labels.max()) + 1
+    n = len(surface.points)
+    key = surface.triangles.ravel() * count + np.repeat(triangle_labels, 3)
+    keys, votes = np.unique(key, return_counts=True)
+    order = np.lexsort((keys % count, -votes, keys // count))
+    first = np.unique(keys[order] // count, return_index=True)
+    labels = np.zeros(n, dtype=np.int64)
+    labels[first[0]] = keys[order][first[1]] % count
+    return labels

@@ -14,21 +14,21 @@ def flip_needles(points, triangles, which, mended):
 
     The new pair fills the very area of the old one. Both belong to the polygon of the neighbour across, so no edge of the
     caller's is lost but the one that the needle's two other edges lie along. What cannot be flipped (an open longest edge,
-    an edge that exists already) stays.
+    an edge that exists already) stays. Flips within one polygon only better the way it was cut and go untold.
     """
     triangles, which = triangles.copy(), which.copy()
-    flipped = 0
+    told = 0
     for _ in range(20):
         height, longest = heights(points, triangles)
         needles = np.flatnonzero(height < FLAT)
         if not len(needles):
             break
-        done = flip_once(points, triangles, which, needles, longest)
-        flipped += done
+        done, crossing = flip_once(points, triangles, which, needles, longest)
+        told += crossing
         if not done:
             break
-    if flipped:
-        mended.append(f"{number(flipped, 'triangle')} without height replaced by cutting the face beside.")
+    if told:
+        mended.append(f"{number(told, 'triangle')} without height replaced by cutting the face beside.")
     left = int((heights(points, triangles)[0] < FLAT).sum())
     if left:
         mended.append(f"{number(left, 'triangle')} without height left as they are.")
@@ -45,12 +45,12 @@ def heights(points, triangles):
 
 
 def flip_once(points, triangles, which, needles, longest):
-    """Flip as many needles as touch nobody else's flip, in place; returns how many."""
+    """Flip as many needles as touch nobody else's flip, in place; (how many, how many of them across a polygon's edge)."""
     surface = Surface(points, triangles)
     edge = surface.triangle_edges[needles, longest[needles]]
     sides = surface.edge_triangles[edge]
     across = np.where(sides[:, 0] == needles, sides[:, 1], sides[:, 0])
-    busy, made, done = set(), set(), 0
+    busy, made, done, within = set(), set(), 0, 0
     for t, o, k, e in zip(needles.tolist(), across.tolist(), longest[needles].tolist(), edge.tolist(), strict=True):
         if o < 0 or t in busy or o in busy:
             continue
@@ -63,9 +63,10 @@ def flip_once(points, triangles, which, needles, longest):
         if heights(points, pair)[0].min() <= heights(points, triangles[[t, o]])[0].min():
             continue
         triangles[t], triangles[o] = pair
+        within += which[t] == which[o]
         which[t] = which[o]
         around = set(surface.edge_triangles[surface.triangle_edges[[t, o]]].ravel().tolist())
         busy |= around - {-1}
         made.add((min(tip, c), max(tip, c)))
         done += 1
-    return done
+    return done, done - within

@@ -29,27 +29,45 @@ def save(pattern, folder, kinds=tuple(FILES), paper="roll"):
         raise WishError(f"kinds: {unknown[0]!r} is not a document the sheets can write; choose from {', '.join(FILES)}.")
     if paper not in pdf.PAPERS:
         raise WishError(f"paper: {paper!r} is not known; choose from {', '.join(pdf.PAPERS)}.")
+    folder = Path(folder)
+    blocked = [FILES[kind] for kind in kinds if (folder / FILES[kind]).is_dir()]
+    if blocked:
+        raise WishError(f"{folder / blocked[0]} is a folder, where a document is to be written. Choose another folder.")
     drafts = draft(pattern)
     sheets = lay(pattern, drafts)
     summary = summary_of(pattern, drafts, sheets)
     write = {
         "pdf": lambda: pdf.write(pattern, drafts, sheets, summary, paper),
-        "svg": lambda: svg.write(pattern, drafts, sheets),
+        "svg": lambda: svg.write(pattern, sheets),
         "json": lambda: data.write(pattern, drafts, summary),
         "html": lambda: html.write(pattern, sheets, summary),
     }
-    return _put(Path(folder), {FILES[kind]: write[kind]() for kind in kinds})
+    return _put(folder, {FILES[kind]: write[kind]() for kind in kinds})
 
 
 def _put(folder, contents):
-    """Whole files or none: write all into a temporary neighbour on the same disk, then move each into place."""
-    folder.mkdir(parents=True, exist_ok=True)
-    waiting = Path(tempfile.mkdtemp(prefix=f".{folder.name}-", dir=folder.parent))
+    """Whole files or none: write all beside the folder, then change them for the old ones; put those back if that fails."""
+    changed = []
+    waiting = None
     try:
+        folder.mkdir(parents=True, exist_ok=True)
+        waiting = Path(tempfile.mkdtemp(prefix=f".{folder.name}-", dir=folder.parent))
+        before = waiting / "before"
+        before.mkdir()
         for name, body in contents.items():
             (waiting / name).write_bytes(body)
         for name in contents:
+            if (folder / name).exists():
+                os.replace(folder / name, before / name)
+            changed.append(name)
             os.replace(waiting / name, folder / name)
+    except OSError as error:
+        for name in changed:
+            (folder / name).unlink(missing_ok=True)
+            if (before / name).exists():
+                os.replace(before / name, folder / name)
+        raise WishError(f"{folder}: sheets cannot be written there ({error.strerror}). Choose another folder.") from error
     finally:
-        shutil.rmtree(waiting, ignore_errors=True)
+        if waiting:
+            shutil.rmtree(waiting, ignore_errors=True)
     return [folder / name for name in contents]

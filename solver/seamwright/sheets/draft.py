@@ -125,8 +125,9 @@ def _heads(pattern, order):
         grain = "any direction of the goods"
     else:
         grain = "warp along the arrow"
+    allowance = f"{goods.allowance * 1000:g} mm allowance included" if goods.allowance else "no allowance"
     full = [piece.name, f"{pattern.form.name}, piece {numbered}, cut {QUANTITY}", f"{goods.name}, face side up",
-            f"{goods.allowance * 1000:g} mm allowance included, scale 1:1", grain]
+            f"{allowance}, scale 1:1", grain]
     if pattern.version:
         full.append(f"revision {pattern.version}")
     return [full, [piece.name, f"{numbered}, cut {QUANTITY}"], [piece.name], [str(order + 1)]]

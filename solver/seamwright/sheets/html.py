@@ -69,7 +69,7 @@ def _picture(pattern, sheets, reach):
         f'<svg width="{table.width:.0f}" viewBox="0 0 {table.width:.1f} {table.height:.1f}" '
         'role="img" aria-label="The flat pieces, coloured by stretch">',
         '<defs><pattern id="hatch" width="6" height="6" patternUnits="userSpaceOnUse" patternTransform="rotate(45)">'
-        '<path d="M0 0V6" stroke="#000000" stroke-width="1.6"/></pattern></defs>',
+        '<path d="M1 0V6" stroke="#FFFFFF" stroke-width="2"/><path d="M1 0V6" stroke="#000000"/></pattern></defs>',
     ]
     size = max(4.0, min(14.0, table.width / 60))
     for sheet, top in zip(sheets, table.tops, strict=True):

@@ -20,7 +20,10 @@ HEAD = 1.8
 """Height of the piece's name over that of the lines under it."""
 REPEAT = 400.0
 """A seam's name is repeated about every so many mm."""
-ANGLES = np.arange(0, 180, 15.0)
+ANGLES = (0.0, 15.0, -15.0, 30.0, -30.0, 45.0, -45.0, 60.0, -60.0, 75.0, -75.0, 90.0)
+"""Degrees that a piece's lettering may be turned by, the most level first."""
+LEVEL_FROM = 4.0
+"""Level lettering of this height in mm is better than larger lettering that is turned."""
 
 
 def piece_marks(area, heads, grain_length):
@@ -69,17 +72,16 @@ def _place_block(area, lines, sizes):
         return None
     centres = _spots(area)
     shapely.prepare(area)
-    for size in sizes:
+    level = [(size, 0.0) for size in sizes if size >= LEVEL_FROM]
+    for size, angle in level + [(size, angle) for size in sizes for angle in ANGLES]:
         heights = np.full(len(lines), size)
         if len(lines) > 1:
             heights[0] *= HEAD
         width = max(text_width(text, height) for text, height in zip(lines, heights, strict=True))
         tall = heights.sum() + (LINE_PITCH - 1) * heights[1:].sum()
-        for angle in ANGLES[np.argsort(np.minimum(ANGLES, 180 - ANGLES), kind="stable")]:
-            fits = shapely.contains_properly(area, shapely.polygons(boxes(centres, width, tall, angle)))
-            if fits.any():
-                turned = angle if angle <= 90 else angle - 180
-                return _stack(lines, heights, centres[np.argmax(fits)], turned, tall)
+        fits = shapely.contains_properly(area, shapely.polygons(boxes(centres, width, tall, angle)))
+        if fits.any():
+            return _stack(lines, heights, centres[np.argmax(fits)], angle, tall)
     return None
 
 

@@ -51,8 +51,8 @@ def summary_of(pattern, drafts, sheets):
 
 
 def notes(pattern, drafts):
-    """Sentences the maker should read: the form's mending, the pattern's own, and what the sheets could not do."""
-    found = [*getattr(pattern.form, "mended", []), *pattern.notes]
+    """Sentences the maker should read: the pattern's own, and what the sheets could not do."""
+    found = list(pattern.notes)
     large = too_large(drafts, pattern.goods)
     if large:
         found.append(f"Larger than the goods as they lie: {', '.join(large)}. Join goods, or ask for smaller pieces.")

@@ -11,14 +11,14 @@ STYLE = {  # stroke colour, width in mm, dashes
 }
 
 
-def write(pattern, drafts, sheets):
+def write(pattern, sheets):
     """Bytes of pattern.svg. Sheets of goods stand under one another, each framed when there are several."""
     table = stacked(sheets)
     lines = [
         '<?xml version="1.0" encoding="UTF-8"?>',
         f'<svg xmlns="http://www.w3.org/2000/svg" width="{_n(table.width)}mm" height="{_n(table.height)}mm" '
         f'viewBox="0 0 {_n(table.width)} {_n(table.height)}">',
-        f"<title>{tidy(pattern.form.name)}: {len(drafts)} pieces for {tidy(pattern.goods.name)}, 1 unit = 1 mm</title>",
+        f"<title>{tidy(pattern.form.name)}: pieces for {tidy(pattern.goods.name)}, 1 unit = 1 mm</title>",
     ]
     for layer in LAYERS:
         colour, width, dashes = STYLE[layer]

@@ -30,7 +30,10 @@ class Tile:
 
 @dataclass(frozen=True)
 class Grid:
-    """The tiles of a table: page (width, height) in mm, how many columns and rows, the tiles that are not blank."""
+    """The tiles of a table: page (width, height) in mm, columns and rows, and the tiles needed.
+
+    A blank tile is left out unless it lies inside a piece. crosses (k, 2): where neighbours are matched.
+    """
 
     page: tuple
     columns: int
@@ -71,12 +74,14 @@ def _grid(table, page):
     pitch = window - OVERLAP
     size = np.array([table.width, table.height])
     columns, rows = (max(1, ceil(count)) for count in (size - OVERLAP) / pitch)
+    pieces = [shapely.Polygon(stroke.points) for _, stroke in table.strokes if stroke.layer == "cut"]
     tiles = []
     for row in range(rows):
         for column in range(columns):
             corner = np.array([column, row]) * pitch
             tile = Tile(f"{column_name(column)}{row + 1}", (*corner, *(corner + window)))
-            if any(clipped(stroke, tile.window) for _, stroke in table.strokes):
+            drawn = any(clipped(stroke, tile.window) for _, stroke in table.strokes)
+            if drawn or shapely.intersects(pieces, shapely.box(*tile.window)).any():
                 tiles.append(tile)
     between = [np.arange(1, count) * step + OVERLAP / 2 for count, step in zip((columns, rows), pitch, strict=True)]
     middles = [np.arange(count) * step + size / 2 for count, step, size in zip((columns, rows), pitch, window, strict=True)]

@@ -11,6 +11,8 @@ from .marks import piece_marks, seam_marks
 from .notches import PEN_TICK, SLIT_DEPTH, seam_notches, takes_slits
 
 DOWN = np.array([1.0, -1.0])
+LEAST_EASE = 1.0
+"""Millimetres by which one side of a seam must be longer before its name says so."""
 QUANTITY = 1
 """Every piece is cut once: mirrored twins are pieces of their own."""
 
@@ -33,6 +35,11 @@ class Draft:
     letterings: list
     unmarked: list
     crossed: bool
+
+    @property
+    def centre(self):
+        """(2,) the roomiest point inside the stitch line."""
+        return np.array(shapely.maximum_inscribed_circle(self.area, tolerance=1.0).coords[0])
 
     @property
     def bounds(self):
@@ -61,7 +68,8 @@ def draft(pattern):
         owners = [name for name, _ in seam.sides if name is not None]
         for side, name in enumerate(owners):
             mate = None if seam.open else owners[1 - side]
-            sides[names[name]].append((seam, mate, lines[side], normals[side]))
+            texts = _seam_texts(seam, name, mate, side)
+            sides[names[name]].append((seam.name, texts, lines[side], normals[side]))
             if not seam.open:
                 notches[names[name]] += ticks[side]
     return [_draft_piece(pattern, order, edges[order], notches[order], sides[order]) for order in range(len(edges))]
@@ -105,12 +113,12 @@ def _draft_piece(pattern, order, edge, notches, sides):
         unmarked.append("the grain line (it is upright on the sheet)")
     else:
         strokes += _arrow(grain, both_ways=not goods.nap)
-    for seam, mate, line, normals in sides:
+    for seam, texts, line, normals in sides:
         strokes += _dots(line)
-        placed, free = seam_marks(free, line, -normals, _seam_texts(seam, piece.name, mate), _length(line))
+        placed, free = seam_marks(free, line, -normals, texts)
         letterings += placed
         if not placed:
-            unmarked.append(f"seam {seam.name}")
+            unmarked.append(f"seam {seam}")
     crossed = not shapely.LinearRing(edge.stitch).is_simple
     return Draft(piece.name, order + 1, len(pattern.pieces), area, cut, notches, strokes, letterings, unmarked, crossed)
 
@@ -129,16 +137,17 @@ def _heads(pattern, order):
     full = [piece.name, f"{pattern.form.name}, piece {numbered}, cut {QUANTITY}", f"{goods.name}, face side up",
             f"{allowance}, scale 1:1", grain]
     if pattern.version:
-        full.append(f"revision {pattern.version}")
+        full.append(f"seamwright {pattern.version}")
     return [full, [piece.name, f"{numbered}, cut {QUANTITY}"], [piece.name], [str(order + 1)]]
 
 
-def _seam_texts(seam, name, mate):
+def _seam_texts(seam, name, mate, side):
+    """What may stand beside one side of a seam, fullest first; the longer side says how much is eased in."""
     if seam.open:
         return [f"{seam.name}: hem", seam.name]
-    if seam.dart:
-        return [f"{seam.name}: dart", seam.name]
-    return [f"{seam.name} to {'itself' if mate == name else mate}", seam.name]
+    text = f"{seam.name}: dart" if seam.dart else f"{seam.name} to {'itself' if mate == name else mate}"
+    longer = (seam.lengths[side] - seam.lengths[1 - side]) * 1000
+    return [f"{text}, ease in {longer:.1f} mm"] * (longer >= LEAST_EASE) + [text, seam.name]
 
 
 def _ticks(notches, cut, allowance, slits):
@@ -174,7 +183,3 @@ def _dots(line):
     if np.allclose(line[0], line[-1]):
         return []
     return [Stroke("marks", corners, True) for corners in boxes(line[[0, -1]], 1.6, 1.6, 45.0)]
-
-
-def _length(line):
-    return float(np.linalg.norm(np.diff(line, axis=0), axis=1).sum())

@@ -6,6 +6,7 @@ import numpy as np
 
 from .cautions import CAUTIONS
 from .colours import piece_colour, stretch_colour
+from .draft import DOWN
 from .lettering import text_width
 from .svg import path_data, tidy
 from .table import stacked
@@ -75,16 +76,15 @@ def _picture(pattern, sheets, reach):
     for sheet, top in zip(sheets, table.tops, strict=True):
         for draft, offset in sheet.pieces:
             piece = pattern.pieces[draft.number - 1]
-            corners = (piece.flat * [1000, -1000] + offset + [0, top])[piece.triangles]
-            outline = (piece.flat[piece.outline] * [1000, -1000]) + offset + [0, top]
+            corners = (piece.flat * 1000 * DOWN + offset + [0, top])[piece.triangles]
+            outline = piece.flat[piece.outline] * 1000 * DOWN + offset + [0, top]
             lines.append(f'<g><title>{tidy(piece.name)}: {piece.fit}</title>')
             lines += _coloured(corners, shown_stretch(piece, pattern.goods) / reach)
             beyond = piece.utilisation > 1
             if beyond.any():
                 lines.append(f'<path fill="url(#hatch)" d="{_triangles(corners[beyond])}"/>')
             lines.append(f'<path fill="none" stroke="#000" stroke-width="{size / 12:.2f}" d="{path_data(outline, True)}"/>')
-            spot = draft.area.representative_point()
-            x, y = np.array([spot.x, -spot.y]) + offset + [0, top]
+            x, y = draft.centre * DOWN + offset + [0, top]
             width = text_width(piece.name, size) + 0.6 * size
             lines.append(f'<rect x="{x - width / 2:.1f}" y="{y - 0.7 * size:.1f}" width="{width:.1f}" '
                          f'height="{1.4 * size:.1f}" fill="#FFFFFF" stroke="{piece_colour(draft.number - 1)}" '

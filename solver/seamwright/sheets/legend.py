@@ -4,6 +4,7 @@ import numpy as np
 
 from .cautions import CAUTIONS
 from .colours import piece_colour
+from .draft import DOWN, LEAST_EASE
 from .lettering import printable, text_width
 from .svg import STYLE
 from .table import SQUARE, SQUARE_WORDS, stacked
@@ -110,8 +111,7 @@ def _overview(pdf, sheets, grid, x, y, width, height):
             pdf.polygon((stroke.points * scale + corner).tolist(), style="DF")
     pdf.set_font("Helvetica", size=8)
     for draft, at in ((d, at + [0, top]) for sheet, top in zip(sheets, table.tops, strict=True) for d, at in sheet.pieces):
-        spot = draft.area.representative_point()
-        px, py = (np.array([spot.x, -spot.y]) + at) * scale + corner
+        px, py = (draft.centre * DOWN + at) * scale + corner
         words = str(draft.number)
         pdf.text(px - text_width(words, 8 / pdf.k) / 2, py + 1, words)
     for tile in grid.tiles if grid else []:
@@ -135,8 +135,8 @@ def _seam_row(seam):
     if seam["open"]:
         return seam["name"], f"hem of {first or second}", f"{a:.0f}", "", ""
     joins = f"{first}, a dart" if seam["dart"] else f"{first} to itself" if first == second else f"{first} to {second}"
-    longer, ease = (second if b > a else first), abs(b - a)
-    return seam["name"], joins, f"{a:.1f}", f"{b:.1f}", f"{ease:.1f} mm of {longer}" if ease > 0.5 else ""
+    ease = f"{abs(b - a):.1f} mm of the {'second' if b > a else 'first'} side" if abs(b - a) >= LEAST_EASE else ""
+    return seam["name"], joins, f"{a:.1f}", f"{b:.1f}", ease
 
 
 def _heading(pdf, words, size):

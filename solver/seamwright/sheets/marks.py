@@ -49,13 +49,13 @@ def piece_marks(area, heads, grain_length):
     return placed, grain, free, passed
 
 
-def seam_marks(free, line, inward, texts, length):
+def seam_marks(free, line, inward, texts):
     """Write a seam's name along its stitch line (q, 2), on the side of `inward` (q - 1, 2), within the free area.
 
     texts: fullest first. Returns (letterings, the free area that is left); no lettering where nothing fits.
     """
     places = path_places(line)
-    count = max(1, round(length / REPEAT))
+    count = max(1, round(places[-1] / REPEAT))
     letterings = []
     for part in range(count):
         middle, reach = (part + 0.5) / count, 0.45 / count

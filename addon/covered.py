@@ -1,0 +1,84 @@
+"""The covered copy: a mesh of its own beside the form, with the seams cut into its faces and each piece in its colour."""
+
+import bpy
+import numpy as np
+
+from . import marks, names
+from .lay import lay
+from .read import positions
+
+ASIDE = 1.2
+"""The copy stands this many of the form's widths away, along the world's X."""
+
+COLOURS = ("#E69F00", "#56B4E9", "#009E73", "#F0E442", "#0072B2", "#D55E00", "#CC79A7", "#999999")
+"""Okabe and Ito's colours, told apart by the colour-blind too."""
+
+
+def make(thing, pattern, scene, old=None):
+    """(object, metres across its UVs): the covered copy of `thing`, new or, where `old` is one, in its place."""
+    mesh, across = mesh_of(pattern, scene.unit_settings.scale_length)
+    centre = np.array(thing.matrix_world.translation)
+    mesh.vertices.foreach_set("co", (positions(mesh) - centre).astype(np.float32).ravel())
+    mesh.update()
+    if old is not None:
+        worn, old.data = old.data, mesh
+        if not worn.users:
+            bpy.data.meshes.remove(worn)
+        return old, across
+    copy = bpy.data.objects.new(mesh.name, mesh)
+    for collection in thing.users_collection or (scene.collection,):
+        if collection.library is None:
+            collection.objects.link(copy)
+    if not copy.users_collection:
+        scene.collection.objects.link(copy)
+    width = np.ptp(positions(mesh)[:, 0])
+    copy.location = centre + (ASIDE * width, 0.0, 0.0)
+    return copy, across
+
+
+def mesh_of(pattern, scale_length):
+    """(mesh, metres across its UVs) of the pieces, welded where they are sewn; in world coordinates, in scene units."""
+    stacked = np.concatenate([piece.points for piece in pattern.pieces])
+    starts = np.cumsum([0, *(len(piece.points) for piece in pattern.pieces)])[:-1]
+    points, weld = np.unique(stacked, axis=0, return_inverse=True)  # pieces agree to the last bit along seams
+    weld = weld.ravel()
+    stacked_triangles = [piece.triangles + start for piece, start in zip(pattern.pieces, starts, strict=True)]
+    triangles = weld[np.concatenate(stacked_triangles)]
+    mesh = bpy.data.meshes.new(f"{pattern.form.name} covered")
+    mesh.from_pydata((points / scale_length).astype(np.float32), (), triangles)
+    places, across = lay(pattern)
+    uvs = [((piece.flat + place) / across)[piece.triangles].reshape(-1, 2)
+           for piece, place in zip(pattern.pieces, places, strict=True)]
+    marks.set_uvs(mesh, np.concatenate(uvs))
+    piece_of = np.repeat(np.arange(len(pattern.pieces)), [len(piece.triangles) for piece in pattern.pieces])
+    marks.set_attribute(mesh, names.PIECE, "INT", piece_of)
+    marks.set_attribute(mesh, names.STRETCH, "FLOAT", np.concatenate([marks.worst_of(p.stretch) for p in pattern.pieces]))
+    marks.set_seams(mesh, _sewn(mesh, pattern, weld, starts))
+    _colour(mesh, piece_of)
+    return mesh, across
+
+
+def _sewn(mesh, pattern, weld, starts):
+    """(e,) bool: edges on an outline that have a face on both sides."""
+    outlines = [weld[piece.outline + start] for piece, start in zip(pattern.pieces, starts, strict=True)]
+    edges = np.concatenate([np.column_stack([around, np.roll(around, -1)]) for around in outlines])
+    count = len(mesh.vertices)
+    keys, uses = np.unique(np.sort(edges, axis=1) @ (count, 1), return_counts=True)
+    ends = np.empty(2 * len(mesh.edges), np.int32)
+    mesh.edges.foreach_get("vertices", ends)
+    return np.isin(np.sort(ends.reshape(-1, 2), axis=1) @ (count, 1), keys[uses > 1])
+
+
+def _colour(mesh, piece_of):
+    for number, colour in enumerate(COLOURS[:piece_of.max() + 1], 1):
+        name = f"Seamwright {number}"
+        material = bpy.data.materials.get(name) or bpy.data.materials.new(name)
+        material.diffuse_color = [_linear(int(colour[k:k + 2], 16) / 255) for k in (1, 3, 5)] + [1.0]
+        mesh.materials.append(material)
+    mesh.attributes.new("material_index", "INT", "FACE")
+    mesh.attributes["material_index"].data.foreach_set("value", (piece_of % len(COLOURS)).astype(np.int32))
+
+
+def _linear(value):
+    """Linear light of an sRGB value (IEC 61966-2-1)."""
+    return value / 12.92 if value <= 0.04045 else ((value + 0.055) / 1.055) ** 2.4

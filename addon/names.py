@@ -1,0 +1,25 @@
+"""Every identifier the add-on leaves in the host or in a file, declared once."""
+
+COMMAND = "seamwright"
+TAB = "Seamwright"
+
+# on objects
+PROPERTY = "seamwright"
+
+# on meshes
+UV_MAP = "Seamwright"
+PIECE = "seamwright_piece"
+STRETCH = "seamwright_stretch"
+
+# operators
+COVER = "seamwright.cover"
+STOP = "seamwright.stop"
+CHECK = "seamwright.check"
+SAVE = "seamwright.save_sheets"
+CLEAR = "seamwright.clear"
+
+# panels and lists
+FORM_PANEL = "SEAMWRIGHT_PT_form"
+WISHES_PANEL = "SEAMWRIGHT_PT_wishes"
+FIT_PANEL = "SEAMWRIGHT_PT_fit"
+PIECE_LIST = "SEAMWRIGHT_UL_pieces"

@@ -1,0 +1,48 @@
+"""Save the sheets of the form's pattern into a folder."""
+
+from pathlib import Path
+
+import bpy
+
+from .. import names, target
+from ..job import load
+
+
+class SEAMWRIGHT_OT_save_sheets(bpy.types.Operator):
+    """Write the cutting sheets of this form into a folder"""
+
+    bl_idname = names.SAVE
+    bl_label = "Save Sheets"
+
+    directory: bpy.props.StringProperty(name="Folder", subtype="DIR_PATH")
+
+    @classmethod
+    def poll(cls, context):
+        """A form whose pattern is of this session."""
+        thing = context.object
+        if thing is None or not target.group(thing).result.pieces:
+            cls.poll_message_set("Cover the form first")
+            return False
+        if not Path(target.group(thing).result.path).is_file():
+            cls.poll_message_set("Cover the form again: patterns are kept while the application runs")
+            return False
+        return True
+
+    def invoke(self, context, event):
+        """Ask for the folder."""
+        if not self.directory:
+            beside = bpy.path.abspath("//") or str(Path.home())
+            self.directory = str(Path(beside) / f"{context.object.name} sheets")
+        context.window_manager.fileselect_add(self)
+        return {"RUNNING_MODAL"}
+
+    def execute(self, context):
+        """Write them."""
+        pattern = load(target.group(context.object).result.path)
+        try:
+            paths = pattern.save(bpy.path.abspath(self.directory))
+        except (ValueError, OSError) as error:
+            self.report({"ERROR"}, f"{context.object.name}: the sheets could not be written. {error}")
+            return {"CANCELLED"}
+        self.report({"INFO"}, f"{len(paths)} files written to {self.directory}")
+        return {"FINISHED"}

@@ -1,0 +1,69 @@
+"""Reads a form out of the scene: the evaluated mesh, placed in the world, in metres."""
+
+from dataclasses import dataclass
+
+import numpy as np
+
+
+@dataclass(frozen=True)
+class Reading:
+    """One object's surface as the solver wants it.
+
+    points (n, 3) metres; corners (c,) point indices of all faces, face after face; sizes (f,) corners of each face.
+    """
+
+    name: str
+    points: np.ndarray
+    corners: np.ndarray
+    sizes: np.ndarray
+
+    @property
+    def faces(self):
+        """(m, 3) array where every face is a triangle, else a list of corner lists."""
+        if (self.sizes == 3).all():
+            return self.corners.reshape(-1, 3)
+        return np.split(self.corners, np.cumsum(self.sizes)[:-1])
+
+    def same(self, other):
+        """True where `other` is the same surface to the last bit."""
+        return (np.array_equal(self.points, other.points) and np.array_equal(self.corners, other.corners)
+                and np.array_equal(self.sizes, other.sizes))
+
+
+def read(thing, scene, depsgraph):
+    """The Reading of object `thing`: modifiers and shape keys applied, in the world, scaled by the scene's units."""
+    evaluated = thing.evaluated_get(depsgraph)
+    mesh = evaluated.to_mesh()
+    try:
+        points = positions(mesh).astype(float)
+        corners, sizes = faces(mesh)
+    finally:
+        evaluated.to_mesh_clear()
+    matrix = np.array(evaluated.matrix_world)
+    points = (points @ matrix[:3, :3].T + matrix[:3, 3]) * scene.unit_settings.scale_length
+    if thing.matrix_world.is_negative:
+        corners = _turned(corners, sizes)
+    return Reading(thing.name, points, corners, sizes)
+
+
+def positions(mesh):
+    """(n, 3) float32 coordinates of the mesh's own space."""
+    points = np.empty((len(mesh.vertices), 3), np.float32)
+    if len(points):
+        mesh.attributes["position"].data.foreach_get("vector", points.ravel())
+    return points
+
+
+def faces(mesh):
+    """(corners (c,), sizes (f,)) of the mesh: point of each corner, face after face, and corners of each face."""
+    corners, sizes = np.empty(len(mesh.loops), np.int32), np.empty(len(mesh.polygons), np.int32)
+    mesh.loops.foreach_get("vertex_index", corners)
+    mesh.polygons.foreach_get("loop_total", sizes)
+    return corners, sizes
+
+
+def _turned(corners, sizes):
+    """Corners with every face running the other way: a mirrored object shows its faces from behind."""
+    ends = np.cumsum(sizes)
+    face = np.repeat(np.arange(len(sizes)), sizes)
+    return corners[ends[face] - 1 - (np.arange(len(corners)) - (ends - sizes)[face])]

@@ -1,0 +1,68 @@
+"""What may be covered, and where the answer goes: one place for the rules, used by the window and the command line."""
+
+import bpy
+import numpy as np
+
+from . import covered, marks, names, read, result
+
+
+class Refused(Exception):
+    """Why this object cannot be covered as it is, as a sentence for the maker."""
+
+
+def is_form(thing):
+    """True for mesh objects that have faces and are no covered copies."""
+    return thing.type == "MESH" and len(thing.data.polygons) > 0 and not group(thing).is_copy
+
+
+def group(thing):
+    """The object's property group (names.PROPERTY)."""
+    return getattr(thing, names.PROPERTY)
+
+
+def check(thing, asked, depsgraph):
+    """Raise Refused where the pattern that is `asked` for could not be laid on the object."""
+    if thing.mode == "EDIT":
+        raise Refused(f"{thing.name}: leave Edit Mode (Tab) first.")
+    if asked["route"] != "edges":
+        return
+    if thing.data.library is not None or thing.data.override_library is not None:
+        raise Refused(f"{thing.name}: its mesh is linked from another file, so no seams can be marked on it. "
+                      "Make it local (Object > Relations > Make Local), or choose route through.")
+    evaluated = thing.evaluated_get(depsgraph)
+    mesh = evaluated.to_mesh()
+    try:
+        same = len(mesh.vertices) == len(thing.data.vertices) and all(
+            np.array_equal(*pair) for pair in zip(read.faces(mesh), read.faces(thing.data), strict=True))
+    finally:
+        evaluated.to_mesh_clear()
+    if not same:
+        raise Refused(f"{thing.name}: its modifiers change the faces, so the seams have no edges to be marked on. "
+                      "Apply the modifiers, or choose route through.")
+
+
+def take_off(thing):
+    """Take the pattern off the object; its wishes stay."""
+    kept, mesh = group(thing).result, thing.data
+    if kept.copy is not None:
+        worn = kept.copy.data
+        bpy.data.objects.remove(kept.copy)
+        if not worn.users:
+            bpy.data.meshes.remove(worn)
+    if names.PIECE in mesh.attributes and mesh.library is None:
+        marks.clear(mesh)
+    result.forget(kept)
+
+
+def lay_in(thing, pattern, path, asked, scene):
+    """Put the pattern, whose file is `path`, into the scene and its figures on the object."""
+    kept, notes = group(thing).result, []
+    if asked["route"] == "edges":
+        kept.copy, kept.across = None, marks.mark(thing.data, pattern)
+        if thing.data.users > 1:
+            notes.append(f"The mesh is shared by {thing.data.users} objects; all of them show these seams.")
+    else:
+        old = kept.copy if kept.copy is not None and kept.copy.name in scene.objects else None
+        kept.copy, kept.across = covered.make(thing, pattern, scene, old)
+        group(kept.copy).is_copy = True
+    result.keep(kept, pattern, path, notes)

@@ -10,7 +10,8 @@ import numpy as np
 
 NEAREST = 1e-4  # a cut keeps this share of the edge away from its ends
 
-# Nodes of a cut face. Two regions: lone corner A, B, C, cut P on AB, cut Q on AC. Three: A, B, C, cuts on AB, BC, CA, middle.
+# Nodes of a cut face. Two regions: lone corner A, B, C, cut P on AB, cut Q on AC.
+# Three: A, B, C, cuts on AB, BC, CA, middle.
 TWO = np.array([[0, 3, 4], [3, 1, 2], [3, 2, 4]])
 THREE = np.array([[0, 3, 6], [0, 6, 5], [1, 4, 6], [1, 6, 3], [2, 5, 6], [2, 6, 4]])
 TWO_SEAMS = np.array([[3, 4]])

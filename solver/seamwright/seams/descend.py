@@ -16,7 +16,7 @@ ROUND = 8  # steps between two redistancings
 
 @dataclass
 class Descent:
-    """Where the flow ended: fields (n, K), cut, cost; steps taken; converged (False: the steps ran out); history of totals."""
+    """Where the flow ended: fields (n, K), cut, cost; steps; converged (False: the steps ran out); history of totals."""
 
     fields: np.ndarray
     cut: object
@@ -91,7 +91,8 @@ def _allowed(level, cut, direction, first):
     a, b = level.surface.edges[cut.edge].T
     i, j = cut.labels[a], cut.labels[b]
     rows = np.concatenate([a, b])
-    move = 0.5 * np.abs(direction[rows, np.concatenate([i, i])] - direction[rows, np.concatenate([j, j])]).max(initial=1e-300)
+    own, other = np.concatenate([i, i]), np.concatenate([j, j])
+    move = 0.5 * np.abs(direction[rows, own] - direction[rows, other]).max(initial=1e-300)
     limit = FARTHEST * level.edge_length / move
     return min(limit, 0.5 * level.edge_length / move) if first else min(limit, 1.0)
 

@@ -3,8 +3,8 @@
 On the cut surface the least-stretch conformal flattening has log scale u with Laplace u = K, u = 0 on seams and open edges
 (Springborn, Schroeder, Pinkall 2008; Sawhney, Crane 2018 for the zero boundary). The distortion is the integral of j(u).
 The gradient differentiates the sub-triangles' energies with respect to the cut places (no estimate of normal derivatives):
-for nodal values u, p and F = area grad u . grad p, dF/dx_k = area ((grad u . grad p) grad phi_k - (grad phi_k . grad p) grad u
-- (grad phi_k . grad u) grad p).
+for nodal values u, p and F = area grad u . grad p,
+dF/dx_k = area ((grad u . grad p) grad phi_k - (grad phi_k . grad p) grad u - (grad phi_k . grad u) grad p).
 """
 
 from dataclasses import dataclass
@@ -55,18 +55,17 @@ class Cost:
 def evaluate(level, cut, thrift, energy, weights=None, gradient=True):
     """Cost of a Cut on a Level. weights (K,) factor on each region's distortion, default 1."""
     free, labels = level.free, cut.labels
-    kinds = [(kind, *seam_nodes(level, cut, kind)) for kind in (cut.two, cut.three) if len(kind.face)]
+    kinds = [Pieces.of(level, cut, kind) for kind in (cut.two, cut.three) if len(kind.face)]
     mass = level.mass.copy()
     changed, change = [], []
-    for kind, nodes, whole in kinds:
-        stiffness, left = _corner_parts(kind, nodes)
-        np.subtract.at(mass, whole, level.areas[kind.face, None] / 3)
-        np.add.at(mass, whole, left)
-        local = np.zeros_like(stiffness)
-        rows = np.arange(len(kind.face))[:, None, None]
-        local[rows, kind.corners[:, :, None], kind.corners[:, None, :]] = stiffness
-        changed.append(kind.face)
-        change.append(local - level.stiffness[kind.face])
+    for pieces in kinds:
+        face, corners = pieces.kind.face, pieces.kind.corners
+        np.add.at(mass, pieces.whole, pieces.corner_mass() - level.areas[face, None] / 3)
+        local = np.zeros((len(face), 3, 3))
+        rows = np.arange(len(face))[:, None, None]
+        local[rows, corners[:, :, None], corners[:, None, :]] = pieces.corner_stiffness()
+        changed.append(face)
+        change.append(local - level.stiffness[face])
     changed = np.concatenate(changed) if changed else np.zeros(0, dtype=np.int64)
     change = np.concatenate(change) if change else np.zeros((0, 3, 3))
     factor = Factor(level.matrix(changed, change))
@@ -89,10 +88,10 @@ def evaluate(level, cut, thrift, energy, weights=None, gradient=True):
             p[free] = factor.solve((weight * mass * rise(u))[free])
         per_mass = per_point + p * level.density
     length, slope = 0.0, np.zeros(len(level.surface.edges)) if gradient else None
-    for kind, nodes, whole in kinds:
-        length += _lengths(level, cut, kind, nodes, thrift, slope)
+    for pieces in kinds:
+        length += _lengths(level, cut, pieces.kind, pieces.nodes, thrift, slope)
         if gradient:
-            _slopes(level, kind, nodes, whole, u, p, per_mass, share, slope)
+            _slopes(level, pieces, u, p, per_mass, share, slope)
     total = distortion + thrift * length
     return Cost(distortion, length, total, u, None if slope is None else slope[cut.edge])
 
@@ -118,19 +117,50 @@ def seam_nodes(level, cut, kind):
     return nodes, whole
 
 
-def _corner_parts(kind, nodes):
-    """(stiffness (k, 3, 3), mass (k, 3)) of a kind's corners after the cut."""
-    stiffness = np.zeros((len(kind.face), 3, 3))
-    mass = np.zeros((len(kind.face), 3))
-    for triangle in kind.table:
-        area, local, _ = triangle_stiffness(nodes[:, triangle])
-        for i, node in enumerate(triangle):
-            if node < 3:
-                mass[:, node] += area / 3
-                for j, other in enumerate(triangle):
-                    if other < 3:
-                        stiffness[:, node, other] += local[:, i, j]
-    return stiffness, mass
+@dataclass
+class Pieces:
+    """The sub-triangles of one kind of cut face: kind, nodes (k, q, 2), whole (k, 3) points at the corners, area (k, r),
+    gradients (k, r, 3, 2) of the linear elements, stiffness (k, r, 3, 3)."""
+
+    kind: object
+    nodes: np.ndarray
+    whole: np.ndarray
+    area: np.ndarray
+    gradients: np.ndarray
+    stiffness: np.ndarray
+
+    @classmethod
+    def of(cls, level, cut, kind):
+        """The sub-triangles of `kind` as the cut places them."""
+        nodes, whole = seam_nodes(level, cut, kind)
+        k, r = len(nodes), len(kind.table)
+        area, stiffness, gradients = triangle_stiffness(nodes[:, kind.table].reshape(-1, 3, 2))
+        return cls(kind, nodes, whole, area.reshape(k, r), gradients.reshape(k, r, 3, 2), stiffness.reshape(k, r, 3, 3))
+
+    def corner_stiffness(self):
+        """(k, 3, 3) of the face's own corners; what a cut parts is zero."""
+        spread = _incidence(self.kind)[:, :, :3]
+        both = np.einsum("ria,rjb->rijab", spread, spread).reshape(-1, 9)
+        return (self.stiffness.reshape(len(self.nodes), -1) @ both).reshape(-1, 3, 3)
+
+    def corner_mass(self):
+        """(k, 3) a third of the sub-triangles at each of the face's own corners."""
+        return self.area @ (_incidence(self.kind)[:, :, :3].sum(axis=1) / 3)
+
+    def at_nodes(self, values):
+        """(k, r, 3) values (n,) of the points at the sub-triangles' corners, zero at the cuts."""
+        padded = np.zeros(self.nodes.shape[:2])
+        padded[:, :3] = values[self.whole]
+        return padded[:, self.kind.table]
+
+    def gather(self, pull):
+        """(k, q, 2) at the nodes: sums of pulls (k, r, 3, 2) at the sub-triangles' corners."""
+        return np.tensordot(pull, _incidence(self.kind), axes=([1, 2], [0, 1])).transpose(0, 2, 1)
+
+
+def _incidence(kind):
+    """(r, 3, q): 1 where corner i of sub-triangle r is node q."""
+    return (kind.table[:, :, None] == np.arange(kind.table.max() + 1)).astype(float)
 
 
 def cut_ends(kind):
@@ -149,22 +179,16 @@ def _pull(level, kind, nodes, pull, slope):
     np.add.at(slope, kind.edges, sign * (cuts * along).sum(axis=2))
 
 
-def _slopes(level, kind, nodes, whole, u, p, per_mass, share, slope):
-    count = nodes.shape[1]
-    value = {name: np.zeros((len(nodes), count)) for name in ("u", "p", "c")}
-    for name, source in (("u", u), ("p", p), ("c", per_mass)):
-        value[name][:, :3] = source[whole]
-    pull = np.zeros_like(nodes)
-    for triangle in kind.table:
-        area, _, rises_ = triangle_stiffness(nodes[:, triangle])
-        grad_u = np.einsum("ki,kid->kd", value["u"][:, triangle], rises_)
-        grad_p = np.einsum("ki,kid->kd", value["p"][:, triangle], rises_)
-        inner = value["c"][:, triangle].sum(axis=1) / 3 - share * (grad_u * grad_p).sum(axis=1)
-        for i, node in enumerate(triangle):
-            phi = rises_[:, i]
-            turn = (phi * grad_p).sum(1)[:, None] * grad_u + (phi * grad_u).sum(1)[:, None] * grad_p
-            pull[:, node] += area[:, None] * (inner[:, None] * phi + share * turn)
-    _pull(level, kind, nodes, pull, slope)
+def _slopes(level, pieces, u, p, per_mass, share, slope):
+    """Adds the distortion's gradient by the cut places into slope (e,)."""
+    rise = pieces.gradients
+    grad_u = np.einsum("kri,krid->krd", pieces.at_nodes(u), rise)
+    grad_p = np.einsum("kri,krid->krd", pieces.at_nodes(p), rise)
+    inner = pieces.at_nodes(per_mass).sum(axis=2) / 3 - share * (grad_u * grad_p).sum(axis=2)
+    along_u, along_p = ((rise * grad[:, :, None]).sum(axis=3)[..., None] for grad in (grad_u, grad_p))
+    turn = along_p * grad_u[:, :, None] + along_u * grad_p[:, :, None]
+    pull = pieces.area[:, :, None, None] * (inner[:, :, None, None] * rise + share * turn)
+    _pull(level, pieces.kind, pieces.nodes, pieces.gather(pull), slope)
 
 
 def _lengths(level, cut, kind, nodes, thrift, slope):

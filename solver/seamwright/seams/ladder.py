@@ -35,7 +35,7 @@ class Ladder:
         self.owners.append(np.arange(n))
 
     def lift(self, fields, source, target):
-        """(N, K) fields on level `target` from fields on level `source`: carried over by clusters, then their borders rounded."""
+        """(N, K) fields on level `target` from those on level `source`: carried by clusters, then their borders rounded."""
         spread = fields[self.owners[source]]
         owner = self.owners[target]
         count = len(self.levels[target].surface.points)

@@ -107,7 +107,7 @@ def triangle_stiffness(corners):
     opposite = np.stack([c - b, a - c, b - a], axis=1)
     gradients = np.stack([-opposite[:, :, 1], opposite[:, :, 0]], axis=2) / np.maximum(twice, 1e-30)[:, None, None]
     area = 0.5 * twice
-    return area, area[:, None, None] * np.einsum("kid,kjd->kij", gradients, gradients), gradients
+    return area, area[:, None, None] * (gradients @ gradients.transpose(0, 2, 1)), gradients
 
 
 def scaled(surface, area):

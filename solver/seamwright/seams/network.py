@@ -81,7 +81,8 @@ class Network:
 
 
 def trace_chains(surface, marked, nodes=None):
-    """Runs of marked edges (e,) bool as lists of points; cut at points of degree other than two, at open edges, at `nodes`."""
+    """Runs of marked edges (e,) bool as lists of points; cut at points of degree other than two, and at `nodes` (k,), by
+    default the points of open edges."""
     ends = surface.edges[marked]
     n = len(surface.points)
     stop = np.bincount(ends.ravel(), minlength=n) != 2

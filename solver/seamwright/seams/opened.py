@@ -9,7 +9,6 @@ from scipy.sparse import coo_matrix
 from scipy.sparse.csgraph import dijkstra, minimum_spanning_tree
 
 
-
 def opened(network, allowed=None):
     """The Network with seams added so that every piece is a disk. allowed (e,) bool: edges that may become seams."""
     allowed = np.ones(len(network.seam), dtype=bool) if allowed is None else allowed

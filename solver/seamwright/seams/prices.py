@@ -14,7 +14,8 @@ def seam_prices(form, wishes):
         weights = np.asarray(wishes.keep_clear, dtype=float)
         if weights.shape != form.point_of.shape:
             raise WishError(
-                f"keep_clear: {weights.size} weights for a form of {len(form.point_of)} points. Paint the weights on this form."
+                f"keep_clear: {weights.size} weights for a form of {len(form.point_of)} points. "
+                "Paint the weights on this form."
             )
         kept = form.point_of >= 0
         np.maximum.at(price, form.point_of[kept], np.minimum(1 + weights[kept], NEVER))

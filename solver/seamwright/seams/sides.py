@@ -17,7 +17,7 @@ class Side:
 
 @dataclass
 class Joint:
-    """chain (q,) points of the network; left and right Side, right None at an open edge; dart: one end lies inside a piece."""
+    """chain (q,) points of the network; left and right Side, right None at an open edge; dart: one end is inside a piece."""
 
     chain: np.ndarray
     left: Side

@@ -28,7 +28,7 @@ def split_components(surface, labels):
 
 @dataclass
 class Regions:
-    """K regions: euler (K,); pairs (q, 2) of neighbours; border (q,) length; pair_euler (q,) of each pair's union; area (K,)."""
+    """K regions: euler (K,); pairs (q, 2) neighbours; border (q,) length; pair_euler (q,) of their union; area (K,)."""
 
     euler: np.ndarray
     pairs: np.ndarray
@@ -143,7 +143,8 @@ def voronoi(level, count, inside=None, first=None):
     for _ in range(2):
         owner = _distance(graph, seeds)[1]
         total = np.bincount(owner, mass, minlength=count)
-        middle = np.column_stack([np.bincount(owner, mass * points[:, k], minlength=count) for k in range(3)]) / total[:, None]
+        pull = np.column_stack([np.bincount(owner, mass * points[:, k], minlength=count) for k in range(3)])
+        middle = pull / total[:, None]
         off = np.linalg.norm(points - middle[owner], axis=1)
         order = np.lexsort((off, owner))
         seeds = order[np.unique(owner[order], return_index=True)[1]].tolist()

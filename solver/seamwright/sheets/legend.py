@@ -50,14 +50,16 @@ def add_legend(pdf, pattern, sheets, summary, grid):
 
 def _facts(pdf, summary, grid):
     goods, pieces = summary["goods"], len(summary["pieces"])
-    metres = sum(sheet["length_mm"] for sheet in summary["lay"]["sheets"]) / 1000
+    sheets = summary["lay"]["sheets"]
+    metres = f"{sum(sheet['length_mm'] for sheet in sheets) / 1000:.2f} m of goods"
+    used = metres if goods["length_mm"] is None else f"{len(sheets)} x {goods['width_mm']:g} x {goods['length_mm']:g} mm"
     joined = sum(not seam["open"] for seam in summary["seams"])
     facts = [
         f"{pieces} piece{'s' * (pieces != 1)}, {joined} seam{'s' * (joined != 1)}, {summary['seam_metres']:.2f} m of seam"
         + (f", {summary['hem_metres']:.2f} m of hem." if summary["hem_metres"] else "."),
         f"Goods: {goods['name']}, {goods['width_mm']:g} mm wide, {goods['thickness_mm']:g} mm thick.",
         f"Allowance: {goods['allowance_mm']:g} mm, already added.",
-        f"Laid in rows: {metres:.2f} m of goods, yield {summary['lay']['yield']:.0%}.",
+        f"Laid in rows: {used}, yield {summary['lay']['yield']:.0%}.",
         "Fit: " + ("no piece is strained." if summary["fits"] else "STRAINED: " + ", ".join(
             piece["name"] for piece in summary["pieces"] if piece["fit"] == "strained") + "."),
         "Print at 100 % (actual size), never fitted to the page.",

@@ -33,7 +33,8 @@ def summary_of(pattern, drafts, sheets):
         "version": pattern.version,
         "fits": pattern.fits,
         "goods": {
-            "name": goods.name, "width_mm": goods.width * 1000, "thickness_mm": goods.thickness * 1000,
+            "name": goods.name, "width_mm": goods.width * 1000,
+            "length_mm": None if goods.length is None else goods.length * 1000, "thickness_mm": goods.thickness * 1000,
             "allowance_mm": goods.allowance * 1000, "stretch_warp": goods.stretch_warp, "stretch_weft": goods.stretch_weft,
             "ease_in": goods.ease_in,
             "shear_degrees": None if goods.shear is None else [degrees(value) for value in goods.shear],

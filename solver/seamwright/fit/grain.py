@@ -30,7 +30,7 @@ def lay_on_grain(points, triangles, flat, goods, comfort=0.0, wanted=None):
     step = np.pi / DIRECTIONS
     near = step * int(np.argmin([round(used(k * step), 9) for k in range(DIRECTIONS)]))
     best = turn(flat, _least(used_sized, near - step, near + step, 0.01).x)
-    best = best if _rise(points, triangles, best, UP)[1] >= 0 else -best
+    best = best if pull(points, triangles, UP) @ best[:, 1] >= 0 else -best
     return rescale_for(points, triangles, best, goods, comfort)
 
 
@@ -61,15 +61,20 @@ def _least(function, low, high, fineness):
 
 
 def _heading(points, triangles, flat, direction):
-    """The piece turned so that +y runs as the direction does on the form, on the whole."""
-    x, y = _rise(points, triangles, flat, direction)
+    """The piece turned so that `direction` on the form comes to lie along +y, on the whole."""
+    x, y = pull(points, triangles, direction) @ flat
     return turn(flat, np.pi / 2 - np.arctan2(y, x)) if np.hypot(x, y) > 0 else flat
 
 
-def _rise(points, triangles, flat, direction):
-    """(x, y) sum over the flat area of the slope, in the flat, of the form's height along a direction."""
-    height = (points @ np.asarray(direction, dtype=float))[triangles]
-    a, b, c = (flat[triangles[:, k]] for k in range(3))
-    u, v = b - a, c - a
-    du, dv = height[:, 1] - height[:, 0], height[:, 2] - height[:, 0]
-    return 0.5 * np.array([(du * v[:, 1] - dv * u[:, 1]).sum(), (dv * u[:, 0] - du * v[:, 0]).sum()])
+def pull(points, triangles, direction):
+    """(k,) weights: their sum over the flat points is how `direction` (3,) on the form runs in the flat, times the area.
+
+    A hat function's slope along a direction d in a triangle with unit normal n is (n x e) . d over twice the area, e the
+    opposite edge; the part of d that leaves the triangle's plane does not count.
+    """
+    corners = points[triangles]
+    opposite = np.roll(corners, -2, axis=1) - np.roll(corners, -1, axis=1)
+    normal = np.cross(opposite[:, 0], opposite[:, 1])
+    normal /= np.maximum(np.linalg.norm(normal, axis=1, keepdims=True), 1e-300)
+    slope = 0.5 * (np.cross(normal[:, None], opposite) @ np.asarray(direction, dtype=float))
+    return np.bincount(triangles.ravel(), slope.ravel(), len(points))

@@ -5,14 +5,17 @@ from dataclasses import dataclass
 import numpy as np
 
 from ..flat import flatten, overlaps
-from .grain import lay_on_grain
 from .measure import area_quantile, areas, utilisation, warp_weft_shear
+from .shape import relax_for_goods
 
 
 @dataclass
 class Judged:
-    """utilisation of the wished limits on 99.5 % of the area (1 is at the limit), per triangle `each` (t,); flat (n, 2) laid
-    and sized; `crossings`, the pairs of outline sides that cross (empty: no overlap)."""
+    """utilisation of the wished limits on 99.5 % of the area (1 is at the limit), and of each triangle, `each` (t,).
+
+    flat (n, 2), laid, sized and shaped as far as was needed to tell; `crossings`, the pairs of outline sides that cross
+    (empty: no overlap).
+    """
 
     utilisation: float
     each: np.ndarray
@@ -20,9 +23,12 @@ class Judged:
     crossings: list
 
 
-def judge(surface, goods, comfort=0.0, grain=None):
-    """Flatten a disk for any goods, lay it on the grain, size it, and say how much of the goods' limits it uses."""
-    flat = lay_on_grain(surface.points, surface.triangles, flatten(surface).flat, goods, comfort, grain)
+def judge(surface, goods, comfort=0.0, grain=None, stages=1):
+    """Flatten a disk, shape it for the goods with the first `stages` exponents (None: all), and measure the outcome.
+
+    A piece that fits by this fits: more shaping only helps. Stops as soon as it does.
+    """
+    flat = relax_for_goods(surface, flatten(surface).flat, goods, comfort, grain, stages, enough=1.0).flat
     each = utilisation(warp_weft_shear(surface.points, surface.triangles, flat), goods, comfort)
     share = area_quantile(each, areas(surface.points, surface.triangles))
     return Judged(share, each, flat, overlaps(flat, surface.boundary_loops[0]))

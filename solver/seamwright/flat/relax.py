@@ -34,7 +34,7 @@ def relax(rest, flat, energy, tolerance=1e-5, most=300):
     anew when the energy has fallen by a quarter (Liu, Bouaziz, Kavan 2017); two Newton steps on the positive part of the
     Hessian (Smith, de Goes, Kim 2019) when that is slow. Ends when a step promises less than `tolerance` of the energy.
     """
-    state = _State(rest, energy, flat)
+    state = State(rest, energy, flat)
     solver, known_at, pairs = None, np.inf, []
     factorisations = newton_steps = since = 0
     for iteration in range(most):
@@ -49,13 +49,13 @@ def relax(rest, flat, energy, tolerance=1e-5, most=300):
                 factorisations += 1
             direction = -_precondition(state.gradient, pairs, solver)
             since += 1
-        promise = -_dot(state.gradient, direction)
+        promise = -dot(state.gradient, direction)
         if state.value <= FLOOR * rest.total or promise <= tolerance * state.value:
             return Relaxed(state.flat, state.value / rest.total, True, iteration, factorisations, newton_steps)
         flat, gradient = state.flat, state.gradient
         if state.step(direction):
             moved, turned = state.flat - flat, state.gradient - gradient
-            if not by_newton and _dot(moved, turned) > 0:
+            if not by_newton and dot(moved, turned) > 0:
                 pairs = [*pairs[1 - MEMORY:], (moved, turned)]
         elif pairs:
             pairs = []
@@ -66,8 +66,8 @@ def relax(rest, flat, energy, tolerance=1e-5, most=300):
     return Relaxed(state.flat, state.value / rest.total, False, iteration + 1, factorisations, newton_steps)
 
 
-class _State:
-    """Flat points with their energy and gradient, kept together."""
+class State:
+    """Flat points (n,) complex with their maps, energy (`value`, not per area) and gradient, kept together."""
 
     def __init__(self, rest, energy, flat):
         self.rest, self.energy = rest, energy
@@ -85,7 +85,7 @@ class _State:
         alpha, beta = self.maps
         d_alpha, d_beta = self.rest.maps(direction)
         length = min(1.0, 0.9 * first_flip(alpha, beta, d_alpha, d_beta))
-        slope = _dot(self.gradient, direction)
+        slope = dot(self.gradient, direction)
         for _ in range(30):
             maps = alpha + length * d_alpha, beta + length * d_beta
             value = self.rest.area @ self.energy.density(*maps)
@@ -96,22 +96,33 @@ class _State:
             length *= 0.5
         return False
 
-    def newton_direction(self):
+    def newton_direction(self, damping=0.0, held=None):
+        """(n,) complex Newton step on the positive part of the Hessian.
+
+        `damping` is the share of the piece's mean stiffness that every triangle gets besides its own; `held` (n,) complex
+        is a weighted sum of the points that the step may not change.
+        """
         rest = self.rest
         p, zero = rest.slope, np.zeros(len(rest.area))
         rows = np.stack([
             np.stack([p.real, p.imag], 2), np.stack([-p.imag, p.real], 2),
             np.stack([p.real, -p.imag], 2), np.stack([p.imag, p.real], 2)], 1).reshape(len(zero), 4, 6)
         bend = self.energy.second(*self.maps)
-        bend += 1e-8 * np.einsum("tii->t", bend)[:, None, None] * np.eye(4)
+        stiffness = np.einsum("tii->t", bend) / 4
+        bend += (1e-8 * stiffness + damping * (rest.area @ stiffness) / rest.total)[:, None, None] * np.eye(4)
         blocks = rest.area[:, None, None] * (rows.transpose(0, 2, 1) @ bend @ rows)
         at = (2 * rest.triangles[:, :, None] + np.arange(2)).reshape(-1, 6)
         size = 2 * rest.count
         matrix = coo_matrix((blocks.ravel(), (np.repeat(at, 6, axis=1).ravel(), np.tile(at, (1, 6)).ravel())),
                             shape=(size, size)).tocsc()
-        for held in (0, 1):
-            matrix[held, held] *= 2
-        return -Factor(matrix).solve(self.gradient.view(float)).view(complex)
+        for coordinate in (0, 1):
+            matrix[coordinate, coordinate] *= 2
+        factor = Factor(matrix)
+        direction = -factor.solve(self.gradient.view(float)).view(complex)
+        if held is not None:
+            answer = factor.solve(held.view(float)).view(complex)
+            direction -= dot(held, direction) / dot(held, answer) * answer
+        return direction
 
 
 def first_flip(alpha, beta, d_alpha, d_beta):
@@ -129,13 +140,14 @@ def _precondition(gradient, pairs, solver):
     """L-BFGS two-loop product (Nocedal 1980) with the Laplacian's inverse in the middle."""
     left, shares = gradient.copy(), []
     for moved, turned in reversed(pairs):
-        shares.append(_dot(moved, left) / _dot(moved, turned))
+        shares.append(dot(moved, left) / dot(moved, turned))
         left -= shares[-1] * turned
     left = solve_complex(solver, left)
     for (moved, turned), share in zip(pairs, reversed(shares), strict=True):
-        left += (share - _dot(turned, left) / _dot(moved, turned)) * moved
+        left += (share - dot(turned, left) / dot(moved, turned)) * moved
     return left
 
 
-def _dot(a, b):
+def dot(a, b):
+    """Real inner product of complex vectors."""
     return np.vdot(a, b).real

@@ -9,6 +9,8 @@ from seamwright.fit.judge import judge
 from seamwright.fit.measure import area_quantile, areas, stretches, utilisation, warp_weft_shear
 from seamwright.fit.shape import relax_for_goods
 from seamwright.flat import flatten
+from seamwright.flat.flatten import as_complex, as_points
+from seamwright.flat.rest import Rest
 from seamwright.form.surface import Surface
 
 ALIKE = Goods(name="stretches as it eases in", stretch_warp=(0.05, 0.1), stretch_weft=(0.05, 0.1),
@@ -34,7 +36,7 @@ def test_shaping_never_makes_it_worse_and_helps_cloth_most():
     flat = flatten(surface).flat
     area = areas(surface.points, surface.triangles)
     for name, gain in (("canvas", 0.2), ("felt", 0.95), ("jersey", 0.85), ("leather", 0.95)):
-        laid = lay_on_grain(surface.points, surface.triangles, flat, get(name))
+        laid = as_points(lay_on_grain(Rest(surface), as_complex(flat), get(name)))
         before = area_quantile(utilisation(warp_weft_shear(surface.points, surface.triangles, laid), get(name)), area)
         shaped = relax_for_goods(surface, flat, get(name))
         after = area_quantile(utilisation(warp_weft_shear(surface.points, surface.triangles, shaped.flat), get(name)), area)
@@ -77,7 +79,7 @@ def test_a_wanted_grain_is_held_while_shaping():
     flat = flatten(surface).flat
     for wanted in ([1.0, 0.5, 0], [0, -1, 0]):
         shaped = relax_for_goods(surface, flat, get("canvas"), wanted=wanted)
-        x, y = pull(points, surface.triangles, wanted) @ shaped.flat
+        x, y = pull(Rest(surface), wanted) @ shaped.flat
         assert y > 0
         assert x / y == pytest.approx(0, abs=1e-9)
     free = relax_for_goods(surface, flat, get("canvas"))

@@ -3,78 +3,54 @@
 import numpy as np
 from scipy.optimize import minimize_scalar
 
-from .measure import area_quantile, areas, utilisation, warp_weft_shear
+from .limits import GoodsEnergy, log_and_ratio
+from .measure import area_quantile
 
 DIRECTIONS = 24
 UP = (0.0, 0.0, 1.0)
 
 
-def lay_on_grain(points, triangles, flat, goods, comfort=0.0, wanted=None):
-    """(k, 2) flat piece turned so that the warp (+y) lies best, or along `wanted`, a direction (3,) on the form; then sized.
+def lay_on_grain(rest, flat, goods, comfort=0.0, wanted=None):
+    """(n,) complex flat piece turned so that the warp (+y) lies best, or along `wanted`, a direction (3,) on the form; sized.
 
-    The best of 24 directions, refined together with the size; of the two ways round, the one in which +y runs more
-    upwards (+z) on the form. Goods that may lie anyhow are turned so that up is +y.
+    The best of 24 directions; of the two ways round, the one in which +y runs more upwards (+z) on the form. Goods that
+    may lie anyhow are turned so that up is +y.
     """
-    flat = rescale_for(points, triangles, flat, goods, comfort)
     if wanted is not None or goods.grain_free:
-        flat = _heading(points, triangles, flat, UP if wanted is None else wanted)
-        return rescale_for(points, triangles, flat, goods, comfort)
-    area = areas(points, triangles)
-
-    def used(angle):
-        return area_quantile(utilisation(warp_weft_shear(points, triangles, turn(flat, angle)), goods, comfort), area)
-
-    def used_sized(angle):
-        return _best_size(warp_weft_shear(points, triangles, turn(flat, angle)), area, goods, comfort, 0.01).fun
-
-    step = np.pi / DIRECTIONS
-    near = step * int(np.argmin([round(used(k * step), 9) for k in range(DIRECTIONS)]))
-    best = turn(flat, _least(used_sized, near - step, near + step, 0.01).x)
-    best = best if pull(points, triangles, UP) @ best[:, 1] >= 0 else -best
-    return rescale_for(points, triangles, best, goods, comfort)
+        x, y = _parts(pull(rest, UP if wanted is None else wanted) @ flat)
+        return resize(rest, flat * np.exp(1j * (np.pi / 2 - np.arctan2(y, x))), goods, comfort)
+    flat = resize(rest, flat, goods, comfort)
+    limits = GoodsEnergy(goods, comfort, 1, 1.0)
+    log, w = log_and_ratio(*rest.maps(flat))
+    turns = np.exp(1j * np.pi * np.arange(DIRECTIONS) / DIRECTIONS)
+    used = [round(area_quantile(limits.used(log, w * turn**2), rest.area), 9) for turn in turns]
+    flat = flat * turns[int(np.argmin(used))]
+    return resize(rest, flat if _parts(pull(rest, UP) @ flat)[1] >= 0 else -flat, goods, comfort)
 
 
-def rescale_for(points, triangles, flat, goods, comfort=0.0):
-    """(k, 2) the same piece, larger or smaller all round, so that 99.5 % of its area uses least of the goods' limits."""
-    threads = warp_weft_shear(points, triangles, flat)
-    return flat * np.exp(_best_size(threads, areas(points, triangles), goods, comfort, 1e-4).x)
+def resize(rest, flat, goods, comfort=0.0):
+    """(n,) complex, larger or smaller all round, so that 99.5 % of the area uses least of the goods' limits."""
+    limits = GoodsEnergy(goods, comfort, 1, 1.0)
+    log, w = log_and_ratio(*rest.maps(flat))
+    low, high = (log - np.log1p(np.abs(w))).min(), (log - np.log1p(-np.abs(w))).max()
+    best = minimize_scalar(lambda shift: area_quantile(limits.used(log - shift, w), rest.area), method="bounded",
+                           bounds=(low, high), options={"xatol": 1e-4 * (high - low)})
+    return flat * np.exp(best.x)
 
 
-def turn(flat, angle):
-    """(k, 2) turned counter-clockwise by an angle in radians."""
-    c, s = np.cos(angle), np.sin(angle)
-    return flat @ np.array([[c, s], [-s, c]])
-
-
-def _best_size(threads, area, goods, comfort, fineness):
-    """The least utilisation over all sizes (fun) and the log of the factor to get there (x)."""
-    def used(shift):
-        grown = np.column_stack([(1 + threads[:, :2]) * np.exp(-shift) - 1, threads[:, 2]])
-        return area_quantile(utilisation(grown, goods, comfort), area)
-
-    logs = np.log(np.clip(1 + threads[:, :2], 0.05, 20))
-    return _least(used, logs.min(), logs.max(), fineness)
-
-
-def _least(function, low, high, fineness):
-    return minimize_scalar(function, bounds=(low, high), method="bounded", options={"xatol": fineness * (high - low)})
-
-
-def _heading(points, triangles, flat, direction):
-    """The piece turned so that `direction` on the form comes to lie along +y, on the whole."""
-    x, y = pull(points, triangles, direction) @ flat
-    return turn(flat, np.pi / 2 - np.arctan2(y, x)) if np.hypot(x, y) > 0 else flat
-
-
-def pull(points, triangles, direction):
-    """(k,) weights: their sum over the flat points is how `direction` (3,) on the form runs in the flat, times the area.
+def pull(rest, direction):
+    """(n,) weights: their sum over the flat points is how `direction` (3,) on the form runs in the flat, times the area.
 
     A hat function's slope along a direction d in a triangle with unit normal n is (n x e) . d over twice the area, e the
     opposite edge; the part of d that leaves the triangle's plane does not count.
     """
-    corners = points[triangles]
+    corners = rest.points[rest.triangles]
     opposite = np.roll(corners, -2, axis=1) - np.roll(corners, -1, axis=1)
     normal = np.cross(opposite[:, 0], opposite[:, 1])
     normal /= np.maximum(np.linalg.norm(normal, axis=1, keepdims=True), 1e-300)
     slope = 0.5 * (np.cross(normal[:, None], opposite) @ np.asarray(direction, dtype=float))
-    return np.bincount(triangles.ravel(), slope.ravel(), len(points))
+    return np.bincount(rest.triangles.ravel(), slope.ravel(), rest.count)
+
+
+def _parts(number):
+    return number.real, number.imag

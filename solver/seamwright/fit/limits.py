@@ -45,9 +45,18 @@ class GoodsEnergy:
         rows = np.stack([at_alpha.real, at_alpha.imag, at_beta.real, at_beta.imag], axis=2)
         return np.einsum("ct,cti,ctj->tij", bend, rows, rows)
 
-    def used(self, alpha, beta):
-        """(t,) largest channel: utilisation over `level`."""
-        return np.abs(self._channels(alpha, beta)[0]).max(axis=0)
+    def used(self, log, w):
+        """(t,) largest channel, utilisation over `level`, from `log_and_ratio` of a flat piece."""
+        left = 1 - np.abs(w) ** 2
+        if self.shear:
+            warp, weft, shear = _threads(log, w, left)
+            stretched = np.maximum(warp / self.warp, weft / self.weft)
+            return np.maximum(np.maximum(stretched, -np.minimum(warp, weft) / self.ease_in), np.abs(shear) / self.shear)
+        middle, spread = log - 0.5 * np.log(left), -np.arctanh(np.abs(w)) * w / np.maximum(np.abs(w), 1e-300)
+        weft, warp = (middle + spread.real) / self.weft, (middle - spread.real) / self.warp
+        mixed = spread.imag / np.sqrt(self.warp * self.weft)
+        stretched = 0.5 * (weft + warp) + np.hypot(0.5 * (weft - warp), mixed)
+        return np.maximum(stretched, (np.abs(spread) - middle) / self.ease_in)
 
     def _steep(self, x):
         """(cosh(k x) - 1) / k^2 with its first and second derivative, all over e^k."""
@@ -62,9 +71,8 @@ class GoodsEnergy:
 
     def _channels(self, alpha, beta):
         """Values (c, t), gradients with respect to alpha and beta, (c, t) complex, and how directions turn, or None."""
-        w = beta / alpha.conj()
+        log, w = log_and_ratio(alpha, beta)
         left = 1 - np.abs(w) ** 2
-        log = -np.log(np.abs(alpha))
 
         def back(by_log, by_w):
             # d ln|alpha| = Re(d alpha / alpha); d w = d beta / conj(alpha) - w d conj(alpha) / conj(alpha)
@@ -78,8 +86,7 @@ class GoodsEnergy:
 
     def _woven(self, log, w, left):
         """Warp, weft and shear over their limits, with their derivatives by the log and by w."""
-        warp, weft = log + np.log(np.abs(1 + w)) - np.log(left), log + np.log(np.abs(1 - w)) - np.log(left)
-        shear = np.arctan2(2 * w.imag, left)
+        warp, weft, shear = _threads(log, w, left)
         share = [1 / np.where(e > 0, limit, self.ease_in) for e, limit in ((warp, self.warp), (weft, self.weft))]
         share = np.stack([*share, np.full_like(log, 1 / self.shear)])
         by_w = np.stack([1 / (1 + w).conj() + 2 * w / left, -1 / (1 - w).conj() + 2 * w / left,
@@ -118,3 +125,14 @@ class GoodsEnergy:
         by_log, by_w = (np.stack(part) for part in zip(*rows, strict=True))
         turn_log, turn_w = (np.stack(part) for part in zip(*turns, strict=True))
         return np.stack(values), by_log, by_w, np.stack(radii), turn_log, turn_w
+
+
+def log_and_ratio(alpha, beta):
+    """(-ln|alpha|, w): sizing the flat piece up by a factor takes its log from the first, turning it by t turns w by 2t."""
+    return -np.log(np.abs(alpha)), beta / alpha.conj()
+
+
+def _threads(log, w, left):
+    """Log strain of warp and weft, and the shear, radians; left is 1 - |w|^2."""
+    smaller = log - np.log(left)
+    return smaller + np.log(np.abs(1 + w)), smaller + np.log(np.abs(1 - w)), np.arctan2(2 * w.imag, left)

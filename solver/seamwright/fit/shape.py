@@ -7,8 +7,8 @@ import numpy as np
 from ..flat.flatten import as_complex, as_points
 from ..flat.relax import State, dot
 from ..flat.rest import Rest
-from .grain import lay_on_grain, pull, rescale_for
-from .limits import GoodsEnergy
+from .grain import lay_on_grain, pull, resize
+from .limits import GoodsEnergy, log_and_ratio
 from .measure import area_quantile
 
 EXPONENTS_WOVEN = (2, 4, 8, 16, 32, 64)
@@ -34,22 +34,21 @@ def relax_for_goods(surface, flat, goods, comfort=0.0, wanted=None, stages=None,
     utilisation reached so far; the best piece on the way is kept. The first `stages` exponents only, if given; no further
     once the utilisation is `enough`. The grain may turn, unless a `wanted` direction (3,) on the form is held along +y.
     """
-    points, triangles = surface.points, surface.triangles
     rest = Rest(surface)
-    held = None if wanted is None else pull(points, triangles, wanted).astype(complex)
-    plain = GoodsEnergy(goods, comfort, 1, 1.0)
+    held = None if wanted is None else pull(rest, wanted).astype(complex)
+    limits = GoodsEnergy(goods, comfort, 1, 1.0)
 
     def used(flat):
-        return area_quantile(plain.used(*rest.maps(flat)), rest.area)
+        return area_quantile(limits.used(*log_and_ratio(*rest.maps(flat))), rest.area)
 
-    now = as_complex(lay_on_grain(points, triangles, np.asarray(flat, dtype=float), goods, comfort, wanted))
+    now = lay_on_grain(rest, as_complex(np.asarray(flat, dtype=float)), goods, comfort, wanted)
     best, steps = (used(now), now), 0
     for exponent in (EXPONENTS if goods.shear is None else EXPONENTS_WOVEN)[:stages]:
         if best[0] <= max(enough, 1e-6):
             break
         state = State(rest, GoodsEnergy(goods, comfort, exponent, used(now)), now)
         steps += _settle(state, held)
-        now = as_complex(rescale_for(points, triangles, as_points(state.flat), goods, comfort))
+        now = resize(rest, state.flat, goods, comfort)
         best = min(best, (used(now), now), key=lambda pair: pair[0])
     return Shaped(as_points(best[1]), best[0], steps)
 

@@ -17,13 +17,13 @@ LEAST_HEIGHT = 1e-3
 class Rest:
     """Rest shapes of a Surface's triangles.
 
-    triangles (t, 3), each turned so that its longest edge comes first; area (t,) m2, total its sum; local (t, 3) complex
-    corner places in the triangle's own plane; slope (t, 3) complex, half the gradient of each corner's hat function;
-    count of points.
+    points (n, 3), as they are on the form; triangles (t, 3), each turned so that its longest edge comes first; area (t,) m2,
+    total its sum; local (t, 3) complex corner places in the triangle's own plane; slope (t, 3) complex, half the gradient of
+    each corner's hat function; count of points.
     """
 
     def __init__(self, surface):
-        points = surface.points
+        self.points = points = surface.points
         sides = np.linalg.norm(points[np.roll(surface.triangles, -1, axis=1)] - points[surface.triangles], axis=2)
         turn = (np.argmax(sides, axis=1)[:, None] + np.arange(3)) % 3
         self.triangles = np.take_along_axis(surface.triangles, turn, axis=1)

@@ -113,12 +113,15 @@ def _draft_piece(pattern, order, edge, notches, sides):
         unmarked.append("the grain line (it is upright on the sheet)")
     else:
         strokes += _arrow(grain, both_ways=not goods.nap)
+    nameless = {}
     for seam, texts, line, normals in sides:
         strokes += _dots(line)
         placed, free = seam_marks(free, line, -normals, texts)
         letterings += placed
         if not placed:
-            unmarked.append(f"seam {seam}")
+            nameless.setdefault(seam)
+    if nameless:
+        unmarked.append(f"the name{'s' * (len(nameless) > 1)} of seam{'s' * (len(nameless) > 1)} {', '.join(nameless)}")
     crossed = not shapely.LinearRing(edge.stitch).is_simple
     return Draft(piece.name, order + 1, len(pattern.pieces), area, cut, notches, strokes, letterings, unmarked, crossed)
 

@@ -72,7 +72,7 @@ def _picture(pattern, sheets, reach):
         '<defs><pattern id="hatch" width="6" height="6" patternUnits="userSpaceOnUse" patternTransform="rotate(45)">'
         '<path d="M1 0V6" stroke="#FFFFFF" stroke-width="2"/><path d="M1 0V6" stroke="#000000"/></pattern></defs>',
     ]
-    size = max(4.0, min(14.0, table.width / 60))
+    size = max(4.0, table.width / 50)
     for sheet, top in zip(sheets, table.tops, strict=True):
         for draft, offset in sheet.pieces:
             piece = pattern.pieces[draft.number - 1]
@@ -142,16 +142,18 @@ def _shear_words(goods):
 
 def _piece_table(summary):
     shear = summary["goods"]["shear_degrees"] is not None
-    head = ["piece", "fit", "beyond", "area, m<sup>2</sup>", "stretch, 5 % to 95 %", "worst", "worst shear", "limit used"]
+    head = ["piece", "fit", "beyond", "area, m<sup>2</sup>", "stretch, 5 % to 95 %", "worst", "worst shear",
+            "limit used"]
     rows = []
     for order, piece in enumerate(summary["pieces"]):
         stretch = piece["stretch"]
         cells = [f'<span class="chip" style="background:{piece_colour(order)}"></span>{tidy(piece["name"])}',
                  f'<span class="{piece["fit"]}">{piece["fit"]}</span>', f"{piece['beyond']:.1%}", f"{piece['area_m2']:.4g}",
                  f"{stretch['p5']:+.1%} to {stretch['p95']:+.1%}", f"{stretch['worst']:+.1%}",
-                 f"{piece['shear_degrees']['worst']:.1f} degrees" if shear else "", f"{piece['utilisation']['worst']:.0%}"]
+                 f"{piece['shear_degrees']['worst']:.1f} degrees" if shear else "", f"{piece['utilisation']['p99_5']:.0%}"]
         rows.append(cells if shear else cells[:6] + cells[7:])
-    return _table(head if shear else head[:6] + head[7:], rows, 2)
+    words = "<p>Limit used is the share of the hard limits on all but 0.5 % of the area.</p>"
+    return words + _table(head if shear else head[:6] + head[7:], rows, 2)
 
 
 def _seam_table(summary):
@@ -159,8 +161,9 @@ def _seam_table(summary):
     for seam in summary["seams"]:
         first, second = seam["pieces"]
         joins = f"hem of {first or second}" if seam["open"] else f"{first}, {second}" + (" (dart)" if seam["dart"] else "")
-        rows.append([tidy(seam["name"]), tidy(joins), *(f"{length:.1f}" for length in seam["lengths_mm"]),
-                     "" if seam["open"] else f"{seam['ease']:+.2%}"])
+        a, b = seam["lengths_mm"]
+        second = ["", ""] if seam["open"] else [f"{b:.1f}", f"{seam['ease']:+.2%}"]
+        rows.append([tidy(seam["name"]), tidy(joins), f"{a:.1f}", *second])
     return _table(["seam", "joins", "first side, mm", "second side, mm", "second longer by"], rows, 2)
 
 

@@ -32,6 +32,11 @@ def add_legend(pdf, pattern, sheets, summary, grid):
     pdf.ln(3)
     _overview(pdf, sheets, grid, left, pdf.get_y(), right - left, pdf.h - 12 - pdf.get_y())
     pdf.add_page()
+    if summary["notes"]:
+        _heading(pdf, "Notes", 12)
+        for note in summary["notes"]:
+            _line(pdf, f"- {note}", 9)
+        pdf.ln(4)
     _heading(pdf, "Pieces", 12)
     _table(pdf, (8, 34, 22, 18, 34, 30, 48), [
         ("", "piece", "fit", "beyond", "cut size, mm", "worst stretch", "seams"),
@@ -41,11 +46,6 @@ def add_legend(pdf, pattern, sheets, summary, grid):
                                        *map(_seam_row, summary["seams"])])
     _heading(pdf, "Sewing order", 12)
     _line(pdf, ", ".join(summary["order"]) or "Nothing to sew.", 9)
-    if summary["notes"]:
-        pdf.ln(3)
-        _heading(pdf, "Notes", 12)
-        for note in summary["notes"]:
-            _line(pdf, f"- {note}", 9)
 
 
 def _facts(pdf, summary, grid):
@@ -142,6 +142,8 @@ def _seam_row(seam):
 
 
 def _heading(pdf, words, size):
+    if pdf.will_page_break(25):
+        pdf.add_page()
     pdf.set_font("Helvetica", style="B", size=size)
     pdf.multi_cell(0, size * 0.5, printable(words), new_x="LMARGIN", new_y="NEXT")
     pdf.ln(1)

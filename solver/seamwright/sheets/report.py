@@ -17,8 +17,8 @@ def summary(pattern):
     Each piece: name, number, fit, beyond (share of its area beyond the hard limits), area_m2 and flat_area_m2, stretch
     {p5, p95, worst} (shares; over the form's area, the smaller and the larger principal one; worst is the one farthest
     from 0), warp and weft {p5, p95, worst} and shear_degrees {p95, worst} where the goods have a grain, utilisation
-    {p95, worst}, width_mm and height_mm of the cut line. Each seam: name, pieces (two names, null at an open edge),
-    lengths_mm, ease, dart, open.
+    {p95, p99_5, worst} of the hard limits, width_mm and height_mm of the cut line. Each seam: name, pieces (two names, null
+    at an open edge), lengths_mm, ease, dart, open.
     """
     drafts = draft(pattern)
     return summary_of(pattern, drafts, lay(pattern, drafts))
@@ -87,7 +87,8 @@ def _piece(piece, d, goods):
         "width_mm": right - left, "height_mm": high - low,
         "stretch": {"p5": quantiles(piece.stretch[:, 1], area, 0.05), "p95": quantiles(piece.stretch[:, 0], area, 0.95),
                     "worst": farthest(piece.stretch)},
-        "utilisation": {"p95": quantiles(piece.utilisation, area, 0.95), "worst": piece.utilisation.max()},
+        "utilisation": {"p95": quantiles(piece.utilisation, area, 0.95),
+                        "p99_5": quantiles(piece.utilisation, area, 0.995), "worst": piece.utilisation.max()},
     }
     if not goods.grain_free:
         for k, name in enumerate(("warp", "weft")):

@@ -100,6 +100,18 @@ def test_stitch_and_cut_lines_of_the_svg(tmp_path, name):
             assert allowance == 0 or not area.contains(point)
 
 
+@pytest.mark.parametrize("name", ["tapered strip", "frustum"])
+def test_no_piece_is_mirrored_or_turned(tmp_path, name):
+    pattern = samples.ALL[name]()
+    pattern.pieces[0].flat = pattern.pieces[0].flat @ np.array([[1, 0.3], [0.2, 1]])  # no symmetry left
+    paths = sheets.save(pattern, tmp_path, kinds=("svg", "pdf"))
+    drawn = svg_lines(svg_of(paths[0]), "stitch")["1"][0][:-1]
+    wanted = pattern.pieces[0].flat[pattern.pieces[0].outline] * [1000, -1000]  # both readers count y downward
+    assert np.allclose(drawn - drawn.mean(axis=0), wanted - wanted.mean(axis=0), atol=0.01)
+    printed = max(lines_of(pages_of(paths[1]).pages[-1], STITCH), key=len)[:-1]
+    assert np.allclose(printed - printed.mean(axis=0), wanted - wanted.mean(axis=0), atol=0.01)
+
+
 @pytest.mark.parametrize("name", list(samples.ALL))
 def test_stitch_lines_of_the_pdf(tmp_path, name):
     pattern = samples.ALL[name]()

@@ -6,9 +6,10 @@ from forms import cap, cylinder, disk, icosphere, noisy, torus
 from seamwright.errors import CoverError
 from seamwright.flat import flatten, overlaps
 from seamwright.flat.flatten import DIRICHLET, as_complex, disk_loop
-from seamwright.flat.relax import first_flip, relax
+from seamwright.flat.relax import relax
 from seamwright.flat.rest import Rest
 from seamwright.flat.start import best_scale, conformal_start, embedded_start, valid
+from seamwright.flat.state import first_flip
 from seamwright.form.surface import Surface
 
 

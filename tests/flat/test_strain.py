@@ -83,3 +83,14 @@ def test_the_laplacian_is_that_of_the_form(piece):
     from seamwright.form.laplacian import cotangent_laplacian
     surface, rest, _ = piece
     assert abs(rest.laplacian(np.ones(len(rest.area))) - cotangent_laplacian(surface)).max() < 1e-12
+
+
+def test_stiffness_of_a_plain_membrane_is_the_laplacian_of_both_coordinates(piece):
+    # |alpha|^2 + |beta|^2 is half the squared gradient of both flat coordinates
+    _, rest, _ = piece
+    unit = np.broadcast_to(np.eye(4), (len(rest.area), 4, 4))
+    matrix = rest.stiffness(unit).toarray()
+    free = np.delete(np.arange(rest.count), rest.anchors)
+    laplacian = 0.5 * rest.laplacian(np.ones(len(rest.area))).toarray()
+    for i, j, expected in ((0, 0, laplacian), (1, 1, laplacian), (0, 1, 0 * laplacian)):
+        np.testing.assert_allclose(matrix[i::2, j::2][free], expected[free], atol=1e-12)

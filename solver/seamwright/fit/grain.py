@@ -11,7 +11,7 @@ UP = (0.0, 0.0, 1.0)
 
 
 def lay_on_grain(rest, flat, goods, comfort=0.0, wanted=None):
-    """(n,) complex flat piece turned so that the warp (+y) lies best, or along `wanted`, a direction (3,) on the form; sized.
+    """(n,) complex flat piece, the warp (+y) where it lies best, or along `wanted`, a direction (3,) on the form; sized.
 
     The best of 24 directions; of the two ways round, the one in which +y runs more upwards (+z) on the form. Goods that
     may lie anyhow are turned so that up is +y.

@@ -5,8 +5,8 @@ from dataclasses import dataclass
 import numpy as np
 
 from ..flat.flatten import as_complex, as_points
-from ..flat.relax import State, dot
 from ..flat.rest import Rest
+from ..flat.state import State, dot
 from .grain import lay_on_grain, pull, resize
 from .limits import GoodsEnergy, log_and_ratio
 from .measure import area_quantile
@@ -35,7 +35,7 @@ def relax_for_goods(surface, flat, goods, comfort=0.0, wanted=None, stages=None,
     once the utilisation is `enough`. The grain may turn, unless a `wanted` direction (3,) on the form is held along +y.
     """
     rest = Rest(surface)
-    held = None if wanted is None else pull(rest, wanted).astype(complex)
+    held = None if wanted is None else pull(rest, wanted)[None].astype(complex)
     limits = GoodsEnergy(goods, comfort, 1, 1.0)
 
     def used(flat):
@@ -56,7 +56,7 @@ def relax_for_goods(surface, flat, goods, comfort=0.0, wanted=None, stages=None,
 def _settle(state, held):
     """Newton steps while they pay; returns their number."""
     for step in range(STEPS):
-        before, direction = state.value, state.newton_direction(DAMPING, held)
+        before, direction = state.value, state.newton_direction(DAMPING, held, np.zeros(1))
         if -dot(state.gradient, direction) <= 1e-3 * before or not state.step(direction):
             return step
         if before - state.value < 0.02 * before:

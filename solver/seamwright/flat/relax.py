@@ -3,10 +3,9 @@
 from dataclasses import dataclass
 
 import numpy as np
-from scipy.sparse import coo_matrix
 
-from ..form.laplacian import Factor
 from .rest import solve_complex
+from .state import State, dot
 
 MEMORY = 8
 REFACTOR = 0.75
@@ -66,76 +65,6 @@ def relax(rest, flat, energy, tolerance=1e-5, most=300):
     return Relaxed(state.flat, state.value / rest.total, False, iteration + 1, factorisations, newton_steps)
 
 
-class State:
-    """Flat points (n,) complex with their maps, energy (`value`, not per area) and gradient, kept together."""
-
-    def __init__(self, rest, energy, flat):
-        self.rest, self.energy = rest, energy
-        self._take(flat, rest.maps(flat))
-
-    def _take(self, flat, maps, value=None):
-        area = self.rest.area
-        self.flat, self.maps = flat, maps
-        self.value = area @ self.energy.density(*maps) if value is None else value
-        at_alpha, at_beta = self.energy.first(*maps)
-        self.gradient = self.rest.gather(area * at_alpha, area * at_beta)
-
-    def step(self, direction):
-        """Take the longest halved step that lowers the energy enough and stays 10 % short of any flip; False if none."""
-        alpha, beta = self.maps
-        d_alpha, d_beta = self.rest.maps(direction)
-        length = min(1.0, 0.9 * first_flip(alpha, beta, d_alpha, d_beta))
-        slope = dot(self.gradient, direction)
-        for _ in range(30):
-            maps = alpha + length * d_alpha, beta + length * d_beta
-            value = self.rest.area @ self.energy.density(*maps)
-            if value <= self.value + 1e-4 * length * slope and value < self.value:
-                flat = self.flat + length * direction
-                self._take(flat, self.rest.maps(flat), value)
-                return True
-            length *= 0.5
-        return False
-
-    def newton_direction(self, damping=0.0, held=None):
-        """(n,) complex Newton step on the positive part of the Hessian.
-
-        `damping` is the share of the piece's mean stiffness that every triangle gets besides its own; `held` (n,) complex
-        is a weighted sum of the points that the step may not change.
-        """
-        rest = self.rest
-        p, zero = rest.slope, np.zeros(len(rest.area))
-        rows = np.stack([
-            np.stack([p.real, p.imag], 2), np.stack([-p.imag, p.real], 2),
-            np.stack([p.real, -p.imag], 2), np.stack([p.imag, p.real], 2)], 1).reshape(len(zero), 4, 6)
-        bend = self.energy.second(*self.maps)
-        stiffness = np.einsum("tii->t", bend) / 4
-        bend += (1e-8 * stiffness + damping * (rest.area @ stiffness) / rest.total)[:, None, None] * np.eye(4)
-        blocks = rest.area[:, None, None] * (rows.transpose(0, 2, 1) @ bend @ rows)
-        at = (2 * rest.triangles[:, :, None] + np.arange(2)).reshape(-1, 6)
-        size = 2 * rest.count
-        matrix = coo_matrix((blocks.ravel(), (np.repeat(at, 6, axis=1).ravel(), np.tile(at, (1, 6)).ravel())),
-                            shape=(size, size)).tocsc()
-        for coordinate in (0, 1):
-            matrix[coordinate, coordinate] *= 2
-        factor = Factor(matrix)
-        direction = -factor.solve(self.gradient.view(float)).view(complex)
-        if held is not None:
-            answer = factor.solve(held.view(float)).view(complex)
-            direction -= dot(held, direction) / dot(held, answer) * answer
-        return direction
-
-
-def first_flip(alpha, beta, d_alpha, d_beta):
-    """Smallest positive step at which a triangle's area becomes zero; infinite if none ever does."""
-    c = np.abs(alpha) ** 2 - np.abs(beta) ** 2
-    b = (alpha.conj() * d_alpha).real - (beta.conj() * d_beta).real
-    a = np.abs(d_alpha) ** 2 - np.abs(d_beta) ** 2
-    inside = b * b - a * c
-    reach = np.where(inside >= 0, -b + np.sqrt(np.maximum(inside, 0)), 0)
-    # c / (-b + root) is the smaller root where both are positive and the positive one where they differ in sign
-    return np.min(c / np.where(reach > 0, reach, np.nan), initial=np.inf, where=reach > 0)
-
-
 def _precondition(gradient, pairs, solver):
     """L-BFGS two-loop product (Nocedal 1980) with the Laplacian's inverse in the middle."""
     left, shares = gradient.copy(), []
@@ -146,8 +75,3 @@ def _precondition(gradient, pairs, solver):
     for (moved, turned), share in zip(pairs, reversed(shares), strict=True):
         left += (share - dot(turned, left) / dot(moved, turned)) * moved
     return left
-
-
-def dot(a, b):
-    """Real inner product of complex vectors."""
-    return np.vdot(a, b).real

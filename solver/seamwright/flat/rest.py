@@ -5,8 +5,10 @@ its singular values (flat length over form length) are |alpha| + |beta| and |alp
 exactly where the triangle is flipped.
 """
 
+from functools import cached_property
+
 import numpy as np
-from scipy.sparse import coo_matrix, csr_matrix, diags
+from scipy.sparse import coo_matrix, csc_matrix, csr_matrix, diags
 
 from ..form.laplacian import Factor
 
@@ -19,7 +21,7 @@ class Rest:
 
     points (n, 3), as they are on the form; triangles (t, 3), each turned so that its longest edge comes first; area (t,) m2,
     total its sum; local (t, 3) complex corner places in the triangle's own plane; slope (t, 3) complex, half the gradient of
-    each corner's hat function; count of points.
+    each corner's hat function; count of points; anchors, one point of every connected part.
     """
 
     def __init__(self, surface):
@@ -28,6 +30,7 @@ class Rest:
         turn = (np.argmax(sides, axis=1)[:, None] + np.arange(3)) % 3
         self.triangles = np.take_along_axis(surface.triangles, turn, axis=1)
         self.count = len(points)
+        self.anchors = self.triangles[np.unique(surface.triangle_components[1], return_index=True)[1], 0]
         a, b, c = (points[self.triangles[:, k]] for k in range(3))
         longest = np.maximum(sides.max(axis=1), 1e-9 * sides.max())
         along = (b - a) / longest[:, None]
@@ -51,6 +54,31 @@ class Rest:
         """(n,) complex gradient at the points from (t,) complex gradients with respect to alpha and beta."""
         return self._to_alpha @ at_alpha + self._to_beta @ at_beta
 
+    def stiffness(self, bend):
+        """(2n, 2n) csc from (t, 4, 4) per area in (Re alpha, Im alpha, Re beta, Im beta), held at a point of every part."""
+        p = self.slope
+        rows = np.stack([
+            np.stack([p.real, p.imag], 2), np.stack([-p.imag, p.real], 2),
+            np.stack([p.real, -p.imag], 2), np.stack([p.imag, p.real], 2)], 1).reshape(-1, 4, 6)
+        blocks = self.area[:, None, None] * (rows.transpose(0, 2, 1) @ bend @ rows)
+        order, first, inner, outer, held = self._pattern
+        data = np.add.reduceat(blocks.ravel()[order], first)
+        data[held] *= 2
+        return csc_matrix((data, inner, outer), shape=(2 * self.count, 2 * self.count))
+
+    @cached_property
+    def _pattern(self):
+        """Where the entries of `stiffness` go: sorted once, summed many times."""
+        at = (2 * self.triangles[:, :, None] + np.arange(2)).reshape(-1, 6)
+        size = 2 * self.count
+        place = (np.repeat(at, 6, axis=1) + size * np.tile(at, (1, 6))).ravel()
+        order = np.argsort(place, kind="stable")
+        place = place[order]
+        first = np.flatnonzero(np.concatenate([[True], np.diff(place) > 0]))
+        inner, column = place[first] % size, place[first] // size
+        held = np.flatnonzero((inner == column) & np.isin(inner // 2, self.anchors))
+        return order, first, inner, np.searchsorted(column, np.arange(size + 1)), held
+
     def laplacian(self, weight):
         """(n, n) csc: cotangent Laplacian with (t,) weights."""
         first, second = self.triangles.ravel(), np.roll(self.triangles, -1, axis=1).ravel()
@@ -61,10 +89,11 @@ class Rest:
         return (both - diags(np.asarray(both.sum(axis=1)).ravel())).tocsc()
 
     def solver(self, weight):
-        """Factor of the weighted Laplacian, held at its first point (gradients sum to zero, so that costs nothing)."""
+        """Factor of the weighted Laplacian, held at a point of every part (gradients sum to zero, so that costs nothing)."""
         matrix = self.laplacian(weight)
-        matrix[0, 0] *= 2
-        return Factor(matrix)
+        held = np.zeros(self.count)
+        held[self.anchors] = matrix.diagonal()[self.anchors]
+        return Factor(matrix + diags(held))
 
 
 def solve_complex(factor, load):

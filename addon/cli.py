@@ -9,9 +9,10 @@ import json
 import os
 import sys
 
-from . import command, properties
+from . import command, properties, words
 from .command import WrongUse
 
+KINDS = ("pdf", "svg", "json", "html")
 STATUSES = """exit status: 0 every form covered and no piece strained; 1 covered, but a piece is strained;
 2 wrong use; 3 a form could not be covered (the others are done)"""
 
@@ -28,8 +29,9 @@ def main(argv):
     except WrongUse as error:
         print(f"seamwright: {error}", file=sys.stderr)
         return 2
+    plain = words.of_goods(result["goods"]) if "goods" in result else words.of_forms(result["forms"])
     with os.fdopen(answer, "w", encoding="utf-8") as out:
-        out.write(json.dumps(result, indent=2) + "\n" if asked.json else command.words(result))
+        out.write(json.dumps(result, indent=2) + "\n" if asked.json else plain)
     return status
 
 
@@ -53,8 +55,9 @@ def parser():
     cover.add_argument("--thrift", type=float, metavar="X", help="price of seams (default: the cheapest that fit are found)")
     cover.add_argument("--route", choices=("through", "edges"), help="where seams may run")
     cover.add_argument("--out", metavar="DIR", default="out", help="folder of the sheets (default: out)")
-    cover.add_argument("--kinds", metavar="LIST", type=_kinds, default=("pdf", "svg", "json", "html"),
-                       help="kinds of sheets, with commas: pdf,svg,json,html (default: all)")
+    cover.add_argument("--kinds", metavar="LIST", type=_kinds, default=KINDS,
+                       help=f"kinds of sheets, with commas (default: {','.join(KINDS)})")
+    cover.add_argument("--paper", choices=("roll", "a4", "letter"), default="roll", help="paper of the PDF (default: roll)")
     cover.add_argument("--workers", type=int, default=1, metavar="N", help="forms covered at the same time (default: 1)")
     cover.add_argument("--save", metavar="FILE.blend", help="write the covered scene there")
     commands.add_parser("check", parents=[files, answer], help="check forms, cover nothing")
@@ -64,9 +67,9 @@ def parser():
 
 def _kinds(text):
     kinds = tuple(kind.strip() for kind in text.split(",") if kind.strip())
-    unknown = [kind for kind in kinds if kind not in command.KINDS]
+    unknown = [kind for kind in kinds if kind not in KINDS]
     if unknown or not kinds:
-        raise argparse.ArgumentTypeError(f"{text!r}: known kinds are {', '.join(command.KINDS)}")
+        raise argparse.ArgumentTypeError(f"{text!r}: known kinds are {', '.join(KINDS)}")
     return kinds
 
 

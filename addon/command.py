@@ -7,14 +7,11 @@ from pathlib import Path
 
 import bpy
 
-from . import index, scenes, target, worker
+from . import index, scenes, target, words, worker
 from .job import Job, JobError
 from .operators.check import sentences
-from .read import read
 from .scenes import WrongUse
 
-STRAINED = "strained"
-KINDS = ("pdf", "svg", "json", "html")
 TICK = 0.05
 
 
@@ -36,18 +33,21 @@ def check(asked):
 
 def cover(asked):
     """Cover every form, write its sheets, and the summary and index of all."""
+    from seamwright.sheets import safe_name
+
     wishes = _overrides(asked)
     if asked.workers < 1:
         raise WrongUse(f"--workers {asked.workers}: give a whole number of at least 1.")
     if asked.save and len(scenes.sort(asked.files)[0]) > 1:
         raise WrongUse("--save writes one scene: give one .blend at a time with it.")
     out = Path(asked.out).absolute()
-    waiting, answers, taken = [], [], set()
+    waiting, answers = [], []
     for thing, file in _forms(asked):
-        answer = {"object": thing.name, "file": file, "folder": _folder(thing.name, taken)}
+        folder = safe_name(thing.name, [before["folder"] for before in answers])
+        answer = {"object": thing.name, "file": file, "folder": folder}
         answers.append(answer)
         mine = {**target.group(thing).wishes.asked(), **wishes}
-        save = {"folder": str(out / answer["folder"]), "kinds": asked.kinds}
+        save = {"folder": str(out / folder), "kinds": asked.kinds, "paper": asked.paper}
         try:
             target.check(thing, mine, bpy.context.evaluated_depsgraph_get())
             waiting.append((answer, _read(thing), mine, save))
@@ -59,8 +59,9 @@ def cover(asked):
         except JobError as error:
             _fail(answer, error)
             continue
-        answer.update(_figures(pattern, out / answer["folder"]))
-        _say(f"{answer['object']}: {index.fit_words(answer)}")
+        answer["files"] = sorted(path.name for path in (out / answer["folder"]).iterdir() if path.is_file())
+        answer.update(pattern.summary())
+        _say(f"{answer['object']}: {words.of_pattern(answer)}")
         if asked.save:
             target.lay_in(bpy.data.objects[answer["object"]], pattern, job.path, job.asked, bpy.context.scene)
     if asked.save:
@@ -69,13 +70,6 @@ def cover(asked):
     result = {"fits": not failed and all(answer["fits"] for answer in answers), "forms": answers}
     index.write(out, result)
     return result, 3 if failed else 0 if result["fits"] else 1
-
-
-def words(result):
-    """The plain text of a command's data."""
-    if "goods" in result:
-        return index.goods_text(result["goods"])
-    return index.forms_text(result["forms"])
 
 
 def _overrides(asked):
@@ -125,21 +119,8 @@ def _sources(files):
         yield scenes.in_order(filter(target.is_form, scenes.bring_in(other))), str(other)
 
 
-def _figures(pattern, folder):
-    """What the summary of all says of one pattern; `pattern` holds the whole of it."""
-    return {
-        "goods": pattern.goods.name,
-        "fits": pattern.fits,
-        "strained": [piece.name for piece in pattern.pieces if piece.fit == STRAINED],
-        "pieces": len(pattern.pieces),
-        "seam_mm": round(1000 * sum(seam.lengths[0] for seam in pattern.seams if not seam.open), 1),
-        "files": sorted(path.name for path in folder.iterdir()),
-        "pattern": pattern.summary(),
-    }
-
-
 def _read(thing):
-    return read(thing, bpy.context.scene, bpy.context.evaluated_depsgraph_get())
+    return target.read_form(thing, bpy.context.scene, bpy.context.evaluated_depsgraph_get())
 
 
 def _run(waiting, workers):
@@ -166,19 +147,8 @@ def _run(waiting, workers):
 
 def _fail(answer, error):
     answer["error"] = str(error)
-    _say(f"{answer['object']}: {error}")
+    _say(str(error))
 
 
 def _say(text):
     print(text, file=sys.stderr, flush=True)
-
-
-def _folder(name, taken):
-    """A folder name for an object: letters of any script, digits, and - _ . and spaces; made different from those taken."""
-    plain = "".join(c if c.isalnum() or c in "-_. " else "_" for c in name).strip(". ") or "form"
-    number, folder = 1, plain
-    while folder.lower() in taken:
-        number += 1
-        folder = f"{plain} {number}"
-    taken.add(folder.lower())
-    return folder

@@ -7,11 +7,8 @@ from . import marks, names
 from .lay import lay
 from .read import positions
 
-ASIDE = 1.2
+ASIDE = 1.5
 """The copy stands this many of the form's widths away, along the world's X."""
-
-COLOURS = ("#E69F00", "#56B4E9", "#009E73", "#F0E442", "#0072B2", "#D55E00", "#CC79A7", "#999999")
-"""Okabe and Ito's colours, told apart by the colour-blind too."""
 
 
 def make(thing, pattern, scene, old=None):
@@ -70,13 +67,16 @@ def _sewn(mesh, pattern, weld, starts):
 
 
 def _colour(mesh, piece_of):
-    for number, colour in enumerate(COLOURS[:piece_of.max() + 1], 1):
-        name = f"Seamwright {number}"
+    """Give every piece its colour, by materials; the first pieces' colours, then again from the start."""
+    from seamwright.sheets.colours import PIECES
+
+    for number, colour in enumerate(PIECES[:piece_of.max() + 1], 1):
+        name = f"{names.MATERIAL} {number}"
         material = bpy.data.materials.get(name) or bpy.data.materials.new(name)
         material.diffuse_color = [_linear(int(colour[k:k + 2], 16) / 255) for k in (1, 3, 5)] + [1.0]
         mesh.materials.append(material)
     mesh.attributes.new("material_index", "INT", "FACE")
-    mesh.attributes["material_index"].data.foreach_set("value", (piece_of % len(COLOURS)).astype(np.int32))
+    mesh.attributes["material_index"].data.foreach_set("value", (piece_of % len(PIECES)).astype(np.int32))
 
 
 def _linear(value):

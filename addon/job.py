@@ -33,7 +33,8 @@ class Job:
         self.path, self._errors = folder / "pattern.pickle", folder / "errors.txt"
         request = {"path": sys.path, "name": reading.name, "wishes": asked, "save": save}
         (folder / "request.json").write_text(json.dumps(request), encoding="utf-8")
-        np.savez(folder / "form.npz", points=reading.points, corners=reading.corners, sizes=reading.sizes)
+        np.savez(folder / "form.npz", points=reading.points, corners=reading.corners, sizes=reading.sizes,
+                 keep_clear=reading.keep_clear)
         # one thread: small systems gain nothing from more, and sums must not depend on the machine
         env = {**os.environ, "OPENBLAS_NUM_THREADS": "1", "OMP_NUM_THREADS": "1"}
         command = [sys.executable, *bpy.app.python_args, worker.__file__, str(folder)]
@@ -64,14 +65,16 @@ class Job:
         self._process.kill()
         self._process.wait()
         self._close()
-        self.error = f"{self.reading.name}: stopped."
+        self.error = "stopped."
 
     def pattern(self):
         """The Pattern of a job that has ended. Raises JobError."""
         if self.error:
-            raise JobError(self.error)
+            raise JobError(self.error if self.reading.name in self.error else f"{self.reading.name}: {self.error}")
         if not self.done:
-            lines = self._errors.read_text(encoding="utf-8", errors="replace").strip().splitlines() or ["it said nothing"]
+            told = self._errors.read_text(encoding="utf-8", errors="replace").strip()
+            print(told, file=sys.stderr)
+            lines = told.splitlines() or ["it said nothing"]
             raise JobError(f"{self.reading.name}: the solver broke off, and that is a fault of the program ({lines[-1]}). "
                            "Please report it together with the form.")
         return load(self.path)

@@ -11,6 +11,9 @@ UV_MAP = "Seamwright"
 PIECE = "seamwright_piece"
 STRETCH = "seamwright_stretch"
 
+# materials of the covered copy, followed by a number
+MATERIAL = "Seamwright"
+
 # operators
 COVER = "seamwright.cover"
 STOP = "seamwright.stop"

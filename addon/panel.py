@@ -4,6 +4,7 @@ import bpy
 
 from . import names, target
 from .operators import cover
+from .wishes import OWN
 
 FIT_ICONS = {"fits": "CHECKMARK", "tight": "ERROR", "strained": "CANCEL"}
 
@@ -58,24 +59,28 @@ class SEAMWRIGHT_PT_wishes(_Tab, bpy.types.Panel):
         layout, wishes = self.layout, target.group(context.object).wishes
         layout.use_property_split = True
         layout.use_property_decorate = False
-        row = layout.row()
-        row.active = not wishes.own_goods
-        row.prop(wishes, "goods")
-        layout.prop(wishes, "own_goods")
+        layout.prop(wishes, "goods_menu")
+        if wishes.goods == OWN:
+            layout.prop(wishes, "own_goods")
         layout.prop(wishes, "comfort")
+        layout.prop(wishes, "grain")
         layout.prop(wishes, "route", expand=True)
-        layout.prop(wishes, "pieces")
-        layout.prop(wishes, "symmetry")
-        layout.prop(wishes, "thickness_side")
-        column = layout.column(heading="Thrift")
-        row = column.row()
-        row.prop(wishes, "choose_thrift", text="")
-        field = row.row()
-        field.active = wishes.choose_thrift
-        field.prop(wishes, "thrift", text="")
+        layout.prop_search(wishes, "keep_clear", context.object, "vertex_groups")
+        self._chosen(layout, wishes, "choose_pieces", "pieces")
+        self._chosen(layout, wishes, "choose_thrift", "thrift")
         row = layout.row()
         row.scale_y = 1.4
         row.operator(names.COVER, icon="MOD_CLOTH")
+
+
+    @staticmethod
+    def _chosen(layout, wishes, choice, value):
+        """A wish that may be left open: a box, and a field that counts when the box is ticked."""
+        row = layout.column(heading=wishes.bl_rna.properties[value].name).row()
+        row.prop(wishes, choice, text="")
+        field = row.row()
+        field.active = getattr(wishes, choice)
+        field.prop(wishes, value, text="")
 
 
 class SEAMWRIGHT_UL_pieces(bpy.types.UIList):
@@ -85,11 +90,17 @@ class SEAMWRIGHT_UL_pieces(bpy.types.UIList):
 
     def draw_item(self, context, layout, data, item, icon, active_data, active_propname):
         """One piece."""
-        row = layout.split(factor=0.3)
-        row.label(text=item.name)
-        row = row.split(factor=0.45)
-        row.label(text=item.fit, icon=FIT_ICONS.get(item.fit, "QUESTION"))
-        row.label(text=f"{item.least:+.1f} to {item.most:+.1f} %")
+        _columns(layout, item.name, item.fit, f"{item.worst:+.1f} %", FIT_ICONS.get(item.fit, "QUESTION"))
+
+
+def _columns(layout, name, fit, stretch, icon="NONE"):
+    left = layout.split(factor=0.25)
+    left.label(text=name)
+    right = left.split(factor=0.58)
+    right.label(text=fit, icon=icon)
+    last = right.row()
+    last.alignment = "RIGHT"
+    last.label(text=stretch)
 
 
 class SEAMWRIGHT_PT_fit(_Tab, bpy.types.Panel):
@@ -107,10 +118,13 @@ class SEAMWRIGHT_PT_fit(_Tab, bpy.types.Panel):
         """Table, notes, sheets."""
         layout, result = self.layout, target.group(context.object).result
         layout.label(text=f"{len(result.pieces)} pieces of {result.goods}, {result.seam:.2f} m of seam")
+        _columns(layout, "Piece", "Fit", "Stretch")
         layout.template_list(names.PIECE_LIST, "", result, "pieces", result, "active", rows=min(8, len(result.pieces)))
-        if result.active < len(result.pieces) and result.pieces[result.active].beyond > 0.05:
+        if result.active < len(result.pieces):
             piece = result.pieces[result.active]
-            layout.label(text=f"{piece.name}: {piece.beyond:.1f} % of it beyond the goods' limits", icon="INFO")
+            column = layout.column(align=True)
+            column.label(text=f"{piece.name}: mostly {piece.low:+.1f} to {piece.high:+.1f} %")
+            column.label(text=f"{piece.beyond:.1f} % of it beyond the limits")
         column = layout.column(align=True)
         for note in result.notes.split("\n") if result.notes else ():
             for line in _wrapped(note, context.region.width):

@@ -9,13 +9,15 @@ import numpy as np
 class Reading:
     """One object's surface as the solver wants it.
 
-    points (n, 3) metres; corners (c,) point indices of all faces, face after face; sizes (f,) corners of each face.
+    points (n, 3) metres; corners (c,) point indices of all faces, face after face; sizes (f,) corners of each face;
+    keep_clear (n,) the wish of that name, empty where nothing is painted.
     """
 
     name: str
     points: np.ndarray
     corners: np.ndarray
     sizes: np.ndarray
+    keep_clear: np.ndarray
 
     @property
     def faces(self):
@@ -30,20 +32,24 @@ class Reading:
                 and np.array_equal(self.sizes, other.sizes))
 
 
-def read(thing, scene, depsgraph):
-    """The Reading of object `thing`: modifiers and shape keys applied, in the world, scaled by the scene's units."""
+def read(thing, scene, depsgraph, keep_clear=""):
+    """The Reading of object `thing`: modifiers and shape keys applied, in the world, scaled by the scene's units.
+
+    keep_clear: name of the vertex group that is painted where seams are unwelcome.
+    """
     evaluated = thing.evaluated_get(depsgraph)
     mesh = evaluated.to_mesh()
     try:
         points = positions(mesh).astype(float)
         corners, sizes = faces(mesh)
+        clear = _keep_clear(mesh, evaluated.vertex_groups.get(keep_clear))
     finally:
         evaluated.to_mesh_clear()
     matrix = np.array(evaluated.matrix_world)
     points = (points @ matrix[:3, :3].T + matrix[:3, 3]) * scene.unit_settings.scale_length
     if thing.matrix_world.is_negative:
         corners = _turned(corners, sizes)
-    return Reading(thing.name, points, corners, sizes)
+    return Reading(thing.name, points, corners, sizes, clear)
 
 
 def positions(mesh):
@@ -60,6 +66,18 @@ def faces(mesh):
     mesh.loops.foreach_get("vertex_index", corners)
     mesh.polygons.foreach_get("loop_total", sizes)
     return corners, sizes
+
+
+def _keep_clear(mesh, group):
+    """(n,) prices from painted weights: w / (1 - w), so that half the paint doubles the price and full paint is never."""
+    weights = np.zeros(len(mesh.vertices) if group else 0)
+    if group:
+        for vertex in mesh.vertices:
+            for element in vertex.groups:
+                if element.group == group.index:
+                    weights[vertex.index] = element.weight
+    with np.errstate(divide="ignore"):
+        return weights / (1 - weights)
 
 
 def _turned(corners, sizes):

@@ -7,8 +7,9 @@ class PieceRow(bpy.types.PropertyGroup):
     """One line of the fit table; `name` is the piece's."""
 
     fit: bpy.props.StringProperty()
-    most: bpy.props.FloatProperty(description="Largest stretch, in percent")
-    least: bpy.props.FloatProperty(description="Smallest stretch, in percent")
+    worst: bpy.props.FloatProperty(description="The stretch farthest from none, in percent")
+    low: bpy.props.FloatProperty(description="5 % of the piece stretch less than this, in percent")
+    high: bpy.props.FloatProperty(description="5 % of the piece stretch more than this, in percent")
     beyond: bpy.props.FloatProperty(description="Share of the area beyond the goods' hard limits, in percent")
 
 
@@ -25,17 +26,17 @@ class ResultGroup(bpy.types.PropertyGroup):
     path: bpy.props.StringProperty(description="The pattern's file, as long as this session lasts")
 
 
-def keep(result, pattern, path, notes=()):
-    """Fill `result` from the pattern whose file is `path`; `notes` are added to the pattern's own."""
+def keep(result, summary, path):
+    """Fill `result` from the summary of the pattern whose file is `path`."""
     result.pieces.clear()
-    for piece in pattern.pieces:
+    for piece in summary["pieces"]:
         row = result.pieces.add()
-        row.name, row.fit, row.beyond = piece.name, piece.fit, 100.0 * piece.beyond
-        row.most, row.least = 100.0 * piece.stretch.max(), 100.0 * piece.stretch.min()
+        row.name, row.fit, row.beyond = piece["name"], piece["fit"], 100.0 * piece["beyond"]
+        row.worst, row.low, row.high = (100.0 * piece["stretch"][key] for key in ("worst", "p5", "p95"))
     result.active = 0
-    result.goods = pattern.goods.name
-    result.seam = sum(seam.lengths[0] for seam in pattern.seams if not seam.open)
-    result.notes = "\n".join([*notes, *pattern.form.mended, *pattern.notes])
+    result.goods = summary["goods"]["name"]
+    result.seam = summary["seam_metres"]
+    result.notes = "\n".join(summary["notes"])
     result.path = str(path)
 
 

@@ -4,6 +4,7 @@ import bpy
 import numpy as np
 
 from . import covered, marks, names, read, result
+from .wishes import OWN
 
 
 class Refused(Exception):
@@ -24,6 +25,11 @@ def check(thing, asked, depsgraph):
     """Raise Refused where the pattern that is `asked` for could not be laid on the object."""
     if thing.mode == "EDIT":
         raise Refused(f"{thing.name}: leave Edit Mode (Tab) first.")
+    painted = group(thing).wishes.keep_clear
+    if painted and painted not in thing.vertex_groups:
+        raise Refused(f"{thing.name}: it has no vertex group {painted!r} to keep clear; choose another, or none.")
+    if asked["goods"] == OWN and not asked["own_goods"]:
+        raise Refused(f"{thing.name}: choose the file of your own goods.")
     if asked["route"] != "edges":
         return
     if thing.data.library is not None or thing.data.override_library is not None:
@@ -54,15 +60,21 @@ def take_off(thing):
     result.forget(kept)
 
 
+def read_form(thing, scene, depsgraph):
+    """The read.Reading of a form, with the weights its wishes name."""
+    return read.read(thing, scene, depsgraph, group(thing).wishes.keep_clear)
+
+
 def lay_in(thing, pattern, path, asked, scene):
-    """Put the pattern, whose file is `path`, into the scene and its figures on the object."""
-    kept, notes = group(thing).result, []
+    """Put the pattern, whose file is `path`, into the scene and its figures on the object; returns its summary."""
+    kept, summary = group(thing).result, pattern.summary()
     if asked["route"] == "edges":
         kept.copy, kept.across = None, marks.mark(thing.data, pattern)
         if thing.data.users > 1:
-            notes.append(f"The mesh is shared by {thing.data.users} objects; all of them show these seams.")
+            summary["notes"].append(f"The mesh is shared by {thing.data.users} objects; all of them show these seams.")
     else:
         old = kept.copy if kept.copy is not None and kept.copy.name in scene.objects else None
         kept.copy, kept.across = covered.make(thing, pattern, scene, old)
         group(kept.copy).is_copy = True
-    result.keep(kept, pattern, path, notes)
+    result.keep(kept, summary, path)
+    return summary

@@ -2,61 +2,87 @@
 
 import bpy
 
+OWN = "own"
+"""What `goods` says where the maker's own file is to be used."""
 
-def _goods_names(_self, _context, edit_text):
-    from seamwright import goods
+_items = []  # the host needs the very strings it was given to stay alive
 
-    return [name for name in goods() if edit_text.lower() in name.lower()]
+
+def goods_items(_self=None, _context=None):
+    """Items of the goods' menu: the built-in goods by name, then the maker's own."""
+    if not _items:
+        from seamwright import goods
+
+        for number, (name, each) in enumerate(goods().items()):
+            warp, weft = (100 * pair[1] for pair in (each.stretch_warp, each.stretch_weft))
+            _items.append((name, name.capitalize(), f"Takes {warp:g} % along the warp, {weft:g} % along the weft", number))
+        _items.append((OWN, "Own Goods", "Your own goods, from a TOML file", len(_items)))
+    return _items
+
+
+def _chosen(group):
+    from seamwright import WishError
+    from seamwright.fit.goods import get
+
+    try:
+        name = OWN if group.goods == OWN else get(group.goods).name
+    except WishError:
+        return -1  # a name that only a newer version knows: the menu stays empty
+    return next(number for key, _, _, number in goods_items() if key == name)
+
+
+def _choose(group, number):
+    group.goods = goods_items()[number][0]
 
 
 class WishesGroup(bpy.types.PropertyGroup):
     """What the maker asks for beside the form."""
 
     goods: bpy.props.StringProperty(
+        name="Goods", description="Name of the sheet material, or \"own\"", default="canvas")
+    goods_menu: bpy.props.EnumProperty(
         name="Goods", description="The sheet material, which says how much stretch the pieces may take",
-        default="canvas", search=_goods_names, search_options=set())
-    own_goods: bpy.props.StringProperty(
-        name="Own Goods", description="Your own goods as a TOML file; it is used instead of the built-in goods",
-        subtype="FILE_PATH")
+        items=goods_items, get=_chosen, set=_choose, options={"SKIP_SAVE"})
+    own_goods: bpy.props.StringProperty(name="Goods File", description="Your own goods as a TOML file", subtype="FILE_PATH")
     comfort: bpy.props.FloatProperty(
         name="Comfort", description="How far inside the goods' hard limits the pieces stay: 0 at the hard limits, "
         "1 within the comfortable ones", default=0.5, min=0.0, max=1.0, subtype="FACTOR")
+    route: bpy.props.EnumProperty(
+        name="Route", description="Where seams may run", default="through", items=(
+            ("through", "Through", "Seams run through faces; a covered copy with the seams cut in is made beside the form"),
+            ("edges", "Edges", "Seams run along edges that exist; they are marked on this mesh, whose shape stays as it is"),
+        ))
+    grain: bpy.props.EnumProperty(
+        name="Grain", description="The way the warp runs on the form, from foot to head", default="best", items=(
+            ("best", "Best for Each Piece", "Every piece lies on the goods as it stretches least"),
+            ("x", "Along X", "Along the object's X axis"),
+            ("y", "Along Y", "Along the object's Y axis"),
+            ("z", "Along Z", "Along the object's Z axis"),
+        ))
+    keep_clear: bpy.props.StringProperty(
+        name="Keep Clear", description="Vertex group painted where seams are unwelcome: a seam costs twice at weight 0.5, "
+        "ten times at 0.9, and is never laid at 1")
+    choose_pieces: bpy.props.BoolProperty(name="Choose Pieces", description="Wish for a number of pieces")
+    pieces: bpy.props.IntProperty(name="Pieces", description="Wished number of pieces", default=4, min=1, soft_max=50)
     choose_thrift: bpy.props.BoolProperty(
         name="Choose Thrift", description="Set the price of seams yourself; otherwise the cheapest seams that fit "
         "the goods are looked for")
     thrift: bpy.props.FloatProperty(
         name="Thrift", description="Price of one metre of seam on a form scaled to the area of a unit sphere: "
         "more gives fewer seams and more stretch", default=0.1, min=1e-6, soft_max=10.0, max=1e6, precision=4)
-    pieces: bpy.props.IntProperty(
-        name="Pieces", description="Wished number of pieces; 0 leaves it open", default=0, min=0, soft_max=50)
-    route: bpy.props.EnumProperty(
-        name="Route", description="Where seams may run", default="through", items=(
-            ("through", "Through", "Seams run through faces; a covered copy with the seams cut in is made beside the form"),
-            ("edges", "Edges", "Seams run along edges that exist; they are marked on this mesh, whose shape stays as it is"),
-        ))
-    symmetry: bpy.props.EnumProperty(
-        name="Symmetry", description="Whether the pattern mirrors where the form does", default="auto", items=(
-            ("auto", "Auto", "Find the form's planes of symmetry and keep to them"),
-            ("none", "None", "Take no notice of symmetry"),
-        ))
-    thickness_side: bpy.props.EnumProperty(
-        name="Form Is", description="Which side of thick goods the modelled surface is", default="none", items=(
-            ("none", "Thin Goods", "Take no notice of the goods' thickness"),
-            ("outside", "Outside", "The form is the outside of the goods"),
-            ("inside", "Inside", "The form is the inside of the goods: the goods lie upon it"),
-        ))
-    seed: bpy.props.IntProperty(name="Seed", description="The same form, wishes and seed give the same pattern", min=0)
 
     def asked(self):
-        """The wishes as plain keyword arguments for the solver, ready for JSON; `own_goods` is an absolute path or None."""
+        """The wishes as plain data, ready for JSON: keyword arguments of the solver's Wishes, and `own_goods`, a path.
+
+        Only the weights to keep clear are not among them: they come with the Reading.
+        """
+        axis = {"x": 0, "y": 1, "z": 2}.get(self.grain)
         return {
             "goods": self.goods,
-            "own_goods": bpy.path.abspath(self.own_goods) if self.own_goods else None,
+            "own_goods": bpy.path.abspath(self.own_goods) if self.goods == OWN else None,
             "comfort": round(self.comfort, 6),
-            "thrift": float(f"{self.thrift:.6g}") if self.choose_thrift else None,
-            "pieces": self.pieces or None,
             "route": self.route,
-            "symmetry": self.symmetry,
-            "thickness_side": self.thickness_side,
-            "seed": self.seed,
+            "grain": None if axis is None else list(self.id_data.matrix_world.col[axis].xyz.normalized()),
+            "thrift": float(f"{self.thrift:.6g}") if self.choose_thrift else None,
+            "pieces": self.pieces if self.choose_pieces else None,
         }

@@ -15,15 +15,15 @@ import threading
 from pathlib import Path
 
 
-def wishes_of(asked):
-    """The solver's Wishes from plain data as `WishesGroup.asked` gives it. Raises WishError."""
+def wishes_of(asked, keep_clear=()):
+    """The solver's Wishes from plain data as `WishesGroup.asked` gives it, and from weights. Raises WishError."""
     import seamwright as sw
 
     plain = dict(asked)
     own = plain.pop("own_goods", None)
     if own:
         plain["goods"] = sw.read_goods(own)
-    return sw.Wishes(**plain)
+    return sw.Wishes(**plain, keep_clear=keep_clear if len(keep_clear) else None)
 
 
 def say(**message):
@@ -40,10 +40,11 @@ def work(folder):
 
     try:
         with np.load(folder / "form.npz") as arrays:
-            points, corners, sizes = arrays["points"], arrays["corners"], arrays["sizes"]
+            points, corners, sizes, keep_clear = (arrays[key] for key in ("points", "corners", "sizes", "keep_clear"))
         faces = corners.reshape(-1, 3) if (sizes == 3).all() else np.split(corners, np.cumsum(sizes)[:-1])
         form = sw.Form(points, faces, name=request["name"])
-        pattern = sw.cover(form, wishes_of(request["wishes"]), lambda share, words: say(share=float(share), words=words))
+        wishes = wishes_of(request["wishes"], keep_clear)
+        pattern = sw.cover(form, wishes, lambda share, words: say(share=float(share), words=words))
         if request["save"]:
             pattern.save(**request["save"])
     except (sw.SeamwrightError, OSError, MemoryError) as error:
@@ -55,7 +56,7 @@ def work(folder):
 
 
 def _end_with_parent():
-    sys.stdin.buffer.read()
+    os.read(0, 1)  # nothing is ever written there: this returns when the parent is gone
     os._exit(1)
 
 

@@ -3,7 +3,6 @@
 import bpy
 
 from .. import names, target
-from ..read import read
 
 
 def sentences(reading):
@@ -40,7 +39,7 @@ class SEAMWRIGHT_OT_check(bpy.types.Operator):
         """Report, and show the sentences where there is a window."""
         thing = context.object
         thing.update_from_editmode()
-        sound, lines = sentences(read(thing, context.scene, context.evaluated_depsgraph_get()))
+        sound, lines = sentences(target.read_form(thing, context.scene, context.evaluated_depsgraph_get()))
         self.report({"INFO" if sound else "WARNING"}, f"{thing.name}: {'; '.join(lines)}")
         if not bpy.app.background:
             context.window_manager.popup_menu(

@@ -4,9 +4,8 @@ import time
 
 import bpy
 
-from .. import names, target
+from .. import names, target, words
 from ..job import Job, JobError
-from ..read import read
 
 TICK = 0.1
 """Seconds between two looks at the child process."""
@@ -92,7 +91,7 @@ class SEAMWRIGHT_OT_cover(bpy.types.Operator):
         except target.Refused as refused:
             self.report({"ERROR"}, str(refused))
             return False
-        self.job = Job(read(thing, context.scene, depsgraph), self.asked)
+        self.job = Job(target.read_form(thing, context.scene, depsgraph), self.asked)
         return True
 
     def _finish(self, context):
@@ -103,17 +102,13 @@ class SEAMWRIGHT_OT_cover(bpy.types.Operator):
                 raise JobError(f"{self.form_name}: it is gone or has another name now, so the pattern was dropped.")
             depsgraph = context.evaluated_depsgraph_get()
             target.check(thing, self.asked, depsgraph)
-            if not read(thing, context.scene, depsgraph).same(self.job.reading):
+            if not target.read_form(thing, context.scene, depsgraph).same(self.job.reading):
                 raise JobError(f"{self.form_name}: it was changed meanwhile, so the pattern was dropped. Cover it again.")
         except (JobError, target.Refused) as error:
             self.report({"ERROR"}, str(error))
             return {"CANCELLED"}
-        target.lay_in(thing, pattern, self.job.path, self.asked, context.scene)
-        strained = [piece.name for piece in pattern.pieces if piece.fit == "strained"]
-        if strained:
-            self.report({"WARNING"}, f"{self.form_name}: {len(pattern.pieces)} pieces, strained: {', '.join(strained)}.")
-        else:
-            self.report({"INFO"}, f"{self.form_name}: {len(pattern.pieces)} pieces, all fit {pattern.goods.name}.")
+        summary = target.lay_in(thing, pattern, self.job.path, self.asked, context.scene)
+        self.report({"INFO" if summary["fits"] else "WARNING"}, f"{self.form_name}: {words.of_pattern(summary)}.")
         return {"FINISHED"}
 
     def _leave(self, context):

@@ -70,8 +70,8 @@ def merged(labels, i, j):
 def make_disks(level, labels):
     """(n,) labels whose regions are all disks: what is none falls into cells, cells merge again while disks stay disks."""
     labels = split_components(level.surface, labels)
-    for region in np.flatnonzero(regions(level, labels).euler != 1):
-        inside = np.flatnonzero(labels == region)
+    for first in [np.argmax(labels == region) for region in np.flatnonzero(regions(level, labels).euler != 1)]:
+        inside = np.flatnonzero(labels == labels[first])  # regions change their numbers meanwhile, points do not
         cells = CELLS
         while True:
             trial = labels.copy()

@@ -1,0 +1,193 @@
+"""Planes of symmetry, and how a field on a surface looks in the mirror.
+
+Candidate planes through the centre of area are scored on points spread evenly over the surface, so the triangulation does
+not matter; the best are refined by matching the mirrored points with the nearest ones, in the least squares of the distances
+along the normal (Chen, Medioni 1992), far matches counting little; then they are measured against the surface itself.
+"""
+
+from dataclasses import dataclass
+
+import numpy as np
+from scipy.sparse import csr_matrix
+from scipy.spatial import cKDTree
+
+from .measure import areas, total_area, triangle_normals, vertex_normals
+from .nearest import Nearest
+
+NEAR = 0.003
+"""Largest mirror error, as a share of the form's size (square root of its area)."""
+SHARE = 0.99
+"""Share of the area that has to lie within it: a few stray points do no harm."""
+SPREAD, SOURCES = 4000, 250
+"""Points spread over the surface, and how many of them are mirrored in a trial."""
+ALIKE = 0.15
+"""Moments of inertia nearer than this share are taken as equal: every direction between their axes is tried."""
+FAN, GLOBE = 60, 240
+"""Directions tried around an axis, and over the half globe when all moments are alike."""
+TRIALS = 8
+"""Candidates refined at most."""
+UPRIGHT, SIDEWAYS = 0.3, 0.1
+"""What a level plane costs against an upright one, and one across y against one across x, in units of the tolerance."""
+EVEN = 0.3
+"""Misfits under this share of the tolerance are taken as equal."""
+
+
+@dataclass
+class Plane:
+    """point (3,) metres, normal (3,) unit; error: metres within which SHARE of the area finds its mirror image."""
+
+    point: np.ndarray
+    normal: np.ndarray
+    error: float
+
+    def mirrored(self, points):
+        """(k, 3) mirror images."""
+        return points - 2 * ((points - self.point) @ self.normal)[:, None] * self.normal
+
+    def turned(self, vectors):
+        """(k, 3) mirror images of directions."""
+        return vectors - 2 * (vectors @ self.normal)[:, None] * self.normal
+
+
+def planes(surface, most=1):
+    """List of at most `most` Planes of symmetry of a connected Surface, best first, each at right angles to the others.
+
+    Reflections at right angles commute, so a field can be made symmetric in one after the other. Of equally good planes the
+    upright one comes first (it holds the z direction), then the one across x. The result depends on the surface alone.
+    """
+    spread = _Spread(surface)
+    nearest = Nearest(surface)
+    tolerance = NEAR * spread.size
+    normals = _directions(spread)
+    rank = np.maximum(spread.misfit(normals) / tolerance, EVEN) + _dislike(normals)
+    normals = normals[np.argsort(rank, kind="stable")]
+    found, refused = [], []
+    for normal in normals:
+        tried = np.array([plane.normal for plane in found] + refused).reshape(-1, 3)
+        if len(found) == most or len(tried) == TRIALS:
+            break
+        if (np.abs(tried @ normal) > np.cos(0.1)).any() or not _at_right_angles(normal, found):
+            continue
+        plane = spread.refined(normal, tolerance)
+        plane.error = _error(spread, nearest, plane)
+        if plane.error <= tolerance and _at_right_angles(plane.normal, found):
+            found.append(plane)
+        else:
+            refused.append(normal)
+    return sorted(found, key=lambda plane: plane.error / tolerance + _dislike(plane.normal[None])[0])
+
+
+def mirrored_points(surface, plane):
+    """(triangle (n,), barycentric (n, 3)): where on the Surface each point's mirror image lies."""
+    points, normals = plane.mirrored(surface.points), plane.turned(vertex_normals(surface))
+    return Nearest(surface).places(points, normals)[:2]
+
+
+def reflection(surface, plane):
+    """(n, n) csr matrix R: R @ f is the field f (n,) or (n, k) seen in the mirror, linear within triangles."""
+    triangle, share = mirrored_points(surface, plane)
+    n = len(triangle)
+    return csr_matrix((share.ravel(), surface.triangles[triangle].ravel(), 3 * np.arange(n + 1)), shape=(n, n))
+
+
+class _Spread:
+    """Points spread evenly over a surface, with normals and a tree."""
+
+    def __init__(self, surface):
+        area = areas(surface)
+        self.size = np.sqrt(total_area(surface))
+        # equal steps of area; within the triangle a low-discrepancy sequence (Roberts 2018: powers of the plastic number)
+        steps = np.cumsum(area) / area.sum()
+        triangle = np.searchsorted(steps, (np.arange(SPREAD) + 0.5) / SPREAD).clip(max=len(area) - 1)
+        u, v = np.modf(np.arange(1, SPREAD + 1)[:, None] * [0.7548776662466927, 0.5698402909980532])[0].T
+        over = u + v > 1
+        u, v = np.where(over, 1 - u, u), np.where(over, 1 - v, v)
+        a, b, c = (surface.points[surface.triangles[triangle, k]] for k in range(3))
+        self.points = a + u[:, None] * (b - a) + v[:, None] * (c - a)
+        self.normals = triangle_normals(surface)[triangle]
+        self.middle = self.points.mean(axis=0)
+        self._weight = 0.05 * self.size
+        self._tree = cKDTree(np.column_stack([self.points, self._weight * self.normals]))
+        self._some = np.random.default_rng(0).permutation(SPREAD)[:SOURCES]
+
+    def _match(self, points, normals):
+        gap, at = self._tree.query(np.column_stack([points, self._weight * normals]))
+        return gap, at
+
+    def misfit(self, normals):
+        """(k,) metres: mean distance of mirrored points to their match for planes through the middle, far ones cut off."""
+        gaps = np.empty(len(normals))
+        for k, normal in enumerate(normals):
+            plane = Plane(self.middle, normal, np.inf)
+            image = plane.mirrored(self.points[self._some])
+            gap, at = self._match(image, plane.turned(self.normals[self._some]))
+            off = np.abs(np.einsum("kx,kx->k", image - self.points[at], self.normals[at]))
+            gaps[k] = np.where(gap < 2 * self.size / np.sqrt(SPREAD), off, np.minimum(gap, 0.1 * self.size)).mean()
+        return gaps
+
+    def refined(self, normal, tolerance):
+        """The Plane near a candidate through the middle that matches best; error not yet measured."""
+        plane = Plane(self.middle, normal, np.inf)
+        points, normals = self.points[self._some], self.normals[self._some]
+        for _ in range(12):
+            image = plane.mirrored(points)
+            at = self._match(image, plane.turned(normals))[1]
+            facing = self.normals[at]
+            off = np.einsum("kx,kx->k", image - self.points[at], facing)
+            spread = max(tolerance, 2 * np.median(np.abs(off)))
+            weight = 1 / (1 + (off / spread) ** 2)
+            # image = p - 2 h n with h = (p - point) . n; unknown: n's turn in the two directions across it, a shift along it
+            across = _across(plane.normal)
+            height = (points - plane.point) @ plane.normal
+            along = facing @ plane.normal
+            turn = -2 * ((points - plane.point) @ across.T * along[:, None] + height[:, None] * (facing @ across.T))
+            rows = np.column_stack([turn / self.size, 2 * along]) * weight[:, None]
+            change = np.linalg.lstsq(rows, -off * weight, rcond=0.02)[0]
+            turned = plane.normal + (change[:2] / self.size) @ across
+            turned /= np.linalg.norm(turned)
+            plane = Plane(plane.point + change[2] * plane.normal, turned, np.inf)
+            if np.abs(change).max() < 1e-6 * self.size:
+                break
+        return Plane(self.middle + ((plane.point - self.middle) @ plane.normal) * plane.normal, plane.normal, np.inf)
+
+
+def _error(spread, nearest, plane):
+    """Metres within which SHARE of the area finds its mirror image on the surface."""
+    points, normals = spread.points[::4], spread.normals[::4]
+    turned = plane.turned(normals)
+    triangle, _, gap = nearest.places(plane.mirrored(points), turned)
+    facing = np.einsum("kx,kx->k", turned, nearest.normals[triangle])
+    return float(np.quantile(np.where(facing > 0, gap, spread.size), SHARE))
+
+
+def _directions(spread):
+    """(k, 3) candidate normals: the coordinate axes, those of inertia, and all directions between axes of like moments."""
+    centred = spread.points - spread.middle
+    moments, axes = np.linalg.eigh(centred.T @ centred)
+    found = [np.eye(3), axes.T]
+    like = moments[1:] - moments[:-1] < ALIKE * moments[1:]
+    if like.all():
+        k = np.arange(GLOBE) + 0.5
+        z, turn = 1 - k / GLOBE, np.pi * (1 + 5**0.5) * k  # an even spiral over the half globe
+        flat = np.sqrt(1 - z * z)
+        found.append(np.column_stack([flat * np.cos(turn), flat * np.sin(turn), z]))
+    for k in np.flatnonzero(like):
+        angle = np.arange(FAN) * np.pi / FAN
+        found.append(np.cos(angle)[:, None] * axes[:, k] + np.sin(angle)[:, None] * axes[:, k + 1])
+    normals = np.concatenate(found)
+    return normals * np.where(normals[:, :1] < 0, -1.0, 1.0)
+
+
+def _dislike(normals):
+    return UPRIGHT * np.abs(normals[:, 2]) + SIDEWAYS * (1 - np.abs(normals[:, 0]))
+
+
+def _at_right_angles(normal, found):
+    return all(abs(normal @ plane.normal) < 0.1 for plane in found)
+
+
+def _across(normal):
+    """(2, 3) unit directions at right angles to a normal and to each other."""
+    first = np.cross(normal, np.eye(3)[np.abs(normal).argmin()])
+    first /= np.linalg.norm(first)
+    return np.array([first, np.cross(normal, first)])

@@ -19,7 +19,7 @@ CIRCLES = 24
 
 
 def plane():
-    """(level, centre -> distance function, closed forms): a flat disk; circles off its middle, so that no ring of edges fits."""
+    """(level, centre -> distance function, closed forms): a flat disk; circles off its middle, clear of its rings."""
     points, faces = disk(1.0, 40)
 
     def distance(seed):
@@ -97,6 +97,7 @@ def test_a_great_circle_rests():
     pulls = []
     for refined in (3, 4, 5):
         level, distance = sphere(refined)
-        pulls.append(np.sqrt(np.mean([(circle(level, distance(seed), np.pi / 2)[1] / (2 * np.pi)) ** 2 for seed in range(12)])))
+        gradients = [circle(level, distance(seed), np.pi / 2)[1] for seed in range(12)]
+        pulls.append(np.sqrt(np.mean(np.square(gradients))) / (2 * np.pi))
     assert np.log2(pulls[0] / pulls[2]) / 2 > 1.6  # second order, blurred by the few circles averaged
     assert pulls[2] < 1e-3

@@ -13,7 +13,8 @@ from seamwright.seams.study import log_scale, seam_energy
 
 FORMS = {
     "ellipsoid": ellipsoid(1.0, 0.8, 0.5, 2), "torus": torus(1.0, 0.4, 16, 9), "cap": cap(1.4, 7),
-    "tube": cylinder(1.0, 3.0, 12), "cube": cube(1.0, 5), "limbs": limbs([(1, 0, 0), (-0.6, 0.8, 0), (-0.6, -0.8, 0.3)], 0.3, 0.2, 0.05, 14),
+    "tube": cylinder(1.0, 3.0, 12), "cube": cube(1.0, 5),
+    "limbs": limbs([(1, 0, 0), (-0.6, 0.8, 0), (-0.6, -0.8, 0.3)], 0.3, 0.2, 0.05, 14),
 }
 ENERGIES = {"square": "square", "dirichlet": "dirichlet", "hencky": "hencky", "the caller's own": OWN}
 

@@ -47,17 +47,17 @@ def relax_for_goods(surface, flat, goods, comfort=0.0, wanted=None, stages=None,
         if best[0] <= max(enough, 1e-6):
             break
         state = State(rest, GoodsEnergy(goods, comfort, exponent, used(now)), now)
-        steps += _settle(state, held)
+        steps += settle(state, lambda state=state: state.newton_direction(DAMPING, held, np.zeros(1)))
         now = resize(rest, state.flat, goods, comfort)
         best = min(best, (used(now), now), key=lambda pair: pair[0])
     return Shaped(as_points(best[1]), best[0], steps)
 
 
-def _settle(state, held):
-    """Newton steps while they pay; returns their number."""
+def settle(state, direction):
+    """Steps of a State along direction() while they pay; returns their number."""
     for step in range(STEPS):
-        before, direction = state.value, state.newton_direction(DAMPING, held, np.zeros(1))
-        if -dot(state.gradient, direction) <= 1e-3 * before or not state.step(direction):
+        before, way = state.value, direction()
+        if -dot(state.gradient, way) <= 1e-3 * before or not state.step(way):
             return step
         if before - state.value < 0.02 * before:
             return step + 1

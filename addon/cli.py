@@ -9,7 +9,7 @@ import json
 import os
 import sys
 
-from . import command, properties, words
+from . import command, names, properties, words
 from .command import WrongUse
 
 KINDS = ("pdf", "svg", "json", "html")
@@ -27,7 +27,7 @@ def main(argv):
     except SystemExit as end:
         return end.code if isinstance(end.code, int) else 2
     except WrongUse as error:
-        print(f"seamwright: {error}", file=sys.stderr)
+        print(f"{names.COMMAND}: {error}", file=sys.stderr)
         return 2
     plain = words.of_goods(result["goods"]) if "goods" in result else words.of_forms(result["forms"])
     with os.fdopen(answer, "w", encoding="utf-8") as out:
@@ -38,7 +38,7 @@ def main(argv):
 def parser():
     """The argparse parser of the three commands."""
     top = argparse.ArgumentParser(
-        prog="seamwright", description="Seams, flat pieces and cutting sheets for forms covered in sheet goods.",
+        prog=names.COMMAND, description="Seams, flat pieces and cutting sheets for forms covered in sheet goods.",
         epilog=STATUSES, formatter_class=argparse.RawDescriptionHelpFormatter)
     commands = top.add_subparsers(dest="command", required=True, metavar="COMMAND")
     files = argparse.ArgumentParser(add_help=False)

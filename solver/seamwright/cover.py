@@ -7,14 +7,13 @@ import numpy as np
 from .assemble import assemble
 from .errors import CoverError, WishError
 from .fit.goods import get
-from .fit.judge import judge
-from .fit.tailor import Tailored, dropped, tailor
+from .fit.tailor import Tailor
 from .form.surface import Surface
+from .pattern import Pattern
 from .seams.ladder import Ladder
 from .seams.network import cut_through
 from .seams.prices import seam_prices
 from .seams.route import cut_along
-from .pattern import Pattern
 from .seams.seek import seek
 from .seams.topology import point_labels
 from .wishes import Wishes
@@ -75,15 +74,14 @@ def _cover_part(form, part, wishes, goods, tell):
             return cut_along(level, cut, part.polygon, part.diagonal, metric)
         return cut_through(level, cut, metric)
 
+    tailor = Tailor(ladder, explicit, goods, wishes.comfort, wishes.grain)
     if wishes.thrift is None and wishes.pieces is None and wishes.start is None:
-        result = tailor(ladder, explicit, goods, wishes.comfort, wishes.grain, tell)
+        result = tailor.run(tell)
     else:
         found = seek(ladder, wishes.thrift or 0.1, wishes.energy, wishes.pieces, _begin(form, part, wishes), tell)
-        network = explicit(found.cut)
-        judged = [judge(network.piece_surface(k)[0], goods, wishes.comfort, wishes.grain) for k in range(network.pieces[0])]
-        result = Tailored(network, judged, max(one.utilisation for one in judged), 0)
+        result = tailor.real(len(ladder.levels) - 1, found.cut)
         if wishes.pieces is None:
-            result = dropped(result, goods, wishes.comfort, wishes.grain)
+            result = tailor.dropped(result)[0]
     result.network = replace(result.network, source=part.triangles[result.network.source])
     return result
 

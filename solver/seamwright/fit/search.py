@@ -6,125 +6,142 @@ split, neighbours whose union still fits are merged. All on coarse levels, by th
 calibrates later (`judge`).
 """
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
-from ..seams.cut import recut
+from ..seams.cut import cut_by_fields, recut
+from ..seams.descend import descend
 from ..seams.energy import evaluate
 from ..seams.fields import from_labels, redistance
-from ..seams.descend import descend
 from ..seams.starts import starts, tidied
-from ..seams.topology import merged, regions, voronoi
+from ..seams.topology import merged, nearer, regions, voronoi
 from .foresee import largest
 
-ROUNDS = (8, 4, 2)  # rounds by rung, the last for every rung beyond
 STEPS = 6  # flow steps in a round
-KEPT = (2, 1, 1)
-TOO_MUCH = 1.5  # use of the limits at which a piece is split at once
+HALVINGS = (2, 2, 4)  # rounds on the first rung after each of which only the better half of the starts goes on
+CELLS = (2, 3, 4, 6, 9)  # sizes of the cells among the starts
+TOO_MUCH = 3.0  # use of the limits at which a piece is split at once
+PATIENCE = 4  # rounds running that a piece may be beyond its limits before it is split
 ROOM = 0.97  # foreseen use under which a union may be merged
+OVER = 1.02  # foreseen use that counts as beyond
 MOST_PIECES = 40
+SMALLEST_SPLIT = 0.02  # share of the form's area under which a piece is not split
+SWAY = (0.6, 2.2)  # bounds on one change of a weight
+LEARNT = (0.5, 2.5)  # bounds on one correction of the foresight
 
 
 @dataclass
 class State:
-    """A network on a level: cut, fields (n, K), weights (K,), use (K,) of the limits as foreseen, length of seam."""
+    """A network on a level: cut, fields (n, K), weights (K,), use (K,) of the limits as foreseen, length of seam;
+    strictness (n of the form,) factor on the use at each point, learnt from real flattening."""
 
     cut: object
     fields: np.ndarray
     weights: np.ndarray
     use: np.ndarray
     length: float
+    strictness: np.ndarray
     strained: int = 0  # rounds running in which some piece was beyond its limits
 
     @property
     def rank(self):
         """Length, dearer the farther the worst piece is beyond its limits."""
-        return self.length * max(1.0, self.use.max() / 1.02) ** 2 + 0.05 * len(self.use)
+        return self.length * max(1.0, self.use.max() / OVER) ** 2 + 0.05 * len(self.use)
 
 
 class Search:
-    """Search on a ladder for the u that the goods reach. strictness (n,) on the form's points: factor on the use there,
-    learnt from real flattening; 1 to begin with."""
+    """Search on a ladder, for goods that a log scale of `reach` uses fully."""
 
-    def __init__(self, ladder, reach, strictness=None):
+    def __init__(self, ladder, reach):
         self.ladder, self.reach = ladder, reach
-        self.strictness = np.ones(len(ladder.owners[-1])) if strictness is None else strictness
 
-    def begin(self, progress=None):
-        """Best State on the first rung that is worth it, from all starts."""
+    def begin(self):
+        """The States of the first rung, best first; the worse half of the starts is dropped after every few rounds."""
         level = self.ladder.levels[0]
-        begin_weight = 4.0 / self.reach**2
+        weight = 4.0 / self.reach**2  # seam and distortion then weigh alike on a quarter of a sphere
+        strictness = np.ones(len(self.ladder.owners[0]))
         pool = []
-        sizes = (2, 3, 4, 6, 9)
-        for labels in starts(level, sizes):
-            fields = from_labels(level, labels)
-            state = self._state(0, descend(level, fields, 1.0, "square", np.full(fields.shape[1], begin_weight), STEPS).cut, labels,
-                                np.full(len(labels), begin_weight))
-            pool.append(self.rounds(0, state, ROUNDS[0]))
-        return sorted(pool, key=lambda state: state.rank)
-
-    def climb(self, pool, top, progress=None):
-        """Carry the best of the pool (States of rung 0) up to the rung `top`."""
-        for rung in range(1, top + 1):
-            pool = sorted(pool, key=lambda state: state.rank)[: KEPT[min(rung - 1, 2)]]
-            pool = [self.rounds(rung, self.lifted(rung, state), ROUNDS[min(rung, 2)]) for state in pool]
-        return min(pool, key=lambda state: state.rank)
+        for labels in starts(level, CELLS):
+            cut = cut_by_fields(level.surface, from_labels(level, labels))
+            pool.append(self._state(0, cut, labels, np.full(len(labels), weight), strictness))
+        for count in HALVINGS:
+            pool = sorted((self.rounds(0, state, count) for state in pool), key=lambda state: state.rank)
+            pool = pool[: (len(pool) + 1) // 2]
+        return pool
 
     def lifted(self, rung, state):
         """The State one rung up."""
         level = self.ladder.levels[rung]
         fields = self.ladder.lift(state.fields, rung - 1, rung)
         end = descend(level, fields, 1.0, "square", state.weights, STEPS)
-        return self._state(rung, end.cut, tidied(level, end.cut.labels), state.weights[end.cut.labels])
+        return self._after(rung, state, end.cut)
 
-    def restated(self, rung, state):
-        """The State with its use foreseen anew, after the strictness has changed."""
-        return self._state(rung, state.cut, state.cut.labels, state.weights[state.cut.labels])
+    def learnt(self, rung, state, real):
+        """The State after the real use (K,) of its pieces is known: stricter where the foresight was too mild."""
+        factor = np.clip(real / np.maximum(state.use, 1e-6), *LEARNT)
+        strictness = state.strictness * factor[state.cut.labels][self.ladder.owners[rung]]
+        state = self._state(rung, state.cut, state.cut.labels, state.weights[state.cut.labels], strictness, state.strained)
+        state.weights = state.weights * np.clip(state.use**2, *SWAY)
+        return state
 
     def rounds(self, rung, state, count):
         """Flow, weigh, split and merge for `count` rounds; the best State met."""
         level = self.ladder.levels[rung]
         best = None
         for turn in range(count):
-            state = self._split(rung, state, last=turn >= count - 2)
+            if turn == 0 or turn < count - 2:  # what is split needs a round or two to settle
+                state = self.split(rung, state, self._overdone(rung, state))
             end = descend(level, state.fields, 1.0, "square", state.weights, STEPS)
-            state = self._state(rung, end.cut, tidied(level, end.cut.labels), state.weights[end.cut.labels], state.strained)
-            state = self._merge(rung, state)
+            state = self._merge(rung, self._after(rung, state, end.cut))
             if best is None or state.rank < best.rank:
-                best = state
-            state.strained = state.strained + 1 if state.use.max() > 1.02 else 0
-            state.weights = state.weights * np.clip(state.use**2, 0.6, 1.8)
+                best = replace(state)
+            state.strained = state.strained + 1 if state.use.max() > OVER else 0
+            state.weights = state.weights * np.clip(state.use**2, *SWAY)
         return best
 
-    def _use(self, rung, labels, u):
+    def _after(self, rung, state, cut):
+        """The State after a flow from `state` has ended in `cut`."""
+        labels = tidied(self.ladder.levels[rung], cut.labels)
+        return self._state(rung, cut, labels, state.weights[cut.labels], state.strictness, state.strained)
+
+    def _use(self, rung, labels, u, strictness):
         level, owner = self.ladder.levels[rung], self.ladder.owners[rung]
         count = len(level.surface.points)
-        strictness = np.bincount(owner, self.strictness, minlength=count) / np.bincount(owner, minlength=count)
-        return largest(level, labels, strictness * u) / self.reach
+        factor = np.bincount(owner, strictness, minlength=count) / np.bincount(owner, minlength=count)
+        return largest(level, labels, factor * u) / self.reach
 
-    def _state(self, rung, cut, labels, point_weights, strained=0):
+    def _state(self, rung, cut, labels, point_weights, strictness, strained=0):
         level = self.ladder.levels[rung]
         cut = recut(level.surface, cut, labels)
         count = int(labels.max()) + 1
         cost = evaluate(level, cut, 1.0, "square", gradient=False)
         size = np.bincount(labels, minlength=count)
         weights = np.exp(np.bincount(labels, np.log(point_weights), minlength=count) / size)
-        return State(cut, redistance(level, cut, count), weights, self._use(rung, labels, cost.u), cost.length, strained)
+        use = self._use(rung, labels, cost.u, strictness)
+        return State(cut, redistance(level, cut, count), weights, use, cost.length, strictness, strained)
 
-    def _split(self, rung, state, last):
-        """Split what is far beyond its limits, or beyond them for long."""
+    def _overdone(self, rung, state):
+        """Regions far beyond their limits, or beyond them for long, worst first."""
+        areas = regions(self.ladder.levels[rung], state.cut.labels).area
+        limit = TOO_MUCH if state.strained < PATIENCE else 1.15
+        beyond = np.flatnonzero((state.use > limit) & (areas > SMALLEST_SPLIT * areas.sum()))
+        return beyond[np.argsort(-state.use[beyond], kind="stable")]
+
+    def split(self, rung, state, which, places=None):
+        """The State with the regions `which` cut in two, as far as MOST_PIECES allows.
+
+        places: for each region the two points (2, 3), on the level's scale, that are to be parted; halves without.
+        """
         level, labels = self.ladder.levels[rung], state.cut.labels
-        limit = TOO_MUCH if state.strained < 2 else 1.1
-        areas = regions(level, labels).area
-        beyond = np.flatnonzero((state.use > limit) & (areas > 0.04 * areas.sum()))
-        if last or not len(beyond) or len(state.use) >= MOST_PIECES:
-            return state
         trial = labels.copy()
-        for region in beyond[np.argsort(-state.use[beyond], kind="stable")][: MOST_PIECES - len(state.use)]:
+        for number, region in enumerate(which[: max(0, MOST_PIECES - len(state.use))]):
             inside = np.flatnonzero(labels == region)
-            trial[inside] = np.where(voronoi(level, 2, inside) == 1, trial.max() + 1, region)
-        return self._state(rung, state.cut, tidied(level, trial), state.weights[labels])
+            half = voronoi(level, 2, inside) if places is None else nearer(level, inside, places[number])
+            trial[inside] = np.where(half == 1, trial.max() + 1, region)
+        if np.array_equal(trial, labels):
+            return state
+        return self._state(rung, state.cut, tidied(level, trial), state.weights[labels], state.strictness)
 
     def _merge(self, rung, state):
         """Merge neighbours, longest border first, whose union is a disk and still fits."""
@@ -143,9 +160,9 @@ class Search:
                 trial = merged(labels, i, j)
                 cut = recut(level.surface, state.cut, trial)
                 cost = evaluate(level, cut, 1.0, "square", gradient=False)
-                use = self._use(rung, trial, cost.u)
+                use = self._use(rung, trial, cost.u, state.strictness)
                 if use[trial[labels == i][0]] <= ROOM:
-                    state = self._state(rung, cut, trial, state.weights[labels], state.strained)
+                    state = self._state(rung, cut, trial, state.weights[labels], state.strictness, state.strained)
                     break
                 refused.add(key)
             else:

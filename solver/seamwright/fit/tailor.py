@@ -1,120 +1,235 @@
-"""From the foreseen to the real: flatten the pieces, learn where the foresight erred, search again, drop what is not needed."""
+"""From the foreseen to the real: flatten the pieces, learn where the foresight erred, search again, drop spare seams.
 
-from dataclasses import dataclass
+The learning happens on a coarse rung, where a flattening costs little; the form itself only confirms, and is corrected
+where it does not.
+"""
+
+from dataclasses import dataclass, replace
 
 import numpy as np
 
 from ..errors import CoverError
+from ..seams.network import cut_through
+from ..seams.opened import edges_in, halves_border, opened
 from .foresee import reach
 from .judge import judge
 from .search import Search
 
-LEARNT = (0.5, 2.5)  # bounds on one correction of the foresight
-CORRECTIONS = 3
+LEARNING = 1  # the rung on which the foresight learns, where there is one
+CANDIDATES = 2  # networks that learn
 ENOUGH = 1.0  # real use of the limits that counts as fitting
-SPLIT_SIGN = 1.7  # the correction where a piece lies over itself in the flat
+NEARLY = 0.93  # a network that fits and has a piece this near its limits is not worth another lesson
+LESSONS = (3, 5)  # most lessons on the learning rung: for every candidate, then for the best
+ROUNDS = 5  # rounds after each
+CONFIRMATIONS = 3  # most flattenings of the form itself, with a lesson between
+SHAPED, SHAPED_WOVEN = 0.93, 0.65  # full shaping brings the use down to about this share of what the first stage reaches
+MARGIN = 0.97  # use under which a seam is dropped on the learning rung: the form itself may ask a little more
+NEAR = 0.15  # a chain on another rung is the same one when its middle is this near, as a share of the form's size
 
 
 @dataclass
 class Tailored:
-    """network, judged: one Judged a piece, in the network's order; use: the largest real use; corrections made."""
+    """network, judged: one Judged a piece, in the network's order."""
 
     network: object
     judged: list
-    use: float
-    corrections: int
+
+    @property
+    def use(self):
+        """The largest real use of the limits."""
+        return max(one.utilisation for one in self.judged)
+
+    @property
+    def fits(self):
+        """True when no piece is beyond its limits or over itself."""
+        return self.use <= ENOUGH and not any(one.crossings for one in self.judged)
+
+    @property
+    def rank(self):
+        """Length, dearer the farther the worst piece is beyond its limits, and for every piece over itself."""
+        over = sum(bool(one.crossings) for one in self.judged)
+        return self.network.length() * max(1.0, self.use / ENOUGH) ** 3 * (1 + over)
 
 
-def tailor(ladder, explicit, goods, comfort, grain=None, progress=None):
-    """The cheapest network found whose pieces fit, or the least strained one met. explicit(cut) -> Network on the form."""
-    tell = progress or (lambda share, words: None)
-    search = Search(ladder, reach(goods, comfort))
-    top = len(ladder.levels) - 1
-    tell(0.05, "trying seams")
-    pool = search.begin()
-    tell(0.35, "refining seams")
-    state = search.climb(pool, top)
-    best = None
-    for turn in range(CORRECTIONS + 1):
-        tell(0.5 + 0.1 * turn, "flattening pieces")
-        network = explicit(state.cut)
-        judged = [_judged(network, piece, goods, comfort, grain) for piece in range(network.pieces[0])]
-        met = Tailored(network, judged, max(one.utilisation for one in judged), turn)
-        if best is None or _rank(met) < _rank(best):
-            best = met
-        if turn == CORRECTIONS or (met.use <= ENOUGH and turn > 0):
-            break
-        search.strictness = search.strictness * _lesson(ladder, state, network, judged)
-        state = search.rounds(top, search.restated(top, state), 2)
-    tell(0.9, "dropping seams that are not needed")
-    return dropped(best, goods, comfort, grain)
+class Tailor:
+    """Runs the search for one connected part. explicit(cut) -> Network on the form itself; the rest as in Wishes."""
 
+    def __init__(self, ladder, explicit, goods, comfort, grain=None):
+        self.ladder, self.explicit = ladder, explicit
+        self.goods, self.comfort, self.grain = goods, comfort, grain
+        self.search = Search(ladder, reach(goods, comfort))
 
-def _judged(network, piece, goods, comfort, grain):
-    return judge(network.piece_surface(piece)[0], goods, comfort, grain)
+    def run(self, tell):
+        """The cheapest Tailored found whose pieces fit, or the least strained one met. tell(share, words) as it goes."""
+        top = len(self.ladder.levels) - 1
+        learning = min(LEARNING, top)
+        tell(0.0, "trying seams")
+        pool = self.search.begin()[:CANDIDATES]
+        for rung in range(1, learning + 1):
+            pool = [self.search.lifted(rung, state) for state in pool]
+        tell(0.3, "fitting pieces")
+        state, met = min((self.schooled(learning, state, LESSONS[0]) for state in pool), key=lambda pair: pair[1].rank)
+        if not met.fits:
+            state, met = self.schooled(learning, state, LESSONS[1])
+        tell(0.5, "dropping spare seams")
+        met, spare = self.dropped(met, ENOUGH if learning == top else MARGIN)
+        if learning == top:
+            return self.untangled(met)
+        for rung in range(learning + 1, top + 1):
+            tell(0.5 + 0.1 * (rung - learning), "refining seams")
+            state = self.search.lifted(rung, state)
+        tell(0.8, "flattening pieces")
+        return self.confirmed(top, state, spare)
 
-
-def _rank(met):
-    crossings = sum(bool(one.crossings) for one in met.judged)
-    return (crossings, met.network.length() * max(1.0, met.use / ENOUGH) ** 3)
-
-
-def _lesson(ladder, state, network, judged):
-    """(n,) factor for the strictness at the form's points: real use over foreseen use of the piece they lie in."""
-    labels = state.cut.labels
-    real = np.ones(len(labels))
-    count, piece = network.pieces
-    source = ladder.levels[-1].surface.triangles[network.source]
-    # a piece of the network is known by the region most of its corners lie in
-    for index in range(count):
-        region = np.bincount(labels[source[piece == index]].ravel()).argmax()
-        use = judged[index].utilisation / state.use[region]
-        use = max(use, SPLIT_SIGN) if judged[index].crossings else use
-        real[labels == region] = np.clip(use, *LEARNT)
-    return real
-
-
-def dropped(met, goods, comfort, grain):
-    """Drop seam chains, longest first, while the piece they leave is a disk, fits and does not lie over itself."""
-    network, judged = met.network, met.judged
-    refused = set()
-    while True:
-        for chain in sorted(network.chains, key=lambda chain: -_length(network, chain)):
-            key = (min(chain[0], chain[-1]), max(chain[0], chain[-1]), len(chain))
-            if key in refused:
-                continue
-            trial = _drop(network, judged, chain, goods, comfort, grain)
-            if trial is not None:
-                network, judged = trial
-                break
-            refused.add(key)
+    def real(self, rung, cut, spare=()):
+        """The Tailored of a cut, every piece flattened for the goods; spare: middles (3,) of chains to leave out."""
+        if rung == len(self.ladder.levels) - 1:
+            network = self.explicit(cut)
         else:
-            return Tailored(network, judged, max(one.utilisation for one in judged), met.corrections)
+            network = cut_through(self.ladder.levels[rung], cut, 1 / self.ladder.factor)
+        for middle in spare:
+            network = _without_nearest(network, middle)
+        fully = rung == len(self.ladder.levels) - 1
+        return Tailored(network, [self.judge(network.piece_surface(k)[0], fully) for k in range(network.pieces[0])])
 
+    def judge(self, surface, fully):
+        """Judged for one piece: shaped for the goods fully, or so far that the rest can be foreseen."""
+        if fully:
+            return judge(surface, self.goods, self.comfort, self.grain, stages=None)
+        one = judge(surface, self.goods, self.comfort, self.grain, stages=1)
+        return replace(one, utilisation=one.utilisation * (SHAPED if self.goods.shear is None else SHAPED_WOVEN))
 
-def _drop(network, judged, chain, goods, comfort, grain):
-    surface = network.surface
-    edge = surface.edge_index(chain[:2][None])[0]
-    sides = network.pieces[1][surface.edge_triangles[edge]]
-    use = [judged[side] for side in set(sides.tolist())]
-    fine = all(one.utilisation <= ENOUGH for one in use)
-    trial = network.without(chain)
-    triangles = np.flatnonzero(trial.pieces[1] == trial.pieces[1][surface.edge_triangles[edge][0]])
-    part = trial.part_surface(triangles)[0]
-    if part.euler != 1 or len(part.boundary_loops) != 1:
-        return None
-    try:
-        one = judge(part, goods, comfort, grain)
-    except CoverError:
-        return None
-    if one.crossings or one.utilisation > (ENOUGH if fine else max(item.utilisation for item in use)):
-        return None
-    # the other pieces keep their verdicts under their new numbers
-    first = {int(trial.pieces[1][np.flatnonzero(network.pieces[1] == old)[0]]): verdict for old, verdict in enumerate(judged)}
-    first[int(trial.pieces[1][triangles[0]])] = one
-    return trial, [first[index] for index in range(trial.pieces[0])]
+    def schooled(self, rung, state, lessons):
+        """(State, Tailored) best met while the foresight learns from real flattening, with at most so many lessons."""
+        best = None
+        for lesson in range(lessons):
+            met = self.real(rung, state.cut)
+            if best is None or met.rank < best[1].rank:
+                best = (state, met)
+            if (met.fits and met.use > NEARLY) or lesson == lessons - 1:
+                return best
+            state = self.taught(rung, state, met, ROUNDS)
+
+    def confirmed(self, rung, state, spare):
+        """The best Tailored on the form itself, corrected while it does not fit."""
+        best = None
+        for turn in range(CONFIRMATIONS):
+            met = self.real(rung, state.cut, spare)
+            if best is None or met.rank < best.rank:
+                best = met
+            if best.fits or turn == CONFIRMATIONS - 1:
+                return self.untangled(best)
+            state = self.taught(rung, state, met, 2)
+
+    def taught(self, rung, state, met, rounds):
+        """The State after what `met` teaches: weights by the real use; pieces that lie over themselves split, where they do."""
+        own = self.piece_of_region(rung, state, met)
+        use = np.array([one.utilisation for one in met.judged])
+        state = self.search.learnt(rung, state, use[own])
+        crossed = [region for region, piece in enumerate(own) if met.judged[piece].crossings]
+        state = self.search.split(rung, state, crossed, [self.lobes(met, own[region]) for region in crossed])
+        return self.search.rounds(rung, state, rounds)
+
+    def untangled(self, met):
+        """Tailored in which no piece lies over itself: what still does is split on the mesh, between the lobes."""
+        while True:
+            crossed = [piece for piece, one in enumerate(met.judged) if one.crossings]
+            if not crossed:
+                return met
+            network = met.network
+            triangles = np.flatnonzero(network.pieces[1] == crossed[0])
+            part = network.part_surface(triangles)[0]
+            border = halves_border(part, self.lobes(met, crossed[0]) / self.ladder.factor)
+            trial = opened(network.with_seams(edges_in(network, part, triangles)[border]))
+            judged = []
+            for piece in range(trial.pieces[0]):
+                old = network.pieces[1][np.argmax(trial.pieces[1] == piece)]
+                judged.append(self.judge(trial.piece_surface(piece)[0], True) if old == crossed[0] else met.judged[old])
+            met = Tailored(trial, judged)
+
+    def piece_of_region(self, rung, state, met):
+        """(K,) the piece that most of every region's triangle corners lie in."""
+        labels, count = state.cut.labels, len(state.use)
+        corners = labels[self.ladder.levels[rung].surface.triangles[met.network.source]]
+        number, piece = met.network.pieces
+        votes = np.zeros((count, number))
+        np.add.at(votes, (corners.ravel(), np.repeat(piece, 3)), 1)
+        return votes.argmax(axis=1)
+
+    def lobes(self, met, piece):
+        """(2, 3) two places, on the levels' scale, that lie on each other in the flat: those farthest apart along the edge."""
+        part = met.network.piece_surface(piece)[0]
+        outline = part.boundary_loops[0]
+        pairs = np.array(met.judged[piece].crossings)
+        way = np.abs(pairs[:, 1] - pairs[:, 0])
+        worst = pairs[np.argmax(np.minimum(way, len(outline) - way))]
+        return part.points[outline[worst]] * self.ladder.factor
+
+    def dropped(self, met, limit=ENOUGH):
+        """(Tailored, middles of the chains left out): seam chains dropped, longest first, while the piece they leave is a
+        disk, within the limit and not over itself."""
+        refused, spare = set(), []
+        while True:
+            for chain in sorted(met.network.chains, key=lambda chain: -_length(met.network, chain)):
+                key = (min(chain[0], chain[-1]), max(chain[0], chain[-1]), len(chain))
+                if key not in refused:
+                    refused.add(key)
+                    trial = self.without(met, chain, limit)
+                    if trial is not None:
+                        met = trial
+                        spare.append(_middle(trial.network, chain))
+                        break
+            else:
+                return met, spare
+
+    def without(self, met, chain, limit):
+        """Tailored without one chain, or None where it is needed."""
+        network = met.network
+        surface = network.surface
+        first, second = surface.edge_triangles[surface.edge_index(chain[:2][None])[0]]
+        number, piece = network.pieces
+        allowed = max(limit, met.judged[piece[first]].utilisation, met.judged[piece[second]].utilisation)
+        trial = network.without(chain)
+        now = trial.pieces[1]
+        part = trial.part_surface(np.flatnonzero(now == now[first]))[0]
+        if not _is_disk(part):
+            return None
+        try:
+            one = self.judge(part, len(self.ladder.levels) - 1 <= LEARNING)
+        except CoverError:
+            return None
+        if one.crossings or one.utilisation > allowed:
+            return None
+        judged = [None] * trial.pieces[0]
+        for old in range(number):  # the others keep their verdicts under their new numbers
+            judged[now[np.argmax(piece == old)]] = met.judged[old]
+        judged[now[first]] = one
+        return Tailored(trial, judged)
 
 
 def _length(network, chain):
+    return float(np.linalg.norm(np.diff(network.surface.points[chain], axis=0), axis=1).sum())
+
+
+def _is_disk(part):
+    return part.euler == 1 and len(part.boundary_loops) == 1
+
+
+def _middle(network, chain):
+    """(3,) the point half way along a chain."""
     points = network.surface.points[chain]
-    return float(np.linalg.norm(np.diff(points, axis=0), axis=1).sum())
+    way = np.concatenate([[0], np.cumsum(np.linalg.norm(np.diff(points, axis=0), axis=1))])
+    return np.array([np.interp(0.5 * way[-1], way, axis) for axis in points.T])
+
+
+def _without_nearest(network, middle):
+    """The network without the chain whose middle is nearest, if it is near and a disk is left."""
+    gap = [np.linalg.norm(_middle(network, chain) - middle) for chain in network.chains]
+    best = int(np.argmin(gap))
+    if gap[best] > NEAR * np.sqrt(network.surface_area):
+        return network
+    chain = network.chains[best]
+    trial = network.without(chain)
+    first = trial.surface.edge_triangles[trial.surface.edge_index(chain[:2][None])[0]][0]
+    now = trial.pieces[1]
+    return trial if _is_disk(trial.part_surface(np.flatnonzero(now == now[first]))[0]) else network

@@ -10,6 +10,7 @@ import numpy as np
 from scipy.sparse import coo_matrix
 from scipy.sparse.csgraph import connected_components
 
+from ..form.measure import total_area
 from ..form.surface import Surface, components_through
 
 
@@ -74,6 +75,11 @@ class Network:
         seam = self.seam.copy()
         seam[edges] = True
         return Network(self.surface, seam, self.source)
+
+    @cached_property
+    def surface_area(self):
+        """Square metres of the form."""
+        return total_area(self.surface)
 
     def length(self):
         """Metres of seam."""

@@ -17,13 +17,13 @@ def opened(network, allowed=None):
         part, points, triangles = network.piece_surface(piece)
         if part.euler == 1 and len(part.boundary_loops) == 1:
             continue
-        edge_of = _network_edges(network, part, triangles)
+        edge_of = edges_in(network, part, triangles)
         extra.append(edge_of[_cut_graph(part, allowed[edge_of])])
     return network.with_seams(np.concatenate(extra)) if extra else network
 
 
-def _network_edges(network, part, triangles):
-    """(e,) the network's edge of every edge of a part."""
+def edges_in(network, part, triangles):
+    """(e,) the network's edge of every edge of a part made of its triangles (t,)."""
     edge_of = np.empty(len(part.edges), dtype=np.int64)
     edge_of[part.triangle_edges] = network.surface.triangle_edges[triangles]
     return edge_of
@@ -82,3 +82,16 @@ def _way_back(part, before, point):
     return part.edge_index(np.column_stack([path[:-1], path[1:]])) if len(path) > 1 else np.zeros(0, dtype=np.int64)
 
 
+
+
+def halves_border(part, places):
+    """Edges (k,) of a connected surface that part its triangles by which of two places (2, 3) they are nearer to."""
+    n = len(part.points)
+    graph = coo_matrix((part.edge_lengths, tuple(part.edges.T)), shape=(n, n)).tocsr()
+    gaps = [dijkstra(graph, directed=False, indices=int(np.argmin(np.linalg.norm(part.points - place, axis=1))))
+            for place in places]
+    near = (gaps[0] - gaps[1])[part.triangles].mean(axis=1) > 0
+    if near.all() or not near.any():  # both places in one triangle's reach: part the farthest point from the rest
+        near = np.arange(len(part.triangles)) == 0
+    sides = part.edge_triangles
+    return np.flatnonzero(~part.open_edges & (near[sides[:, 0]] != near[sides[:, 1]]))

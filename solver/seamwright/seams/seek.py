@@ -4,7 +4,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from .cut import cut_by_fields, recut
+from .cut import recut
 from .descend import descend
 from .energy import evaluate
 from .fields import from_labels, redistance

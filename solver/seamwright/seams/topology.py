@@ -115,27 +115,13 @@ def absorb(level, labels, smallest):
     return labels
 
 
-def voronoi(level, count, inside=None, first=None):
-    """(k,) cell of each point of `inside` (all by default): farthest points by distance along edges, two Lloyd sweeps.
-
-    first: a point to begin at (index into the level), else the one farthest from the region's middle.
-    """
-    surface = level.surface
-    n = len(surface.points)
-    inside = np.arange(n) if inside is None else inside
-    keep = np.zeros(n, dtype=bool)
-    keep[inside] = True
-    edges = keep[surface.edges].all(axis=1)
-    number = np.cumsum(keep) - 1
-    rows, columns = number[surface.edges[edges]].T
-    graph = coo_matrix((surface.edge_lengths[edges], (rows, columns)), shape=(len(inside),) * 2).tocsr()
-    points, mass = surface.points[inside], np.maximum(level.mass[inside], 1e-30)
-    if first is None:
-        middle = (points * mass[:, None]).sum(0) / mass.sum()
-        start = int(np.argmax(np.linalg.norm(points - middle, axis=1)))
-    else:
-        start = int(number[first])
-    seeds = [start]
+def voronoi(level, count, inside=None):
+    """(k,) cell of each point of `inside` (all by default): farthest points by distance along edges, two Lloyd sweeps."""
+    inside = np.arange(len(level.surface.points)) if inside is None else inside
+    graph = _graph(level, inside)
+    points, mass = level.surface.points[inside], np.maximum(level.mass[inside], 1e-30)
+    middle = (points * mass[:, None]).sum(0) / mass.sum()
+    seeds = [int(np.argmax(np.linalg.norm(points - middle, axis=1)))]
     gap = _distance(graph, seeds)[0]
     while len(seeds) < count:
         seeds.append(int(np.argmax(gap)))
@@ -149,6 +135,23 @@ def voronoi(level, count, inside=None, first=None):
         order = np.lexsort((off, owner))
         seeds = order[np.unique(owner[order], return_index=True)[1]].tolist()
     return _distance(graph, seeds)[1]
+
+
+def nearer(level, inside, places):
+    """(k,) which of the places (c, 3) each point of `inside` is nearest to, by distance along edges."""
+    points = level.surface.points[inside]
+    seeds = [int(np.argmin(np.linalg.norm(points - place, axis=1))) for place in places]
+    return _distance(_graph(level, inside), seeds)[1]
+
+
+def _graph(level, inside):
+    """(k, k) csr of edge lengths among the points `inside`."""
+    surface = level.surface
+    number = np.full(len(surface.points), -1)
+    number[inside] = np.arange(len(inside))
+    rows, columns = number[surface.edges].T
+    kept = (rows >= 0) & (columns >= 0)
+    return coo_matrix((surface.edge_lengths[kept], (rows[kept], columns[kept])), shape=(len(inside),) * 2).tocsr()
 
 
 def _distance(graph, seeds):

@@ -19,7 +19,7 @@ APP = Path(os.environ.get("SEAMWRIGHT_APP", ROOT.parent / "shared" / "host" / "a
 
 pytestmark = [
     pytest.mark.skipif(not APP.is_file(), reason="the application is not on this machine (set SEAMWRIGHT_APP)"),
-    pytest.mark.skipif((sys.platform, platform.machine()) != ("linux", "x86_64"), reason="the zip is built for Linux x86-64"),
+    pytest.mark.skipif((sys.platform, platform.machine()) != ("linux", "x86_64"), reason="this zip is for Linux x86-64"),
 ]
 
 

@@ -13,7 +13,7 @@ class GoodsEnergy:
     """Sum over channels of (cosh(k x) - 1) / k^2, where a channel x is a strain over its limit times `level`.
 
     Woven goods have three channels (warp, weft, shear); others four (the two principal stretches against their limits,
-    the two principal ease-ins), each counted where positive. Beyond k x = k + 6 the cosh goes on as its parabola, so that
+    the two principal ease-ins), each counted where positive. Beyond k x = k + 1 the cosh goes on as its parabola, so that
     a needle cannot outweigh the piece. Methods as in `flat.strain`; the Hessian is Gauss-Newton's.
     """
 
@@ -61,7 +61,7 @@ class GoodsEnergy:
     def _steep(self, x):
         """(cosh(k x) - 1) / k^2 with its first and second derivative, all over e^k."""
         k = self.exponent
-        top = 1 + 6 / k
+        top = 1 + 1 / k
         held = np.clip(x, -top, top)
         over = x - held
         up, down = np.exp(k * (held - 1)), np.exp(k * (-held - 1))

@@ -14,7 +14,7 @@ from .measure import area_quantile
 EXPONENTS_WOVEN = (2, 4, 8, 16, 32, 64)
 EXPONENTS = (16, 32, 64)
 """Without a shear limit the isotropic flattening is close enough to begin high."""
-STEPS = 5
+STEPS = 6
 DAMPING = 0.01
 
 

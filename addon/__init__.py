@@ -2,7 +2,7 @@
 
 import bpy
 
-from . import cli, names, operators, panel, properties
+from . import cli, names, operators, overlay, panel, properties
 
 _command = None
 
@@ -13,6 +13,7 @@ def register():
     properties.register()
     for each in (*operators.CLASSES, *panel.CLASSES):
         bpy.utils.register_class(each)
+    overlay.register()
     _command = bpy.utils.register_cli_command(names.COMMAND, cli.main)
 
 
@@ -20,6 +21,7 @@ def unregister():
     """Called when it is switched off; a form that is being covered is dropped."""
     operators.cover.drop()
     bpy.utils.unregister_cli_command(_command)
+    overlay.unregister()
     for each in reversed((*operators.CLASSES, *panel.CLASSES)):
         bpy.utils.unregister_class(each)
     properties.unregister()

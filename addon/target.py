@@ -16,6 +16,11 @@ def is_form(thing):
     return thing.type == "MESH" and len(thing.data.polygons) > 0 and not group(thing).is_copy
 
 
+def is_covered(thing):
+    """True for forms that have a pattern, and for covered copies."""
+    return thing.type == "MESH" and (len(group(thing).result.pieces) > 0 or group(thing).is_copy)
+
+
 def group(thing):
     """The object's property group (names.PROPERTY)."""
     return getattr(thing, names.PROPERTY)

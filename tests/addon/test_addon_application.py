@@ -64,10 +64,7 @@ def state(thing):
 
 def steps():
     out = Path(sys.argv[sys.argv.index("--") + 1])
-    thing = bpy.context.scene.objects["Cube"]
-    thing.seamwright.wishes.route = "edges"
-    thing.seamwright.wishes.goods = "spandex"
-    thing.modifiers.clear()
+    bpy.data.batch_remove(list(bpy.data.objects))
     with drive.override():
         bpy.ops.mesh.primitive_uv_sphere_add(segments=24, ring_count=16)
         thing = bpy.context.object
@@ -86,7 +83,7 @@ def steps():
     with drive.override():
         assert bpy.ops.seamwright.cover("INVOKE_DEFAULT") == {"RUNNING_MODAL"}
         assert not bpy.ops.seamwright.cover.poll()
-    yield 0.5
+    yield 1.0
     drive.shot(str(out / "running.png"))
     drive.move(*drive.screen_xy(drive.view()[2], -300, 300))
     drive.key("Escape")

@@ -6,7 +6,7 @@ import bpy
 import numpy as np
 import pytest
 
-from addon import names
+from addon import names, overlay
 
 
 def faces_of(mesh):
@@ -187,3 +187,19 @@ def test_the_table_shows_what_the_summary_says(ball, tmp_path):
     for row, piece in zip(result.pieces, said["pieces"], strict=True):
         assert row.worst == pytest.approx(100 * piece["stretch"]["worst"])
     assert result.seam == pytest.approx(said["seam_metres"])
+
+
+@pytest.mark.parametrize("route", ["edges", "through"])
+def test_the_view_shows_the_seams(ball, route):
+    ball.seamwright.wishes.route = route
+    ball.location = (5, 0, 0)
+    bpy.context.view_layer.update()
+    bpy.ops.seamwright.cover()
+    bpy.context.view_layer.update()
+    covered = ball.seamwright.result.copy or ball
+    ends = overlay.lines(covered, bpy.context.evaluated_depsgraph_get())
+    seams = [edge for edge in covered.data.edges if edge.use_seam]
+    assert len(ends) == 2 * len(seams) > 0
+    expected = np.array([list(covered.matrix_world @ covered.data.vertices[k].co) for edge in seams for k in edge.vertices])
+    apart = np.linalg.norm(ends - expected, axis=1)
+    assert (apart < 0.005 * 0.4).all() and (apart > 0).all()  # just above the form, which is 0.4 m across

@@ -2,7 +2,7 @@
 
 import numpy as np
 import pytest
-from forms import cube, cylinder, disk, dumbbell, ellipsoid, frustum, icosphere, limbs, noisy, starfish, torus
+from forms import cube, cylinder, disk, dumbbell, ellipsoid, frustum, icosphere, limbs, noisy, split_quads, starfish, torus
 from seamwright.form.form import Form
 from seamwright.form.measure import total_area, triangle_normals, vertex_normals
 from seamwright.form.mirror import NEAR, Plane, mirrored_points, planes, reflection
@@ -87,6 +87,18 @@ def test_stray_points_do_no_harm():
     points[stray] += 0.1 * normals[stray]
     found = planes(Surface(points, surface.triangles))
     assert len(found) == 1 and turned_off(found[0], np.eye(3)[0]) < 3e-3
+
+
+def test_diagonals_of_bent_faces_do_not_hide_the_plane():
+    points, quads = cube(1.0, 4)
+    points = points * (1.3, 1.0, 0.8)
+    bent = points * (1 + 0.3 * np.sin(7 * np.abs(points[:, :1])) * np.cos(5 * points[:, 1:2]) + 0.1 * points[:, 2:])
+    surface = Surface(bent, split_quads(quads))
+    middles, normals = bent[surface.triangles].mean(axis=1), triangle_normals(surface)
+    off = Nearest(surface).places(middles * (-1, 1, 1), normals * (-1, 1, 1))[2]
+    assert np.quantile(off, 0.9) > NEAR * np.sqrt(total_area(surface))
+    found = planes(surface, most=3)
+    assert len(found) == 2 and turned_off(found[0], np.eye(3)[0]) < 5e-3
 
 
 @pytest.mark.parametrize("form", LOPSIDED.values(), ids=LOPSIDED)

@@ -11,7 +11,7 @@ import numpy as np
 from scipy.sparse import csr_matrix
 from scipy.spatial import cKDTree
 
-from .measure import areas, total_area, triangle_normals, vertex_normals
+from .measure import areas, total_area, triangle_normals, vertex_areas, vertex_normals
 from .nearest import Nearest
 
 NEAR = 0.003
@@ -24,8 +24,14 @@ ALIKE = 0.15
 """Moments of inertia nearer than this share are taken as equal: every direction between their axes is tried."""
 FAN, GLOBE = 60, 240
 """Directions tried around an axis, and over the half globe when all moments are alike."""
+BENT = 0.03
+"""Mirror error, as such a share, up to which bent faces may be the reason."""
 TRIALS = 8
-"""Candidates refined at most."""
+"""Candidates refined for a plane."""
+APART = 0.1
+"""Radians between directions worth refining both."""
+SQUARE = 0.1
+"""Largest cosine between planes that count as at right angles."""
 UPRIGHT, SIDEWAYS = 0.3, 0.1
 """What a level plane costs against an upright one, and one across y against one across x, in units of the tolerance."""
 EVEN = 0.3
@@ -61,20 +67,15 @@ def planes(surface, most=1):
     normals = _directions(spread)
     rank = np.maximum(spread.misfit(normals) / tolerance, EVEN) + _dislike(normals)
     normals = normals[np.argsort(rank, kind="stable")]
-    found, refused = [], []
-    for normal in normals:
-        tried = np.array([plane.normal for plane in found] + refused).reshape(-1, 3)
-        if len(found) == most or len(tried) == TRIALS:
+    found = []
+    while len(found) < most:
+        square = [normal for normal in normals if _square(normal, found)]
+        good = [plane for plane in _refined(spread, nearest, square, tolerance)
+                if plane.error <= tolerance and _square(plane.normal, found)]
+        if not good:
             break
-        if (np.abs(tried @ normal) > np.cos(0.1)).any() or not _at_right_angles(normal, found):
-            continue
-        plane = spread.refined(normal, tolerance)
-        plane.error = _error(spread, nearest, plane)
-        if plane.error <= tolerance and _at_right_angles(plane.normal, found):
-            found.append(plane)
-        else:
-            refused.append(normal)
-    return sorted(found, key=lambda plane: plane.error / tolerance + _dislike(plane.normal[None])[0])
+        found.append(min(good, key=lambda plane: max(plane.error / tolerance, EVEN) + _dislike(plane.normal)))
+    return found
 
 
 def mirrored_points(surface, plane):
@@ -152,12 +153,23 @@ class _Spread:
 
 
 def _error(spread, nearest, plane):
-    """Metres within which SHARE of the area finds its mirror image on the surface."""
+    """Metres within which SHARE of the area finds its mirror image: on the surface, or point for point.
+
+    Faces with more than three corners may be bent, and their triangles' diagonals run otherwise on the two sides: then the
+    points match while the triangles do not.
+    """
     points, normals = spread.points[::4], spread.normals[::4]
     turned = plane.turned(normals)
     triangle, _, gap = nearest.places(plane.mirrored(points), turned)
     facing = np.einsum("kx,kx->k", turned, nearest.normals[triangle])
-    return float(np.quantile(np.where(facing > 0, gap, spread.size), SHARE))
+    error = float(np.quantile(np.where(facing > 0, gap, spread.size), SHARE))
+    if NEAR < error / spread.size < BENT:
+        surface = nearest.surface
+        gap = cKDTree(surface.points).query(plane.mirrored(surface.points))[0]
+        order = np.argsort(gap, kind="stable")
+        reached = np.cumsum(vertex_areas(surface)[order])
+        error = min(error, float(gap[order][np.searchsorted(reached, SHARE * reached[-1])]))
+    return error
 
 
 def _directions(spread):
@@ -178,12 +190,27 @@ def _directions(spread):
     return normals * np.where(normals[:, :1] < 0, -1.0, 1.0)
 
 
+def _refined(spread, nearest, normals, tolerance):
+    """List of Planes, measured, from the first TRIALS of the candidate normals that lie apart."""
+    planes, tried = [], []
+    for normal in normals:
+        if len(planes) == TRIALS:
+            break
+        if all(abs(normal @ other) < np.cos(APART) for other in tried):
+            plane = spread.refined(normal, tolerance)
+            plane.error = _error(spread, nearest, plane)
+            planes.append(plane)
+            tried += [normal, plane.normal]
+    return planes
+
+
+def _square(normal, found):
+    return all(abs(normal @ plane.normal) < SQUARE for plane in found)
+
+
 def _dislike(normals):
-    return UPRIGHT * np.abs(normals[:, 2]) + SIDEWAYS * (1 - np.abs(normals[:, 0]))
-
-
-def _at_right_angles(normal, found):
-    return all(abs(normal @ plane.normal) < 0.1 for plane in found)
+    """What upright planes (z in the plane), and of them those across x, are preferred by; normals (..., 3)."""
+    return UPRIGHT * np.abs(normals[..., 2]) + SIDEWAYS * (1 - np.abs(normals[..., 0]))
 
 
 def _across(normal):

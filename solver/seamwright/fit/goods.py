@@ -74,9 +74,13 @@ class Goods:
         return warp, weft, ease_in, None if self.shear is None else max(LEAST_LIMIT, between(self.shear))
 
 
-@cache
 def goods():
     """The built-in goods: dict of name to Goods, all starting values of common practice (a swatch test overrides)."""
+    return dict(_built_in())
+
+
+@cache
+def _built_in():
     return _read(Path(__file__).with_name("goods.toml"))
 
 

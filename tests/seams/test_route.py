@@ -11,9 +11,9 @@ from seamwright.seams.level import Level, scaled
 from seamwright.seams.route import cut_along
 
 FORMS = {
-    "triangles": icosphere(3), "cube of quads": cube(1.0, 8), "torus of quads": (torus(1.0, 0.4, 36, 20)[0], wrapped_grid(36, 20)), "two holes": two_holes(28),
-    "closed tube with round ends of one face": cylinder(0.5, 2.0, 20, closed=True), "starfish": starfish(22),
-    "open tube": cylinder(1.0, 2.0, 28),
+    "triangles": icosphere(3), "cube of quads": cube(1.0, 8), "two holes": two_holes(28),
+    "torus of quads": (torus(1.0, 0.4, 36, 20)[0], wrapped_grid(36, 20)), "starfish": starfish(22),
+    "closed tube with round ends of one face": cylinder(0.5, 2.0, 20, closed=True), "open tube": cylinder(1.0, 2.0, 28),
 }
 
 

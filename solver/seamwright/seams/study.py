@@ -32,10 +32,27 @@ def _cut(form, labels):
     labels = np.asarray(labels)
     if labels.shape != (form.face_count,):
         raise WishError(f"labels: {labels.size} for a form of {form.face_count} faces. Give one for each face.")
+    if (labels != labels).any():
+        raise WishError("labels: some are not a number. Give every face its piece.")
     numbers = np.unique(labels, return_inverse=True)[1].ravel()
     surface, _ = scaled(form.surface, total_area(form.surface))
     level = Level(surface, smoothed_defects(surface))
     # each piece's share of the area around every point: a seam along edges stays there, whatever the pieces' numbers
     at = surface.triangles.ravel(), np.repeat(numbers[form.polygon], 3)
     share = coo_matrix((np.repeat(level.areas / 3, 3), at)).toarray() / np.maximum(level.mass, 1e-30)[:, None]
-    return level, cut_by_fields(surface, smoothed(level, share, 1.0))
+    cut = cut_by_fields(surface, smoothed(level, share, 1.0))
+    _refuse_closed(surface, cut)
+    return level, cut
+
+
+def _refuse_closed(surface, cut):
+    """WishError where a connected part has neither seam nor open edge, so that nothing says how large it lies flat."""
+    count, component = surface.triangle_components
+    ends = surface.open_edges.copy()
+    ends[cut.edge] = True
+    sized = np.zeros(count, dtype=bool)
+    sized[component[surface.edge_triangles[ends].max(axis=1)]] = True
+    if not sized.all():
+        first = np.flatnonzero(~sized[component])[0]
+        raise WishError(f"labels: the part around triangle {first} is closed and all one piece, which cannot lie flat. "
+                        "Give it at least two pieces.")

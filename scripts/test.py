@@ -18,7 +18,8 @@ def main(arguments):
     here = {"cwd": setup.ROOT, "env": env}
     lint = subprocess.call([sys.executable, "-m", "ruff", "check", "."], **here)
     # a path among the arguments is relative to the root; without one, all of tests/
-    where = [] if any(not word.startswith("-") and (setup.ROOT / word.split("::")[0]).exists() for word in arguments) else ["tests"]
+    named = any(not word.startswith("-") and (setup.ROOT / word.split("::")[0]).exists() for word in arguments)
+    where = [] if named else ["tests"]
     tests = subprocess.call([sys.executable, "-m", "pytest", "-rs", *where, *arguments], **here)
     return lint or tests
 

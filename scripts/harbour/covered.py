@@ -74,8 +74,11 @@ def _seen_middle(scene, piece, eye):
     facing = np.flatnonzero(weight > 0)
     graph = scene.view_layers[0].depsgraph
     facing = facing[:: max(1, len(facing) // 300)]
-    seen = np.array([t for t in facing if not scene.ray_cast(graph, Vector(middles[t] + 1e-3 * toward[t]), Vector(toward[t]))[0]],
-                    dtype=int)
+
+    def hidden(t):
+        return scene.ray_cast(graph, Vector(middles[t] + 1e-3 * toward[t]), Vector(toward[t]))[0]
+
+    seen = np.array([t for t in facing if not hidden(t)], dtype=int)
     if len(seen) < 5:
         return None
     centre = np.average(middles[seen], axis=0, weights=weight[seen])

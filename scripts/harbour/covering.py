@@ -73,7 +73,8 @@ def _row(form, out, seconds):
 
 def table(rows):
     """The table as text, one line a form."""
-    lines = [f"{'form':15}{'goods':18}{'pieces':>7}{'seam, m':>9}{'stretch 5..95 %':>18}{'worst':>8}  {'fits':5}{'seconds':>8}"]
+    lines = [f"{'form':15}{'goods':18}{'pieces':>7}{'seam, m':>9}{'stretch 5..95 %':>18}{'worst':>8}  {'fits':5}"
+             f"{'seconds':>8}"]
     for row in rows:
         if row.error:
             lines.append(f"{row.form:15}{row.error}")

@@ -8,20 +8,25 @@ import numpy as np
 from seamwright.sheets.cautions import CAUTIONS
 from seamwright.sheets.colours import piece_colour
 from seamwright.sheets.svg import path_data
+from shapely import Polygon
+from shapely.ops import polylabel
 
 WIDTH = 560.0  # of the drawing of the pieces, its own units
-FILES = (("pattern.pdf", "PDF, true scale"), ("pattern.svg", "SVG, true scale"), ("index.html", "stretch, seams, sewing order"),
-         ("pattern.json", "data"))
+FILES = (("pattern.pdf", "PDF, true scale"), ("pattern.svg", "SVG, true scale"),
+         ("index.html", "stretch, seams, sewing order"), ("pattern.json", "data"))
 STYLE = """
 body{font:16px/1.5 system-ui,sans-serif;color:#1a1a1a;background:#fff;max-width:74rem;margin:2rem auto;padding:0 1rem}
 h1{margin-bottom:0}h2{margin:3rem 0 .5rem;border-top:1px solid #bbb;padding-top:1.5rem}
-img,svg{max-width:100%;height:auto}.pair{display:grid;grid-template-columns:1fr 1fr;gap:1rem;align-items:start}
+img,svg{max-width:100%;height:auto}svg{font-family:Helvetica,Arial,sans-serif}
+.pair{display:grid;grid-template-columns:1fr 1fr;gap:1rem;align-items:start}
 figure{margin:0}figcaption{color:#444;font-size:.9rem}
 table{border-collapse:collapse;font-variant-numeric:tabular-nums;margin:1rem 0}
 th,td{padding:.25rem .9rem .25rem 0;text-align:right;border-bottom:1px solid #ccc}th.w,td.w{text-align:left}
 .no{font-weight:bold}@media(max-width:50rem){.pair{grid-template-columns:1fr}}
 @media print{body{font-size:10pt;max-width:none}h2{break-before:page;border:0}}
 """
+HEAD = ('<!doctype html>\n<html lang="en"><head><meta charset="utf-8"><meta name="viewport" content="width=device-width">'
+        f"<title>Props of a stage harbour</title><style>{STYLE}</style></head><body>\n")
 
 
 def write(out, rows):
@@ -34,9 +39,7 @@ def write(out, rows):
         _table(rows), *(_form(out, row) for row in rows),
         "<h2>Take care</h2><ul>", *(f"<li>{escape(words)}</li>" for words in CAUTIONS), "</ul>",
     ]
-    head = ('<!doctype html>\n<html lang="en"><head><meta charset="utf-8"><meta name="viewport" content="width=device-width">'
-            f"<title>Props of a stage harbour</title><style>{STYLE}</style></head><body>\n")
-    (out / "index.html").write_text(head + "\n".join(body) + "\n</body></html>\n", encoding="utf-8")
+    (out / "index.html").write_text(HEAD + "\n".join(body) + "\n</body></html>\n", encoding="utf-8")
 
 
 def _form(out, row):
@@ -80,10 +83,10 @@ def _piece_table(document):
     lines = ["<table><tr><th class=w>piece<th class=w>fit<th>size, mm<th>stretch, 5 to 95 %<th>worst</tr>"]
     for piece in document["summary"]["pieces"]:
         stretch, kind = piece["stretch"], "no" if piece["fit"] == "strained" else "yes"
+        ends = f"{_percent(stretch['p5'])} to {_percent(stretch['p95'])}"
         lines.append(
             f'<tr><td class=w>{escape(piece["name"])}<td class="w {kind}">{piece["fit"]}'
-            f"<td>{piece['width_mm']:.0f} x {piece['height_mm']:.0f}<td>{_percent(stretch['p5'])} to {_percent(stretch['p95'])}"
-            f"<td>{_percent(stretch['worst'])}</tr>")
+            f"<td>{piece['width_mm']:.0f} x {piece['height_mm']:.0f}<td>{ends}<td>{_percent(stretch['worst'])}</tr>")
     return "\n".join([*lines, "</table>"])
 
 
@@ -119,15 +122,12 @@ def _piece(piece, cut, place, scale, colour):
     name = escape(piece["name"])
     return (f'<path fill="{colour}" fill-rule="evenodd" stroke="#1a1a1a" d="{shape}"/>'
             f'<path fill="none" stroke="#1a1a1a" stroke-width=".8" stroke-dasharray="3 2" d="{path_data(outline, True)}"/>'
-            f'<text x="{x:.1f}" y="{y + 5:.1f}" font-size="15" text-anchor="middle" font-family="Helvetica, Arial, sans-serif" '
-            f'paint-order="stroke" stroke="#fff" stroke-width="3">{name}</text>')
+            f'<text x="{x:.1f}" y="{y + 5:.1f}" font-size="15" text-anchor="middle" paint-order="stroke" stroke="#fff" '
+            f'stroke-width="3">{name}</text>')
 
 
 def _inside(piece):
     """A point of the piece far from its stitch line, where the name is legible."""
-    from shapely import Polygon
-    from shapely.ops import polylabel
-
     return polylabel(Polygon(piece["outline"]).buffer(0), tolerance=2.0).coords[0]
 
 

@@ -63,3 +63,4 @@ def build():
 if __name__ == "__main__":
     build()
     bpy.ops.wm.save_as_mainfile(filepath=sys.argv[1], check_existing=False)
+    properties.unregister()  # the host's module may not end while they are there

@@ -75,7 +75,7 @@ def resolution(scene, size):
 
 
 def render(scene, path):
-    """Write the scene as its camera sees it to `path` (PNG), on one thread of the processor: pictures are made side by side."""
+    """Write the scene as its camera sees it to `path` (PNG), on one thread: pictures are made side by side."""
     scene.render.engine = "CYCLES"
     scene.cycles.device = "CPU"
     scene.cycles.samples, scene.cycles.seed = SAMPLES, 0

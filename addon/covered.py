@@ -5,7 +5,7 @@ import numpy as np
 
 from . import marks, names
 from .lay import lay
-from .read import positions
+from .read import edges, positions
 
 ASIDE = 1.5
 """The copy stands this many of the form's widths away, along the world's X."""
@@ -58,12 +58,10 @@ def mesh_of(pattern, scale_length):
 def _sewn(mesh, pattern, weld, starts):
     """(e,) bool: edges on an outline that have a face on both sides."""
     outlines = [weld[piece.outline + start] for piece, start in zip(pattern.pieces, starts, strict=True)]
-    edges = np.concatenate([np.column_stack([around, np.roll(around, -1)]) for around in outlines])
+    around = np.concatenate([np.column_stack([outline, np.roll(outline, -1)]) for outline in outlines])
     count = len(mesh.vertices)
-    keys, uses = np.unique(np.sort(edges, axis=1) @ (count, 1), return_counts=True)
-    ends = np.empty(2 * len(mesh.edges), np.int32)
-    mesh.edges.foreach_get("vertices", ends)
-    return np.isin(np.sort(ends.reshape(-1, 2), axis=1) @ (count, 1), keys[uses > 1])
+    keys, uses = np.unique(np.sort(around, axis=1) @ (count, 1), return_counts=True)
+    return np.isin(np.sort(edges(mesh), axis=1) @ (count, 1), keys[uses > 1])
 
 
 def _colour(mesh, piece_of):

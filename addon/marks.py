@@ -4,7 +4,7 @@ import numpy as np
 
 from . import names
 from .lay import lay
-from .read import faces
+from .read import edges, faces
 
 
 def mark(mesh, pattern):
@@ -99,9 +99,7 @@ def _seam_edges(mesh, pattern):
     def key(pairs):
         return np.sort(spot_of[pairs], axis=1) @ (count, 1)
 
-    ends = np.empty(2 * len(mesh.edges), np.int32)
-    mesh.edges.foreach_get("vertices", ends)
-    ends = form.point_of[ends].reshape(-1, 2)
+    ends = form.point_of[edges(mesh)]
     outline = np.concatenate([_outline_in_form(form, piece) for piece in pattern.pieces])
     sewn = np.setdiff1d(key(outline), key(form.surface.edges[form.surface.open_edges]))
     return np.isin(key(ends), sewn) & (ends >= 0).all(axis=1)

@@ -6,7 +6,7 @@ import numpy as np
 from gpu_extras.batch import batch_for_shader
 
 from . import names, target
-from .read import positions
+from .read import edges, positions
 
 LIFT = 0.002
 """Lines lie this share of the form's size above it, or they would flicker in and out of its faces."""
@@ -21,15 +21,14 @@ def lines(thing, depsgraph):
     mesh = thing.evaluated_get(depsgraph).data
     if names.PIECE not in mesh.attributes or not len(mesh.vertices):
         return np.empty((0, 3), np.float32)
-    flags, ends = np.empty(len(mesh.edges), bool), np.empty(2 * len(mesh.edges), np.int32)
+    flags = np.empty(len(mesh.edges), bool)
     mesh.edges.foreach_get("use_seam", flags)
-    mesh.edges.foreach_get("vertices", ends)
     normals = np.empty(3 * len(mesh.vertices), np.float32)
     mesh.vertex_normals.foreach_get("vector", normals)
     points = positions(mesh)
     points = points + LIFT * np.ptp(points, axis=0).max() * normals.reshape(-1, 3)
     matrix = np.array(thing.matrix_world, np.float32)
-    return (points @ matrix[:3, :3].T + matrix[:3, 3])[ends.reshape(-1, 2)[flags].ravel()]
+    return (points @ matrix[:3, :3].T + matrix[:3, 3])[edges(mesh)[flags].ravel()]
 
 
 def draw():

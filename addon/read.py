@@ -60,6 +60,14 @@ def positions(mesh):
     return points
 
 
+def edges(mesh):
+    """(e, 2) points of the mesh's edges."""
+    ends = np.empty((len(mesh.edges), 2), np.int32)
+    if len(ends):
+        mesh.attributes[".edge_verts"].data.foreach_get("value", ends.ravel())
+    return ends
+
+
 def faces(mesh):
     """(corners (c,), sizes (f,)) of the mesh: point of each corner, face after face, and corners of each face."""
     corners, sizes = np.empty(len(mesh.loops), np.int32), np.empty(len(mesh.polygons), np.int32)

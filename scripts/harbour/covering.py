@@ -22,9 +22,9 @@ class Row:
 
     form: str
     folder: str
-    goods: str
     seconds: float
     error: str | None = None
+    goods: str | None = None
     fits: bool = False
     pieces: int | None = None
     seam_metres: float | None = None
@@ -59,16 +59,17 @@ def _row(form, out, seconds):
     name = form["object"]
     known = {"form": name, "folder": form["folder"], "seconds": seconds.get(name, 0.0)}
     if "error" in form:
-        return Row(**known, goods=form.get("goods", ""), error=form["error"])
-    stretch, areas = [], []
-    for piece in covered.read(out / form["folder"] / "pattern.json")["pieces"]:
+        return Row(**known, error=form["error"])
+    document = covered.read(out / form["folder"] / "pattern.json")
+    summary, stretch, areas = document["summary"], [], []
+    for piece in document["pieces"]:
         a, b, c = (piece["points"][piece["triangles"][:, k]] for k in range(3))
         areas.append(np.linalg.norm(np.cross(b - a, c - a), axis=1) / 2)
         stretch.append(piece["stretch"])
     stretch, areas = np.concatenate(stretch), np.concatenate(areas)
     ends = quantiles(stretch[:, 1], areas, 0.05), quantiles(stretch[:, 0], areas, 0.95)
-    return Row(**known, goods=form["goods"], fits=form["fits"], pieces=form["pieces"], seam_metres=form["seam_mm"] / 1000,
-               stretch=ends, worst=farthest(stretch))
+    return Row(**known, goods=summary["goods"]["name"], fits=summary["fits"], pieces=len(document["pieces"]),
+               seam_metres=summary["seam_metres"], stretch=ends, worst=farthest(stretch))
 
 
 def table(rows):

@@ -24,7 +24,8 @@ found = {}
 for thing in bpy.context.scene.objects:
     mesh = thing.data
     found[thing.name] = {
-        "points": [list(thing.matrix_world @ v.co) for v in mesh.vertices], "faces": [list(p.vertices) for p in mesh.polygons],
+        "points": [list(thing.matrix_world @ v.co) for v in mesh.vertices],
+        "faces": [list(p.vertices) for p in mesh.polygons],
         "size": list(thing.dimensions), "scale": list(thing.scale), "goods": thing.seamwright.wishes.goods}
 answer = {"scene": bpy.context.scene.name, "forms": found, "quay": [o.name for o in bpy.data.scenes["Quay"].objects],
           "unit": bpy.context.scene.unit_settings.scale_length}
@@ -58,7 +59,7 @@ def edge_counts(faces):
     """{(a, b) smaller first: [times run along, times run against]}."""
     counts = {}
     for face in faces:
-        for a, b in zip(face, face[1:] + face[:1]):
+        for a, b in zip(face, face[1:] + face[:1], strict=True):
             counts.setdefault((min(a, b), max(a, b)), [0, 0])[a > b] += 1
     return counts
 

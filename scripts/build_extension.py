@@ -23,8 +23,11 @@ PLATFORMS = {  # the host's name of a platform: the wheels that run there, newes
     "macos-x64": ("macosx_14_0_x86_64", "macosx_10_13_x86_64", "macosx_10_9_x86_64"),
     "windows-x64": ("win_amd64",),
 }
-BINARY = ("scipy", "shapely")
-PURE = ("fpdf2", "fonttools", "defusedxml")
+BINARY = {  # library: its licence, all of which go with GPL-3.0-or-later
+    "scipy": "BSD-3-Clause; with OpenBLAS, BSD-3-Clause, and the GCC run-time library, GPL-3.0 with its exception",
+    "shapely": "BSD-3-Clause; with GEOS, LGPL-2.1",
+}
+PURE = {"fpdf2": "LGPL-3.0-only", "fonttools": "MIT", "defusedxml": "PSF-2.0"}
 
 
 def pinned(name):
@@ -82,6 +85,10 @@ def stage(platform):
     shutil.rmtree(folder, ignore_errors=True)
     shutil.copytree(setup.ROOT / "addon", folder, ignore=shutil.ignore_patterns("__pycache__"))
     shutil.copy(setup.ROOT / "LICENSE", folder)
+    lines = [f"{pinned(name)}: {licence}\n" for name, licence in sorted((BINARY | PURE).items())]
+    (folder / "LICENCES.txt").write_text(
+        "Seamwright: GPL-3.0-or-later, see LICENSE. It brings these libraries, whose licences lie in their wheels:\n\n"
+        + "".join(lines), encoding="utf-8")
     (folder / "wheels").mkdir()
     lines = []
     for wheel in wheels(platform):

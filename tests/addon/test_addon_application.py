@@ -4,11 +4,13 @@ SEAMWRIGHT_APP names a script that runs the application (`run`, `command`, `wind
 the repository is the place where it is looked for. Without it, or on another system than Linux x86-64, nothing can be run.
 """
 
+import itertools
 import json
 import os
 import platform
 import subprocess
 import sys
+import zipfile
 from pathlib import Path
 
 import bpy
@@ -29,15 +31,31 @@ def app(profile, *words):
 
 
 @pytest.fixture(scope="session")
-def profile(tmp_path_factory):
-    """A profile of the application with the zip installed and switched on."""
+def built():
+    """The zip for this platform."""
     import build_extension
 
-    made = build_extension.build("linux-x64")
+    return build_extension.build("linux-x64")
+
+
+@pytest.fixture(scope="session")
+def profile(built, tmp_path_factory):
+    """A profile of the application with the zip installed and switched on."""
     folder = tmp_path_factory.mktemp("profile")
-    done = app(folder, "command", "-c", "extension", "install-file", "-r", "user_default", "-e", made)
+    done = app(folder, "command", "-c", "extension", "install-file", "-r", "user_default", "-e", built)
     assert done.returncode == 0, done.stdout + done.stderr
     return folder
+
+
+def test_the_zip_holds_what_both_pythons_need_and_no_numpy(built):
+    inside = zipfile.ZipFile(built).namelist()
+    wheels = [Path(name).name for name in inside if name.endswith(".whl")]
+    for start in itertools.product(("scipy", "shapely"), ("cp311", "cp313")):
+        assert [name for name in wheels if all(part in name for part in (*start, "x86_64"))], start
+    pure = {name.split("-")[0] for name in wheels if "none-any" in name}
+    assert pure == {"defusedxml", "fonttools", "fpdf2", "seamwright"} and len(wheels) == 8
+    assert not any("numpy" in name for name in wheels)
+    assert {"LICENSE", "LICENCES.txt", "blender_manifest.toml"} <= {Path(name).name for name in inside}
 
 
 def test_the_command_covers_a_scene(profile, ball, tmp_path):

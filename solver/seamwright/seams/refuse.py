@@ -1,0 +1,182 @@
+"""What a patternmaker would refuse: each a number measured on a pattern, a limit, and a sentence where it is passed.
+
+The limits are shares of the form's size, the square root of its area (of each connected part's own); they come from
+trials on many forms, the least tip angle from cutting-room practice.
+"""
+
+from dataclasses import dataclass
+
+import numpy as np
+from scipy.spatial import cKDTree
+from shapely.geometry import Polygon
+
+from .seen import Seen
+
+STEP = 0.02  # resampling of a seam, and the reach over which its direction is taken, as a share of the size
+STRIP = 0.035  # width under which a piece counts as narrow, as a share of the size
+DETAILED = 8  # more tips than this make a detailed form, whose seams may wind more
+SMOOTH_JAG, DETAILED_JAG, EDGES_JAG = 1.012, 1.035, 1.10
+
+
+@dataclass(frozen=True)
+class Measure:
+    """One predicate's outcome: name, the worst value met, its limit, whether it is refused, and then a sentence on where."""
+
+    name: str
+    value: float
+    limit: float
+    refused: bool
+    sentence: str
+
+
+def refused(pattern, planes=()):
+    """List of sentences, one for each thing that a patternmaker would refuse; empty for a good pattern."""
+    return [measure.sentence for measure in measured(pattern, planes) if measure.refused]
+
+
+def measured(pattern, planes=()):
+    """List of Measures of a Pattern, always the same ones in the same order. planes: mirror Planes it should keep to."""
+    seen = Seen(pattern)
+    found = [predicate(seen) for predicate in PREDICATES]
+    return [*found, *(mirror_error(seen, plane) for plane in planes)]
+
+
+def smallest_piece(seen, limit=0.01):
+    """The smallest piece's share of its part's area."""
+    share = seen.piece_area / seen.part_area[seen.piece_part]
+    worst = int(share.argmin())
+    return _least("smallest piece", share[worst], limit, f"Piece {seen.names[worst]} is a speck: {100 * share[worst]:.2g} "
+                  "% of the form. Let a neighbour take it in.")
+
+
+def broken_pieces(seen, limit=0):
+    """How many pieces are no disks."""
+    names = [name for name, disk in zip(seen.names, seen.disks, strict=True) if not disk]
+    return _most("pieces that are no disks", len(names), limit,
+                 f"Not one sheet with one outline: {', '.join(names)}. Cut open from edge to edge.")
+
+
+def loose_seams(seen, limit=0):
+    """How many bits of seam hang together with neither the rest of their part's seams nor its hems."""
+    count = seen.loose_bits
+    return _most("loose bits of seam", count, limit, f"{count} bits of seam are joined to no other seam. Drop or join them.")
+
+
+def capped_tips(seen, limit=0, share=0.03, curvature=np.pi):
+    """How many small caps: pieces ringed by one other, under `share` of the area, that hold more than `curvature`."""
+    small = seen.piece_area < share * seen.part_area[seen.piece_part]
+    ringed = np.flatnonzero(small & (seen.neighbours == 1) & ~seen.hemmed)
+    bad = [seen.names[k] for k in ringed if seen.curvature(k) > curvature]
+    return _most("caps on tips", len(bad), limit,
+                 f"Caps on a tip: {', '.join(bad)}. Lead a seam through the tip instead of around it.")
+
+
+def farthest_tip(seen, limit=0.04):
+    """Distance from a tip of the form to the nearest seam or open edge, the largest."""
+    if not len(seen.tips):
+        return _most("tip off the seams", 0.0, limit, "")
+    gap = seen.distances(seen.form.points[seen.tips]) / seen.size[seen.tip_part]
+    worst = int(gap.argmax())
+    return _most("tip off the seams", gap[worst], limit, f"The tip at {_place(seen.form.points[seen.tips[worst]])} is "
+                 f"{_mm(gap[worst] * seen.size[seen.tip_part[worst]])} from the nearest seam. Lead a seam or a dart there.")
+
+
+def jag(seen):
+    """Length of all seams over their length when resampled."""
+    limit = EDGES_JAG if seen.along_edges else DETAILED_JAG if len(seen.tips) > DETAILED else SMOOTH_JAG
+    whole = sum(seen.lengths)
+    plain = sum(_length(seen.resampled(k, STEP)) for k in range(len(seen.seams)))
+    value = whole / plain if plain > 0 else 1.0
+    return _most("jag", value, limit, f"The seams are {100 * (value - 1):.1f} % longer than smooth ones. Smooth them.")
+
+
+def junction_angle(seen, limit=60.0):
+    """The least angle between seams that meet, degrees."""
+    return _sharpest("junction angle", [corner for corner in seen.corners(STEP) if corner.junction], limit)
+
+
+def tip_angle(seen, limit=30.0):
+    """The least angle at a corner of a piece, degrees."""
+    return _sharpest("tip angle", seen.corners(STEP), limit)
+
+
+def shortest_link(seen, limit=0.04):
+    """The shortest seam between two junctions."""
+    links = [k for k in range(len(seen.seams)) if (seen.degree[seen.ends[k]] > 2).all()]
+    share = np.array([seen.lengths[k] / seen.size[seen.seam_part[k]] for k in links])
+    if not links:
+        return _least("link between junctions", np.inf, limit, "")
+    worst = int(share.argmin())
+    return _least("link between junctions", share[worst], limit, f"Seam {seen.seams[links[worst]].name} is only "
+                  f"{_mm(seen.lengths[links[worst]])} long, between two junctions. Let them meet in one.")
+
+
+def dart_ends(seen, share=0.25):
+    """How many darts end inside pieces, against a share of the tips."""
+    count, limit = int((seen.degree[seen.ends] == 1).sum()), max(1, int(share * len(seen.tips)))
+    return _most("dart ends", count, limit, f"{count} darts end inside pieces; {limit} would do. Let a seam run through.")
+
+
+def narrow_share(seen, limit=0.1):
+    """The largest share of a piece that a strip's width does not fit into."""
+    share = np.array([_narrow(seen, k) for k in range(len(seen.names))])
+    worst = int(share.argmax())
+    width = _mm(STRIP * seen.size[seen.piece_part[worst]])
+    return _most("narrow share", share[worst], limit, f"{100 * share[worst]:.0f} % of piece {seen.names[worst]} is narrower "
+                 f"than {width}. Move its seams apart or let a neighbour take it in.")
+
+
+def mirror_error(seen, plane, limit=0.005):
+    """The largest distance of a seam from the mirror image of the seams."""
+    if not seen.seams:
+        return _most("mirror error", 0.0, limit, "")
+    size = float(np.sqrt(seen.part_area.sum()))
+    samples = np.concatenate([seen.resampled(k, 0.001) for k in range(len(seen.seams))])
+    gap = cKDTree(samples).query(plane.mirrored(samples))[0]
+    worst = int(gap.argmax())
+    return _most("mirror error", gap[worst] / size, limit, f"The seam at {_place(samples[worst])} is {_mm(gap[worst])} off "
+                 "its mirror image. Make both sides alike.")
+
+
+PREDICATES = (smallest_piece, broken_pieces, loose_seams, capped_tips, farthest_tip, jag, junction_angle, tip_angle,
+              shortest_link, dart_ends, narrow_share)
+
+
+def _sharpest(name, corners, limit):
+    worst = min(corners, key=lambda corner: corner.degrees, default=None)
+    if worst is None:
+        return _least(name, np.inf, limit, "")
+    return _least(name, worst.degrees, limit, f"Piece {worst.piece} has a corner of {worst.degrees:.0f} degrees at "
+                  f"{_place(worst.point)}, under {limit:g}. Let its seams meet more squarely.")
+
+
+def _narrow(seen, k):
+    """Share of a piece's flat area that no disk of the strip's width inside it reaches."""
+    piece, size = seen.pieces[k], seen.size[seen.piece_part[k]]
+    outline = Polygon(piece.flat[piece.outline]).simplify(0.002 * size)
+    if not outline.is_valid or not outline.area > 0:
+        outline = outline.buffer(0)
+    reached = outline.buffer(-STRIP * size / 2).buffer(STRIP * size / 2).intersection(outline)
+    return 1 - reached.area / outline.area if outline.area > 0 else 1.0
+
+
+def _most(name, value, limit, sentence):
+    bad = not value <= limit
+    return Measure(name, float(value), float(limit), bad, sentence if bad else "")
+
+
+def _least(name, value, limit, sentence):
+    bad = not value >= limit
+    return Measure(name, float(value), float(limit), bad, sentence if bad else "")
+
+
+def _length(path):
+    return float(np.linalg.norm(np.diff(path, axis=0), axis=1).sum())
+
+
+def _place(point):
+    return "(" + ", ".join(f"{value:.3g}" for value in point) + ") m"
+
+
+def _mm(metres):
+    return f"{1000 * metres:.3g} mm"

@@ -42,8 +42,8 @@ class GoodsEnergy:
             apart = np.abs(slope[::2] - slope[1::2]) / np.maximum(radius, 1e-9)
             bend = np.concatenate([bend, np.where(radius > 1e-9, apart, bend[::2] + bend[1::2])])
             at_alpha, at_beta = np.concatenate([at_alpha, turn_alpha]), np.concatenate([at_beta, turn_beta])
-        rows = np.stack([at_alpha.real, at_alpha.imag, at_beta.real, at_beta.imag], axis=2)
-        return np.einsum("ct,cti,ctj->tij", bend, rows, rows)
+        rows = np.stack([at_alpha.real, at_alpha.imag, at_beta.real, at_beta.imag])
+        return np.stack([(bend * row * rows).sum(axis=1).T for row in rows], axis=1)
 
     def used(self, log, w):
         """(t,) largest channel, utilisation over `level`, from `log_and_ratio` of a flat piece."""

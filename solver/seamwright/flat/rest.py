@@ -10,7 +10,7 @@ from functools import cached_property
 import numpy as np
 from scipy.sparse import coo_matrix, csc_matrix, csr_matrix, diags
 
-from ..form.laplacian import Factor
+from .factor import factor
 
 LEAST_HEIGHT = 1e-3
 """A triangle thinner than this share of its longest edge counts as this thick, so no matrix entry runs away."""
@@ -89,14 +89,14 @@ class Rest:
         return (both - diags(np.asarray(both.sum(axis=1)).ravel())).tocsc()
 
     def solver(self, weight):
-        """Factor of the weighted Laplacian, held at a point of every part (gradients sum to zero, so that costs nothing)."""
+        """Factors of the weighted Laplacian, held at a point of every part: gradients sum to zero, so that costs nothing."""
         matrix = self.laplacian(weight)
         held = np.zeros(self.count)
         held[self.anchors] = matrix.diagonal()[self.anchors]
-        return Factor(matrix + diags(held))
+        return factor(matrix + diags(held))
 
 
 def solve_complex(factor, load):
-    """Solution (n,) complex of a real Factor for a complex load: both coordinates at once."""
+    """Solution (n,) complex of a real factor for a complex load: both coordinates at once."""
     both = factor.solve(np.column_stack([load.real, load.imag]))
     return both[:, 0] + 1j * both[:, 1]

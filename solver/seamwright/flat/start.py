@@ -5,6 +5,7 @@ from scipy.sparse import coo_matrix, diags
 
 from ..form.laplacian import Factor
 from ..form.measure import angle_defects, angles
+from .factor import factor
 from .rest import solve_complex
 
 
@@ -33,12 +34,12 @@ def conformal_start(surface, rest, loop):
     flat, log_scale = np.zeros(rest.count, dtype=complex), np.zeros(rest.count)
     shared = matrix[inner][:, loop]
     if len(inner):
-        factor = Factor(matrix[inner][:, inner])
-        log_scale[inner] = factor.solve(-turn[inner])
+        factors = factor(matrix[inner][:, inner])
+        log_scale[inner] = factors.solve(-turn[inner])
     sides = surface.points[np.roll(loop, -1)] - surface.points[loop]
     flat[loop] = closed_polygon(np.linalg.norm(sides, axis=1), turn[loop] + shared.T @ log_scale[inner])
     if len(inner):
-        flat[inner] = solve_complex(factor, -(shared @ flat[loop]))
+        flat[inner] = solve_complex(factors, -(shared @ flat[loop]))
     return flat, log_scale
 
 
@@ -103,8 +104,8 @@ def _pulled(tail, head, weight, loop, ring):
     flat = np.zeros(count, dtype=complex)
     flat[loop] = ring
     if len(inner):
-        factor = Factor(diags(np.ones(len(inner))) - pull[inner][:, inner])
-        flat[inner] = solve_complex(factor, pull[inner][:, loop] @ ring)
+        factors = Factor(diags(np.ones(len(inner))) - pull[inner][:, inner])
+        flat[inner] = solve_complex(factors, pull[inner][:, loop] @ ring)
     return flat
 
 

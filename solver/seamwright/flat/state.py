@@ -2,7 +2,7 @@
 
 import numpy as np
 
-from ..form.laplacian import Factor
+from .factor import factor
 
 
 class State:
@@ -46,11 +46,11 @@ class State:
         bend = self.energy.second(*self.maps)
         stiffness = np.einsum("tii->t", bend) / 4
         bend += (1e-8 * stiffness + damping * (self.rest.area @ stiffness) / self.rest.total)[:, None, None] * np.eye(4)
-        factor = Factor(self.rest.stiffness(bend))
-        direction = -factor.solve(self.gradient.view(float)).view(complex)
+        factors = factor(self.rest.stiffness(bend))
+        direction = -factors.solve(self.gradient.view(float)).view(complex)
         if rows is not None:
             real = np.ascontiguousarray(rows).view(float)
-            answers = factor.solve(real.T)
+            answers = factors.solve(real.T)
             pulls = np.linalg.solve(np.diag(give) + real @ answers, real @ direction.view(float))
             direction -= (answers @ pulls).view(complex)
         return direction

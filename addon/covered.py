@@ -16,6 +16,8 @@ def make(thing, pattern, scene, old=None):
     mesh, across = mesh_of(pattern, scene.unit_settings.scale_length)
     centre = np.array(thing.matrix_world.translation)
     mesh.vertices.foreach_set("co", (positions(mesh) - centre).astype(np.float32).ravel())
+    if any(face.use_smooth for face in thing.data.polygons):
+        mesh.shade_smooth()
     mesh.update()
     if old is not None:
         worn, old.data = old.data, mesh

@@ -46,7 +46,9 @@ def draw():
     shader.uniform_float("lineWidth", WIDTH * context.preferences.system.ui_scale)
     shader.uniform_float("viewportSize", (context.region.width, context.region.height))
     gpu.state.depth_test_set("LESS_EQUAL")
+    gpu.state.blend_set("ALPHA")  # smooth edges
     batch_for_shader(shader, "LINES", {"pos": np.concatenate(found)}).draw(shader)
+    gpu.state.blend_set("NONE")
     gpu.state.depth_test_set("NONE")
 
 

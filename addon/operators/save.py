@@ -9,7 +9,7 @@ from ..job import load
 
 
 class SEAMWRIGHT_OT_save_sheets(bpy.types.Operator):
-    """Write the cutting sheets of this form into a folder"""
+    """Write the cutting sheets into a folder that is named after the form, within the folder you choose"""
 
     bl_idname = names.SAVE
     bl_label = "Save Sheets"
@@ -29,20 +29,21 @@ class SEAMWRIGHT_OT_save_sheets(bpy.types.Operator):
         return True
 
     def invoke(self, context, event):
-        """Ask for the folder."""
-        if not self.directory:
-            beside = bpy.path.abspath("//") or str(Path.home())
-            self.directory = str(Path(beside) / f"{context.object.name} sheets")
+        """Ask for the folder, first offering that of the .blend."""
+        self.directory = self.directory or bpy.path.abspath("//") or str(Path.home())
         context.window_manager.fileselect_add(self)
         return {"RUNNING_MODAL"}
 
     def execute(self, context):
         """Write them."""
+        from seamwright.sheets import safe_name
+
         pattern = load(target.group(context.object).result.path)
+        folder = Path(bpy.path.abspath(self.directory)) / safe_name(context.object.name)
         try:
-            paths = pattern.save(bpy.path.abspath(self.directory))
+            paths = pattern.save(folder)
         except (ValueError, OSError) as error:
             self.report({"ERROR"}, f"{context.object.name}: the sheets could not be written. {error}")
             return {"CANCELLED"}
-        self.report({"INFO"}, f"{len(paths)} files written to {self.directory}")
+        self.report({"INFO"}, f"{len(paths)} files written to {folder}")
         return {"FINISHED"}

@@ -181,7 +181,7 @@ def test_clear_takes_everything_off(ball):
 def test_the_table_shows_what_the_summary_says(ball, tmp_path):
     bpy.ops.seamwright.cover()
     bpy.ops.seamwright.save_sheets(directory=str(tmp_path / "sheets"))
-    said = json.loads((tmp_path / "sheets" / "pattern.json").read_text())["summary"]
+    said = json.loads((tmp_path / "sheets" / "Ball" / "pattern.json").read_text())["summary"]
     result = ball.seamwright.result
     assert [(row.name, row.fit) for row in result.pieces] == [(piece["name"], piece["fit"]) for piece in said["pieces"]]
     for row, piece in zip(result.pieces, said["pieces"], strict=True):

@@ -10,6 +10,7 @@ from seamwright.sheets.colours import piece_colour
 from . import studio
 
 SEAM_COLOUR, HEM_COLOUR, LETTER_COLOUR = "#1a1a1a", "#6b6b6b", "#101010"
+SAMPLES = 400  # triangles of a piece that are tried for its name
 
 
 def read(path):
@@ -24,7 +25,7 @@ def read(path):
 def build(scene, document):
     """Put the covered form into the scene where the form stands; returns its points (n, 3), metres."""
     points = np.concatenate([piece["points"] for piece in document["pieces"]])
-    thickness = 0.005 * np.linalg.norm(np.ptp(points, axis=0)) + 0.0005
+    thickness = 0.0035 * np.linalg.norm(np.ptp(points, axis=0)) + 0.0005
     for order, piece in enumerate(document["pieces"]):
         _piece(scene, piece, piece_colour(order))
     by_name = {piece["name"]: piece["points"] for piece in document["pieces"]}
@@ -41,7 +42,7 @@ def label(scene, document, size):
     scene.view_layers[0].update()
     eye = np.array(scene.camera.location)
     for piece in document["pieces"]:
-        spot = _seen_middle(scene, piece, eye)
+        spot = _broadest(scene, piece, eye, size)
         if spot is not None:
             _letters(scene, piece["name"], spot, eye, size)
 
@@ -64,25 +65,25 @@ def _tube(scene, path, radius, colour):
     scene.collection.objects.link(bpy.data.objects.new("Seam", curve))
 
 
-def _seen_middle(scene, piece, eye):
-    """The point nearest to the middle of what the camera at `eye` sees of the piece; None where it sees too little."""
+def _broadest(scene, piece, eye, size):
+    """The point of the piece with most of it in sight around it, seen from `eye`; None where letters would not fit."""
     a, b, c = (piece["points"][piece["triangles"][:, k]] for k in range(3))
     middles, normals = (a + b + c) / 3, np.cross(b - a, c - a) / 2
     toward = eye - middles
     toward /= np.linalg.norm(toward, axis=1)[:, None]
-    weight = np.einsum("ij,ij->i", normals, toward)  # area as the camera sees it
-    facing = np.flatnonzero(weight > 0)
+    breadth = np.einsum("ij,ij->i", normals, toward)  # area as the camera sees it
+    facing = np.flatnonzero(breadth > 0)
+    every = max(1, len(facing) // SAMPLES)
     graph = scene.view_layers[0].depsgraph
-    facing = facing[:: max(1, len(facing) // 300)]
 
     def hidden(t):
         return scene.ray_cast(graph, Vector(middles[t] + 1e-3 * toward[t]), Vector(toward[t]))[0]
 
-    seen = np.array([t for t in facing if not hidden(t)], dtype=int)
-    if len(seen) < 5:
+    seen = np.array([t for t in facing[::every] if not hidden(t)], dtype=int)
+    if every * breadth[seen].sum() < 3 * size * size:
         return None
-    centre = np.average(middles[seen], axis=0, weights=weight[seen])
-    return middles[seen[np.argmin(np.linalg.norm(middles[seen] - centre, axis=1))]]
+    apart = np.linalg.norm(middles[seen][:, None] - middles[seen], axis=2)
+    return middles[seen[np.argmax(np.exp(-((apart / (2 * size)) ** 2)) @ breadth[seen])]]
 
 
 def _letters(scene, words, spot, eye, size):

@@ -16,8 +16,9 @@ from . import covered
 class Row:
     """One line of the demo's table; `error` says why a form has no pattern, and then the figures are None.
 
-    stretch: 5th and 95th percentile over the form's area, of the smaller and the larger principal one; worst: the one
-    farthest from none. All are shares. seconds: from the first to the last message about this form.
+    stretch: 5th percentile over the form's area of the smaller and 95th of the larger of two: along warp and weft in cloth
+    that shears, else the principal ones; worst: the one farthest from none; all are shares. shear: largest, degrees, None
+    where the goods have no such limit. seconds: from the first to the last message about this form.
     """
 
     form: str
@@ -30,6 +31,7 @@ class Row:
     seam_metres: float | None = None
     stretch: tuple | None = None
     worst: float | None = None
+    shear: float | None = None
 
 
 def cover(scene_file, out, workers):
@@ -61,26 +63,35 @@ def _row(form, out, seconds):
     if "error" in form:
         return Row(**known, error=form["error"])
     document = covered.read(out / form["folder"] / "pattern.json")
-    summary, stretch, areas = document["summary"], [], []
+    summary, stretch, areas, shear = document["summary"], [], [], None
     for piece in document["pieces"]:
         a, b, c = (piece["points"][piece["triangles"][:, k]] for k in range(3))
         areas.append(np.linalg.norm(np.cross(b - a, c - a), axis=1) / 2)
-        stretch.append(piece["stretch"])
+        stretch.append(np.array(piece["stretch"]))
+        if summary["goods"]["shear_degrees"]:
+            bent = np.array(piece["warp_weft_shear_degrees"])
+            stretch[-1] = -np.sort(-bent[:, :2], axis=1)
+            shear = max(shear or 0.0, np.abs(bent[:, 2]).max())
     stretch, areas = np.concatenate(stretch), np.concatenate(areas)
     ends = quantiles(stretch[:, 1], areas, 0.05), quantiles(stretch[:, 0], areas, 0.95)
     return Row(**known, goods=summary["goods"]["name"], fits=summary["fits"], pieces=len(document["pieces"]),
-               seam_metres=summary["seam_metres"], stretch=ends, worst=farthest(stretch))
+               seam_metres=summary["seam_metres"], stretch=ends, worst=farthest(stretch), shear=shear)
+
+
+HEAD = ("form", "goods", "pieces", "seam, m", "stretch 5..95 %", "worst %", "shear", "fits", "seconds")
 
 
 def table(rows):
     """The table as text, one line a form."""
-    lines = [f"{'form':15}{'goods':18}{'pieces':>7}{'seam, m':>9}{'stretch 5..95 %':>18}{'worst':>8}  {'fits':5}"
-             f"{'seconds':>8}"]
+    lines = [HEAD]
     for row in rows:
         if row.error:
-            lines.append(f"{row.form:15}{row.error}")
             continue
-        ends = f"{100 * row.stretch[0]:+.1f} .. {100 * row.stretch[1]:+.1f}"
-        lines.append(f"{row.form:15}{row.goods:18}{row.pieces:7}{row.seam_metres:9.2f}{ends:>18}{100 * row.worst:+8.1f}"
-                     f"  {'yes' if row.fits else 'no':5}{row.seconds:8.0f}")
-    return "\n".join(lines)
+        low, high, worst = (f"{100 * share:+.1f}" for share in (*row.stretch, row.worst))
+        shear = "" if row.shear is None else f"{row.shear:.0f} deg"
+        lines.append((row.form, row.goods, str(row.pieces), f"{row.seam_metres:.2f}", f"{low} .. {high}", worst, shear,
+                      "yes" if row.fits else "no", f"{row.seconds:.0f}"))
+    widths = [max(map(len, column)) for column in zip(*lines, strict=True)]
+    text = ["  ".join(word.ljust(width) if k < 2 else word.rjust(width)
+                      for k, (word, width) in enumerate(zip(line, widths, strict=True))) for line in lines]
+    return "\n".join([*text, *(f"{row.form}: {row.error}" for row in rows if row.error)])

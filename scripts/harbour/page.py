@@ -67,26 +67,32 @@ def _verdict(row, document):
 
 def _table(rows):
     lines = ["<table><tr><th class=w>form<th class=w>goods<th>pieces<th>seam, m<th>stretch, 5th to 95th percentile<th>worst"
-             "<th class=w>fits<th>seconds</tr>"]
+             "<th>worst shear<th class=w>fits<th>seconds</tr>"]
     for row in rows:
         if row.error:
-            lines.append(f"<tr><td class=w>{escape(row.form)}<td class=w colspan=7>{escape(row.error)}</tr>")
+            lines.append(f"<tr><td class=w>{escape(row.form)}<td class=w colspan=8>{escape(row.error)}</tr>")
             continue
+        shear = "" if row.shear is None else f"{row.shear:.0f} degrees"
         lines.append(
             f"<tr><td class=w>{escape(row.form)}<td class=w>{escape(row.goods)}<td>{row.pieces}<td>{row.seam_metres:.2f}"
-            f"<td>{_percent(row.stretch[0])} to {_percent(row.stretch[1])}<td>{_percent(row.worst)}"
+            f"<td>{_percent(row.stretch[0])} to {_percent(row.stretch[1])}<td>{_percent(row.worst)}<td>{shear}"
             f'<td class="w {"yes" if row.fits else "no"}">{"yes" if row.fits else "no"}<td>{row.seconds:.0f}</tr>')
-    return "\n".join([*lines, "</table>"])
+    words = ("Stretch is along warp and weft in cloth that shears, else principal; seconds are on this machine, with "
+             "two forms covered at a time.")
+    return "\n".join([*lines, f"</table><p>{words}</p>"])
 
 
 def _piece_table(document):
     lines = ["<table><tr><th class=w>piece<th class=w>fit<th>size, mm<th>stretch, 5 to 95 %<th>worst</tr>"]
     for piece in document["summary"]["pieces"]:
-        stretch, kind = piece["stretch"], "no" if piece["fit"] == "strained" else "yes"
-        ends = f"{_percent(stretch['p5'])} to {_percent(stretch['p95'])}"
+        kind = "no" if piece["fit"] == "strained" else "yes"
+        directions = [piece["stretch"]] if "shear_degrees" not in piece else [piece["warp"], piece["weft"]]
+        low, high = min(d["p5"] for d in directions), max(d["p95"] for d in directions)
+        worst = max((d["worst"] for d in directions), key=abs)
         lines.append(
             f'<tr><td class=w>{escape(piece["name"])}<td class="w {kind}">{piece["fit"]}'
-            f"<td>{piece['width_mm']:.0f} x {piece['height_mm']:.0f}<td>{ends}<td>{_percent(stretch['worst'])}</tr>")
+            f"<td>{piece['width_mm']:.0f} x {piece['height_mm']:.0f}<td>{_percent(low)} to {_percent(high)}"
+            f"<td>{_percent(worst)}</tr>")
     return "\n".join([*lines, "</table>"])
 
 

@@ -11,7 +11,7 @@ import sys
 from concurrent.futures import ThreadPoolExecutor
 from pathlib import Path
 
-VIEWS = {"front": (0.75, -1.0, 0.6), "back": (-0.75, 1.0, -0.4)}  # from where the camera looks; the back also from below
+VIEWS = {"front": (0.6, -1.0, 0.6), "back": (-0.6, 1.0, -0.4)}  # whence the camera looks at a form that lies along x
 SIZE = (520, 420)
 QUAY = "quay"
 SCENE_FILE = "harbour.blend"
@@ -48,11 +48,21 @@ def draw_form(out, folder, side):
     document = covered.read(out / folder / "pattern.json")
     studio.light(scene)
     studio.resolution(scene, SIZE)
-    studio.camera(scene, VIEWS[side])
     points = covered.build(scene, document)
+    studio.camera(scene, turned(VIEWS[side], points))
     studio.frame(scene, points)
     covered.label(scene, document, 0.045 * np.linalg.norm(np.ptp(points, axis=0)))
     studio.render(scene, out / folder / f"{side}.png")
+
+
+def turned(direction, points):
+    """`direction` turned about the vertical with the way in which the points (n, 3) lie longest."""
+    import numpy as np
+
+    x, y = np.linalg.eigh(np.cov(points[:, :2].T))[1][:, 1]
+    if x < 0:
+        x, y = -x, -y
+    return direction[0] * x - direction[1] * y, direction[0] * y + direction[1] * x, direction[2]
 
 
 def draw_quay(out, side, folders):

@@ -6,7 +6,7 @@ import bpy
 from mathutils import Vector
 
 BACKGROUND = "#dfe4e8"
-SAMPLES = 8
+SAMPLES = 16
 BOUNCES = 3
 
 
@@ -80,7 +80,7 @@ def render(scene, path):
     scene.cycles.device = "CPU"
     scene.cycles.samples, scene.cycles.seed = SAMPLES, 0
     scene.cycles.max_bounces = BOUNCES
-    scene.cycles.use_denoising = True
+    scene.cycles.use_denoising = False
     scene.render.threads_mode, scene.render.threads = "FIXED", 1
     scene.view_settings.view_transform = "Standard"
     scene.render.image_settings.file_format = "PNG"

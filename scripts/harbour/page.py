@@ -22,7 +22,9 @@ img,svg{max-width:100%;height:auto}svg{font-family:Helvetica,Arial,sans-serif}
 figure{margin:0}figcaption{color:#444;font-size:.9rem}
 table{border-collapse:collapse;font-variant-numeric:tabular-nums;margin:1rem 0}
 th,td{padding:.25rem .9rem .25rem 0;text-align:right;border-bottom:1px solid #ccc}th.w,td.w{text-align:left}
-.no{font-weight:bold}@media(max-width:50rem){.pair{grid-template-columns:1fr}}
+.no{font-weight:bold}figure svg{max-height:32rem}
+.chip{display:inline-block;width:.8em;height:.8em;margin-right:.4em;border:1px solid #444}
+@media(max-width:50rem){.pair{grid-template-columns:1fr}}
 @media print{body{font-size:10pt;max-width:none}h2{break-before:page;border:0}}
 """
 HEAD = ('<!doctype html>\n<html lang="en"><head><meta charset="utf-8"><meta name="viewport" content="width=device-width">'
@@ -84,13 +86,14 @@ def _table(rows):
 
 def _piece_table(document):
     lines = ["<table><tr><th class=w>piece<th class=w>fit<th>size, mm<th>stretch, 5 to 95 %<th>worst</tr>"]
-    for piece in document["summary"]["pieces"]:
+    for order, piece in enumerate(document["summary"]["pieces"]):
+        chip = f'<span class=chip style="background:{piece_colour(order)}"></span>'
         kind = "no" if piece["fit"] == "strained" else "yes"
         directions = [piece["stretch"]] if "shear_degrees" not in piece else [piece["warp"], piece["weft"]]
         low, high = min(d["p5"] for d in directions), max(d["p95"] for d in directions)
         worst = max((d["worst"] for d in directions), key=abs)
         lines.append(
-            f'<tr><td class=w>{escape(piece["name"])}<td class="w {kind}">{piece["fit"]}'
+            f'<tr><td class=w>{chip}{escape(piece["name"])}<td class="w {kind}">{piece["fit"]}'
             f"<td>{piece['width_mm']:.0f} x {piece['height_mm']:.0f}<td>{_percent(low)} to {_percent(high)}"
             f"<td>{_percent(worst)}</tr>")
     return "\n".join([*lines, "</table>"])
@@ -107,7 +110,7 @@ def _pieces(document):
     cuts = [[np.array(ring) * [1, -1] for ring in piece["cut"]] for piece in pieces]
     low = np.array([np.concatenate(rings).min(axis=0) for rings in cuts])
     size = np.array([np.concatenate(rings).max(axis=0) for rings in cuts]) - low
-    across = max(size[:, 0].max(), 1.3 * np.sqrt((size[:, 0] * size[:, 1]).sum()))
+    across = max(size[:, 0].max(), 1.5 * np.sqrt((size[:, 0] * size[:, 1]).sum()))
     gap, x, y, row, tall = 0.03 * across, 0.0, 0.0, 0.0, 0.0
     lines = []
     for k in np.argsort(-size[:, 1], kind="stable"):

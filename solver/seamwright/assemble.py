@@ -25,15 +25,25 @@ def assemble(form, goods, wishes, tailored, notes):
         by_name = dict(zip(names, pieces[-len(names):], strict=True))
         seams += [_seam(joint, network, names, by_name) for joint in joints(network)]
     _name(seams)
-    for piece in pieces:
-        if piece.fit == pt.STRAINED:
-            notes.append(
-                f"Piece {piece.name} is strained: {100 * piece.beyond:.1f} % of it is beyond what {goods.name} takes. "
-                "More seams (thrift, comfort) or goods that take more would help."
-            )
+    notes += _strain(pieces, goods)
     from . import __version__
 
     return pt.Pattern(form, goods, pieces, seams, sewing_order(seams), notes, {"comfort": wishes.comfort}, __version__)
+
+
+def _strain(pieces, goods):
+    """List with a sentence on the strained pieces, or none."""
+    strained = sorted((piece for piece in pieces if piece.fit == pt.STRAINED), key=lambda piece: -piece.beyond)
+    if not strained:
+        return []
+    worst = strained[0]
+    x, y, z = 1000 * (worst.points[worst.triangles].mean(axis=1)[worst.utilisation.argmax()])
+    named = ", ".join(piece.name for piece in strained[:8]) + (", ..." if len(strained) > 8 else "")
+    head = f"Piece {named} is" if len(strained) == 1 else f"{len(strained)} of {len(pieces)} pieces ({named}) are"
+    return [
+        f"{head} strained: {100 * worst.beyond:.1f} % of {worst.name} is beyond what {goods.name} takes, most near "
+        f"({x:.0f}, {y:.0f}, {z:.0f}) mm. Goods that take more would help, or a rounder form there, or a seam of your own."
+    ]
 
 
 def piece_name(index):

@@ -15,7 +15,7 @@ from ..seams.descend import descend
 from ..seams.energy import evaluate
 from ..seams.fields import from_labels, redistance
 from ..seams.starts import starts, tidied
-from ..seams.topology import merged, nearer, regions, voronoi
+from ..seams.topology import merged, nearer, regions, through
 from .foresee import largest
 
 STEPS = 6  # flow steps in a round
@@ -42,6 +42,7 @@ class State:
     use: np.ndarray
     length: float
     strictness: np.ndarray
+    peaks: np.ndarray  # (K,) point of every region at which the most is foreseen
     strained: int = 0  # rounds running in which some piece was beyond its limits
 
     @property
@@ -72,27 +73,27 @@ class Search:
 
     def lifted(self, rung, state):
         """The State one rung up."""
-        level = self.ladder.levels[rung]
         fields = self.ladder.lift(state.fields, rung - 1, rung)
-        end = descend(level, fields, 1.0, "square", state.weights, STEPS)
-        return self._after(rung, state, end.cut)
+        return self._after(rung, state, self._flow(rung, fields, state).cut)
 
-    def learnt(self, rung, state, real):
-        """The State after the real use (K,) of its pieces is known: stricter where the foresight was too mild."""
-        factor = np.clip(real / np.maximum(state.use, 1e-6), *LEARNT)
-        strictness = state.strictness * factor[state.cut.labels][self.ladder.owners[rung]]
+    def learnt(self, rung, state, real, local):
+        """The State after the real use (K,) of its pieces is known, and (n of the level,) how it is spread within them.
+
+        Stricter where the foresight was too mild, and most where the strain is.
+        """
+        factor = np.clip(real / np.maximum(state.use, 1e-6), *LEARNT)[state.cut.labels] * local
+        strictness = state.strictness * factor[self.ladder.owners[rung]]
         state = self._state(rung, state.cut, state.cut.labels, state.weights[state.cut.labels], strictness, state.strained)
-        state.weights = state.weights * np.clip(state.use**2, *SWAY)
+        state.weights = state.weights * np.clip(real**2, *SWAY)
         return state
 
     def rounds(self, rung, state, count):
         """Flow, weigh, split and merge for `count` rounds; the best State met."""
-        level = self.ladder.levels[rung]
         best = None
         for turn in range(count):
             if turn == 0 or turn < count - 2:  # what is split needs a round or two to settle
                 state = self.split(rung, state, self._overdone(rung, state))
-            end = descend(level, state.fields, 1.0, "square", state.weights, STEPS)
+            end = self._flow(rung, state.fields, state)
             state = self._merge(rung, self._after(rung, state, end.cut))
             if best is None or state.rank < best.rank:
                 best = replace(state)
@@ -105,11 +106,26 @@ class Search:
         labels = tidied(self.ladder.levels[rung], cut.labels)
         return self._state(rung, cut, labels, state.weights[cut.labels], state.strictness, state.strained)
 
+    def _on(self, rung, values):
+        """(N,) mean of values at the form's points over each of the level's points."""
+        owner, count = self.ladder.owners[rung], len(self.ladder.levels[rung].surface.points)
+        return np.bincount(owner, values, minlength=count) / np.bincount(owner, minlength=count)
+
+    def _flow(self, rung, fields, state):
+        """Descent with the state's weights; where more strain was met than foreseen, distortion counts for more."""
+        emphasis = self._on(rung, state.strictness) ** 2
+        for region in range(len(state.weights)):  # relative within each region: its level is in the weight
+            inside = state.cut.labels == region if len(state.cut.labels) == len(emphasis) else emphasis > 0
+            emphasis[inside] /= np.exp(np.log(emphasis[inside]).mean())
+        level = self.ladder.levels[rung]
+        return descend(level, fields, 1.0, "square", state.weights, STEPS, emphasis=emphasis)
+
     def _use(self, rung, labels, u, strictness):
-        level, owner = self.ladder.levels[rung], self.ladder.owners[rung]
-        count = len(level.surface.points)
-        factor = np.bincount(owner, strictness, minlength=count) / np.bincount(owner, minlength=count)
-        return largest(level, labels, factor * u) / self.reach
+        """((K,) use of the limits as foreseen, (K,) the point of each region that asks most)."""
+        level = self.ladder.levels[rung]
+        asked = self._on(rung, strictness) * np.abs(u)
+        order = np.lexsort((-asked, labels))
+        return largest(level, labels, asked) / self.reach, order[np.unique(labels[order], return_index=True)[1]]
 
     def _state(self, rung, cut, labels, point_weights, strictness, strained=0):
         level = self.ladder.levels[rung]
@@ -118,8 +134,8 @@ class Search:
         cost = evaluate(level, cut, 1.0, "square", gradient=False)
         size = np.bincount(labels, minlength=count)
         weights = np.exp(np.bincount(labels, np.log(point_weights), minlength=count) / size)
-        use = self._use(rung, labels, cost.u, strictness)
-        return State(cut, redistance(level, cut, count), weights, use, cost.length, strictness, strained)
+        use, peaks = self._use(rung, labels, cost.u, strictness)
+        return State(cut, redistance(level, cut, count), weights, use, cost.length, strictness, peaks, strained)
 
     def _overdone(self, rung, state):
         """Regions far beyond their limits, or beyond them for long, worst first."""
@@ -131,13 +147,16 @@ class Search:
     def split(self, rung, state, which, places=None):
         """The State with the regions `which` cut in two, as far as MOST_PIECES allows.
 
-        places: for each region the two points (2, 3), on the level's scale, that are to be parted; halves without.
+        places: for each region the two points (2, 3), on the level's scale, that are to be parted; without, the new seam runs through the point that asks most.
         """
         level, labels = self.ladder.levels[rung], state.cut.labels
         trial = labels.copy()
         for number, region in enumerate(which[: max(0, MOST_PIECES - len(state.use))]):
             inside = np.flatnonzero(labels == region)
-            half = voronoi(level, 2, inside) if places is None else nearer(level, inside, places[number])
+            if places is None:
+                half = through(level, inside, state.peaks[region])
+            else:
+                half = nearer(level, inside, places[number])
             trial[inside] = np.where(half == 1, trial.max() + 1, region)
         if np.array_equal(trial, labels):
             return state
@@ -160,7 +179,7 @@ class Search:
                 trial = merged(labels, i, j)
                 cut = recut(level.surface, state.cut, trial)
                 cost = evaluate(level, cut, 1.0, "square", gradient=False)
-                use = self._use(rung, trial, cost.u, state.strictness)
+                use = self._use(rung, trial, cost.u, state.strictness)[0]
                 if use[trial[labels == i][0]] <= ROOM:
                     state = self._state(rung, cut, trial, state.weights[labels], state.strictness, state.strained)
                     break

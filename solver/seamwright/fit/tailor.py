@@ -9,11 +9,12 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from ..errors import CoverError
+from ..form.measure import areas
 from ..seams.network import cut_through
 from ..seams.opened import edges_in, halves_border, opened
 from .foresee import reach
 from .judge import judge
-from .search import Search
+from .search import MOST_PIECES, Search
 
 LEARNING = 1  # the rung on which the foresight learns, where there is one
 CANDIDATES = 2  # networks that learn
@@ -23,7 +24,10 @@ LESSONS = (3, 5)  # most lessons on the learning rung: for every candidate, then
 ROUNDS = 5  # rounds after each
 CONFIRMATIONS = 3  # most flattenings of the form itself, with a lesson between
 SHAPED, SHAPED_WOVEN = 0.93, 0.65  # full shaping brings the use down to about this share of what the first stage reaches
+DAMPED = 0.4  # power with which the spread of the real use within a piece is taken over
 MARGIN = 0.97  # use under which a seam is dropped on the learning rung: the form itself may ask a little more
+MOST_SPLITS = 12  # of pieces that still lie over themselves at the end
+HOPELESS = 2.0  # use without a chain above which half of it is not tried either
 NEAR = 0.15  # a chain on another rung is the same one when its middle is this near, as a share of the form's size
 
 
@@ -62,14 +66,14 @@ class Tailor:
     def run(self, tell):
         """The cheapest Tailored found whose pieces fit, or the least strained one met. tell(share, words) as it goes."""
         top = len(self.ladder.levels) - 1
-        learning = min(LEARNING, top)
+        learning = min(LEARNING, max(top - 1, 0))
         tell(0.0, "trying seams")
         pool = self.search.begin()[:CANDIDATES]
         for rung in range(1, learning + 1):
             pool = [self.search.lifted(rung, state) for state in pool]
         tell(0.3, "fitting pieces")
         state, met = min((self.schooled(learning, state, LESSONS[0]) for state in pool), key=lambda pair: pair[1].rank)
-        if not met.fits:
+        if not met.fits and len(met.judged) < MOST_PIECES:
             state, met = self.schooled(learning, state, LESSONS[1])
         tell(0.5, "dropping spare seams")
         met, spare = self.dropped(met, ENOUGH if learning == top else MARGIN)
@@ -82,13 +86,13 @@ class Tailor:
         return self.confirmed(top, state, spare)
 
     def real(self, rung, cut, spare=()):
-        """The Tailored of a cut, every piece flattened for the goods; spare: middles (3,) of chains to leave out."""
+        """The Tailored of a cut, every piece flattened for the goods; spare: places (3, 3) of stretches to leave out."""
         if rung == len(self.ladder.levels) - 1:
             network = self.explicit(cut)
         else:
             network = cut_through(self.ladder.levels[rung], cut, 1 / self.ladder.factor)
-        for middle in spare:
-            network = _without_nearest(network, middle)
+        for places in spare:
+            network = _without_nearest(network, places)
         fully = rung == len(self.ladder.levels) - 1
         return Tailored(network, [self.judge(network.piece_surface(k)[0], fully) for k in range(network.pieces[0])])
 
@@ -106,7 +110,7 @@ class Tailor:
             met = self.real(rung, state.cut)
             if best is None or met.rank < best[1].rank:
                 best = (state, met)
-            if (met.fits and met.use > NEARLY) or lesson == lessons - 1:
+            if (met.fits and met.use > NEARLY) or lesson == lessons - 1 or len(met.judged) >= MOST_PIECES:
                 return best
             state = self.taught(rung, state, met, ROUNDS)
 
@@ -117,7 +121,7 @@ class Tailor:
             met = self.real(rung, state.cut, spare)
             if best is None or met.rank < best.rank:
                 best = met
-            if best.fits or turn == CONFIRMATIONS - 1:
+            if best.fits or turn == CONFIRMATIONS - 1 or len(met.judged) >= MOST_PIECES:
                 return self.untangled(best)
             state = self.taught(rung, state, met, 2)
 
@@ -125,27 +129,45 @@ class Tailor:
         """The State after what `met` teaches: weights by the real use; pieces that lie over themselves split, where they do."""
         own = self.piece_of_region(rung, state, met)
         use = np.array([one.utilisation for one in met.judged])
-        state = self.search.learnt(rung, state, use[own])
+        state = self.search.learnt(rung, state, use[own], self.spread(rung, met))
         crossed = [region for region, piece in enumerate(own) if met.judged[piece].crossings]
-        state = self.search.split(rung, state, crossed, [self.lobes(met, own[region]) for region in crossed])
+        parts = [met.network.piece_surface(own[region])[0] for region in crossed]
+        places = [part.points[lobes(part, met.judged[own[region]])] * self.ladder.factor
+                  for part, region in zip(parts, crossed, strict=True)]
+        state = self.search.split(rung, state, crossed, places)
         return self.search.rounds(rung, state, rounds)
 
     def untangled(self, met):
         """Tailored in which no piece lies over itself: what still does is split on the mesh, between the lobes."""
-        while True:
+        for _ in range(MOST_SPLITS):
             crossed = [piece for piece, one in enumerate(met.judged) if one.crossings]
             if not crossed:
-                return met
+                break
             network = met.network
             triangles = np.flatnonzero(network.pieces[1] == crossed[0])
             part = network.part_surface(triangles)[0]
-            border = halves_border(part, self.lobes(met, crossed[0]) / self.ladder.factor)
+            border = halves_border(part, lobes(part, met.judged[crossed[0]]))
             trial = opened(network.with_seams(edges_in(network, part, triangles)[border]))
             judged = []
             for piece in range(trial.pieces[0]):
                 old = network.pieces[1][np.argmax(trial.pieces[1] == piece)]
                 judged.append(self.judge(trial.piece_surface(piece)[0], True) if old == crossed[0] else met.judged[old])
             met = Tailored(trial, judged)
+        return met
+
+    def spread(self, rung, met):
+        """(n,) at the level's points, how the real use there compares with the typical one of its piece, damped."""
+        surface = self.ladder.levels[rung].surface
+        number, piece = met.network.pieces
+        each = np.empty(len(piece))
+        for index, one in enumerate(met.judged):
+            typical = np.sqrt(np.mean(one.each**2))
+            each[piece == index] = np.clip(one.each / max(typical, 1e-9), 0.5, 3.0)
+        corners = surface.triangles[met.network.source].ravel()
+        area = np.repeat(areas(met.network.surface), 3)
+        n = len(surface.points)
+        mean = np.bincount(corners, area * np.repeat(each, 3), minlength=n) / np.bincount(corners, area, minlength=n)
+        return mean**DAMPED
 
     def piece_of_region(self, rung, state, met):
         """(K,) the piece that most of every region's triangle corners lie in."""
@@ -156,55 +178,70 @@ class Tailor:
         np.add.at(votes, (corners.ravel(), np.repeat(piece, 3)), 1)
         return votes.argmax(axis=1)
 
-    def lobes(self, met, piece):
-        """(2, 3) two places, on the levels' scale, that lie on each other in the flat: those farthest apart along the edge."""
-        part = met.network.piece_surface(piece)[0]
-        outline = part.boundary_loops[0]
-        pairs = np.array(met.judged[piece].crossings)
-        way = np.abs(pairs[:, 1] - pairs[:, 0])
-        worst = pairs[np.argmax(np.minimum(way, len(outline) - way))]
-        return part.points[outline[worst]] * self.ladder.factor
-
     def dropped(self, met, limit=ENOUGH):
-        """(Tailored, middles of the chains left out): seam chains dropped, longest first, while the piece they leave is a
-        disk, within the limit and not over itself."""
-        refused, spare = set(), []
+        """(Tailored, what was left out): seam chains dropped, longest first, while the piece they leave is a disk, within
+        the limit and not over itself; then halves of chains, so that darts are left. What was left out: for each the
+        places (3, 3) where it began, its middle and its end."""
+        refused, spare = {}, []
         while True:
-            for chain in sorted(met.network.chains, key=lambda chain: -_length(met.network, chain)):
+            chains = sorted(met.network.chains, key=lambda chain: -_length(met.network, chain))
+            for chain in chains + [half for chain in chains for half in _halves(chain)]:
                 key = (min(chain[0], chain[-1]), max(chain[0], chain[-1]), len(chain))
-                if key not in refused:
-                    refused.add(key)
-                    trial = self.without(met, chain, limit)
-                    if trial is not None:
-                        met = trial
-                        spare.append(_middle(trial.network, chain))
-                        break
+                whole = refused.get(_whole(key, chain, chains))
+                if key in refused or (whole is not None and whole > HOPELESS):
+                    continue
+                trial, refused[key] = self.without(met, chain, limit)
+                if trial is not None:
+                    spare.append(_places(met.network, chain))
+                    met = trial
+                    break
             else:
                 return met, spare
 
     def without(self, met, chain, limit):
-        """Tailored without one chain, or None where it is needed."""
+        """(Tailored without a chain, its use), or (None, the use that it would have; infinite where no disk is left)."""
         network = met.network
         surface = network.surface
-        first, second = surface.edge_triangles[surface.edge_index(chain[:2][None])[0]]
+        first = surface.edge_triangles[surface.edge_index(chain[:2][None])[0]][0]
         number, piece = network.pieces
-        allowed = max(limit, met.judged[piece[first]].utilisation, met.judged[piece[second]].utilisation)
         trial = network.without(chain)
         now = trial.pieces[1]
         part = trial.part_surface(np.flatnonzero(now == now[first]))[0]
         if not _is_disk(part):
-            return None
+            return None, np.inf
         try:
-            one = self.judge(part, len(self.ladder.levels) - 1 <= LEARNING)
+            one = self.judge(part, len(self.ladder.levels) == 1)
         except CoverError:
-            return None
-        if one.crossings or one.utilisation > allowed:
-            return None
+            return None, np.inf
+        if one.crossings or one.utilisation > limit:
+            return None, one.utilisation
         judged = [None] * trial.pieces[0]
         for old in range(number):  # the others keep their verdicts under their new numbers
             judged[now[np.argmax(piece == old)]] = met.judged[old]
         judged[now[first]] = one
-        return Tailored(trial, judged)
+        return Tailored(trial, judged), one.utilisation
+
+
+def lobes(part, one):
+    """(2,) two points of a piece that lie on each other in the flat: those farthest apart along its outline."""
+    outline = part.boundary_loops[0]
+    pairs = np.array(one.crossings)
+    way = np.abs(pairs[:, 1] - pairs[:, 0])
+    return outline[pairs[np.argmax(np.minimum(way, len(outline) - way))]]
+
+
+def _halves(chain):
+    """The two halves of a chain, each from its end inward, if it is long enough to leave a dart."""
+    middle = len(chain) // 2
+    return [chain[: middle + 1], chain[middle:]] if len(chain) >= 8 and chain[0] != chain[-1] else []
+
+
+def _whole(key, half, chains):
+    """The key of the chain that `half` is a half of."""
+    for chain in chains:
+        if len(chain) > len(half) and (np.array_equal(chain[: len(half)], half) or np.array_equal(chain[-len(half):], half)):
+            return (min(chain[0], chain[-1]), max(chain[0], chain[-1]), len(chain))
+    return key
 
 
 def _length(network, chain):
@@ -215,20 +252,29 @@ def _is_disk(part):
     return part.euler == 1 and len(part.boundary_loops) == 1
 
 
-def _middle(network, chain):
-    """(3,) the point half way along a chain."""
+def _places(network, chain):
+    """(3, 3) where a chain begins, its middle, its end."""
     points = network.surface.points[chain]
     way = np.concatenate([[0], np.cumsum(np.linalg.norm(np.diff(points, axis=0), axis=1))])
-    return np.array([np.interp(0.5 * way[-1], way, axis) for axis in points.T])
+    middle = [np.interp(0.5 * way[-1], way, axis) for axis in points.T]
+    return np.array([points[0], middle, points[-1]])
 
 
-def _without_nearest(network, middle):
-    """The network without the chain whose middle is nearest, if it is near and a disk is left."""
-    gap = [np.linalg.norm(_middle(network, chain) - middle) for chain in network.chains]
-    best = int(np.argmin(gap))
-    if gap[best] > NEAR * np.sqrt(network.surface_area):
+def _without_nearest(network, places):
+    """The network without the stretch of seam nearest to places (3, 3) met on another rung, if a disk is left."""
+    points = network.surface.points
+
+    def gap(chain, place):
+        return np.linalg.norm(points[chain] - place, axis=1)
+
+    chain = min(network.chains, key=lambda chain: gap(chain, places[1]).min())
+    if gap(chain, places[1]).min() > NEAR * np.sqrt(network.surface_area):
         return network
-    chain = network.chains[best]
+    ends = sorted(int(gap(chain, place).argmin()) for place in (places[0], places[2]))
+    ends = [0 if ends[0] <= 2 else ends[0], len(chain) - 1 if ends[1] >= len(chain) - 3 else ends[1]]
+    if chain[0] == chain[-1] or ends[0] >= ends[1]:
+        ends = [0, len(chain) - 1]
+    chain = chain[ends[0] : ends[1] + 1]
     trial = network.without(chain)
     first = trial.surface.edge_triangles[trial.surface.edge_index(chain[:2][None])[0]][0]
     now = trial.pieces[1]

@@ -26,19 +26,19 @@ class Descent:
     history: list
 
 
-def descend(level, fields, thrift, energy="square", weights=None, steps=30, tolerance=1e-4):
+def descend(level, fields, thrift, energy="square", weights=None, steps=30, tolerance=1e-4, emphasis=None):
     """Flow until a step gains less than `tolerance` of the total twice running, or for `steps` steps. Returns a Descent.
 
     Nocedal, Wright: Numerical Optimization, 7.2 (two-loop recursion); the metric is (M + l^2 L)^-1 on each field.
     """
     count = fields.shape[1]
     cut = cut_by_fields(level.surface, fields)
-    cost = evaluate(level, cut, thrift, energy, weights)
+    cost = evaluate(level, cut, thrift, energy, weights, emphasis=emphasis)
     history, taken, small, stuck = [cost.total], 0, 0, 0
     while taken < steps and small < 2 and stuck < 2:
         fields = redistance(level, cut, count)
         cut = cut_by_fields(level.surface, fields)
-        cost = evaluate(level, cut, thrift, energy, weights)
+        cost = evaluate(level, cut, thrift, energy, weights, emphasis=emphasis)
         gradient = field_gradient(level, cut, fields, cost.slope)
         pairs = deque(maxlen=MEMORY)
         for _ in range(min(ROUND, steps - taken)):
@@ -47,7 +47,7 @@ def descend(level, fields, thrift, energy="square", weights=None, steps=30, tole
             if (direction * gradient).sum() >= 0:
                 direction, pairs = -_metric(level, gradient), deque(maxlen=MEMORY)
             direction *= _allowed(level, cut, direction, first=not pairs)
-            step = _backtrack(level, fields, direction, gradient, cost, thrift, energy, weights)
+            step = _backtrack(level, fields, direction, gradient, cost, thrift, energy, weights, emphasis)
             if step is None:
                 stuck += 1
                 break
@@ -56,7 +56,7 @@ def descend(level, fields, thrift, energy="square", weights=None, steps=30, tole
             moved, bent = new_fields - fields, new_gradient - gradient
             if (moved * bent).sum() > 1e-12 * np.linalg.norm(moved) * np.linalg.norm(bent):
                 pairs.append((moved, bent))
-            gain = (cost.total - new_cost.total) / cost.total
+            gain = (cost.total - new_cost.total) / max(cost.total, 1e-300)
             small = small + 1 if gain < tolerance else 0
             stuck = 0
             fields, gradient, cost = new_fields, new_gradient, new_cost
@@ -97,13 +97,13 @@ def _allowed(level, cut, direction, first):
     return min(limit, 0.5 * level.edge_length / move) if first else min(limit, 1.0)
 
 
-def _backtrack(level, fields, direction, gradient, cost, thrift, energy, weights):
+def _backtrack(level, fields, direction, gradient, cost, thrift, energy, weights, emphasis):
     slope = (direction * gradient).sum()
     share = 1.0
     for _ in range(8):
         trial = fields + share * direction
         cut = cut_by_fields(level.surface, trial)
-        new = evaluate(level, cut, thrift, energy, weights)
+        new = evaluate(level, cut, thrift, energy, weights, emphasis=emphasis)
         if new.total <= cost.total + 1e-4 * share * slope:
             return trial, cut, new
         share *= 0.4

@@ -52,8 +52,9 @@ class Cost:
     slope: np.ndarray | None = None
 
 
-def evaluate(level, cut, thrift, energy, weights=None, gradient=True):
-    """Cost of a Cut on a Level. weights (K,) factor on each region's distortion, default 1."""
+def evaluate(level, cut, thrift, energy, weights=None, gradient=True, emphasis=None):
+    """Cost of a Cut on a Level. weights (K,) factor on each region's distortion, default 1;
+    emphasis (n,) the same at each point."""
     free, labels = level.free, cut.labels
     kinds = [Pieces.of(level, cut, kind) for kind in (cut.two, cut.three) if len(kind.face)]
     mass = level.mass.copy()
@@ -68,10 +69,11 @@ def evaluate(level, cut, thrift, energy, weights=None, gradient=True):
         change.append(local - level.stiffness[face])
     changed = np.concatenate(changed) if changed else np.zeros(0, dtype=np.int64)
     change = np.concatenate(change) if change else np.zeros((0, 3, 3))
-    factor = Factor(level.matrix(changed, change))
+    solve = Factor(level.matrix(changed, change)).solve if free.any() else np.copy  # a strip of faces has no inner point
     u = np.zeros(len(free))
-    u[free] = factor.solve((level.density * mass)[free])
+    u[free] = solve((level.density * mass)[free])
     weight = np.ones(len(free)) if weights is None else np.asarray(weights, dtype=float)[labels]
+    weight = weight if emphasis is None else weight * emphasis
     pair = density(energy)
     p = np.zeros(len(free))
     if pair is None:
@@ -85,7 +87,7 @@ def evaluate(level, cut, thrift, energy, weights=None, gradient=True):
         distortion = float((per_point * mass).sum())
         share = 1.0
         if gradient:
-            p[free] = factor.solve((weight * mass * rise(u))[free])
+            p[free] = solve((weight * mass * rise(u))[free])
         per_mass = per_point + p * level.density
     length, slope = 0.0, np.zeros(len(level.surface.edges)) if gradient else None
     for pieces in kinds:

@@ -84,14 +84,14 @@ def _way_back(part, before, point):
 
 
 
-def halves_border(part, places):
-    """Edges (k,) of a connected surface that part its triangles by which of two places (2, 3) they are nearer to."""
+def halves_border(part, pair):
+    """Edges (k,) of a connected surface that part its triangles by which of a pair of its points they are nearer to.
+
+    Distance is along edges. Empty where one half would have no triangle.
+    """
     n = len(part.points)
     graph = coo_matrix((part.edge_lengths, tuple(part.edges.T)), shape=(n, n)).tocsr()
-    gaps = [dijkstra(graph, directed=False, indices=int(np.argmin(np.linalg.norm(part.points - place, axis=1))))
-            for place in places]
+    gaps = dijkstra(graph, directed=False, indices=pair)
     near = (gaps[0] - gaps[1])[part.triangles].mean(axis=1) > 0
-    if near.all() or not near.any():  # both places in one triangle's reach: part the farthest point from the rest
-        near = np.arange(len(part.triangles)) == 0
     sides = part.edge_triangles
     return np.flatnonzero(~part.open_edges & (near[sides[:, 0]] != near[sides[:, 1]]))

@@ -144,6 +144,18 @@ def nearer(level, inside, places):
     return _distance(_graph(level, inside), seeds)[1]
 
 
+def through(level, inside, peak):
+    """(k,) 0 or 1: `inside` in halves by the plane through the point `peak` and the region's middle, across its width."""
+    points, mass = level.surface.points[inside], np.maximum(level.mass[inside], 1e-30)
+    off = points - level.surface.points[peak]
+    middle = (off * mass[:, None]).sum(axis=0) / mass.sum()
+    away = off - middle
+    along = middle / max(np.linalg.norm(middle), 1e-30)
+    across = away - np.outer(away @ along, along)
+    normal = np.linalg.eigh((across * mass[:, None]).T @ across)[1][:, -1]
+    return (off @ normal > 0).astype(np.int64)
+
+
 def _graph(level, inside):
     """(k, k) csr of edge lengths among the points `inside`."""
     surface = level.surface

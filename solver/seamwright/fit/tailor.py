@@ -62,6 +62,7 @@ class Tailor:
         self.ladder, self.explicit = ladder, explicit
         self.goods, self.comfort, self.grain = goods, comfort, grain
         self.search = Search(ladder, reach(goods, comfort))
+        self.known = {}
 
     def run(self, tell):
         """The cheapest Tailored found whose pieces fit, or the least strained one met. tell(share, words) as it goes."""
@@ -97,11 +98,13 @@ class Tailor:
         return Tailored(network, [self.judge(network.piece_surface(k)[0], fully) for k in range(network.pieces[0])])
 
     def judge(self, surface, fully):
-        """Judged for one piece: shaped for the goods fully, or so far that the rest can be foreseen."""
-        if fully:
-            return judge(surface, self.goods, self.comfort, self.grain, stages=None)
-        one = judge(surface, self.goods, self.comfort, self.grain, stages=1)
-        return replace(one, utilisation=one.utilisation * (SHAPED if self.goods.shear is None else SHAPED_WOVEN))
+        """Judged for one piece: shaped for the goods fully, or so far that the rest can be foreseen. Remembered."""
+        key = (fully, surface.points.tobytes(), surface.triangles.tobytes())
+        if key not in self.known:
+            one = judge(surface, self.goods, self.comfort, self.grain, stages=None if fully else 1)
+            share = 1.0 if fully else SHAPED if self.goods.shear is None else SHAPED_WOVEN
+            self.known[key] = replace(one, utilisation=one.utilisation * share)
+        return self.known[key]
 
     def schooled(self, rung, state, lessons):
         """(State, Tailored) best met while the foresight learns from real flattening, with at most so many lessons."""
@@ -119,6 +122,10 @@ class Tailor:
         best = None
         for turn in range(CONFIRMATIONS):
             met = self.real(rung, state.cut, spare)
+            needed = [places for places in spare if met.judged[_piece_at(met.network, places[1])].crossings]
+            if needed:  # a piece lies over itself for want of a seam that was dropped: put it back
+                spare = [places for places in spare if not any(places is one for one in needed)]
+                met = min(met, self.real(rung, state.cut, spare), key=lambda met: met.rank)
             if best is None or met.rank < best.rank:
                 best = met
             if best.fits or turn == CONFIRMATIONS - 1 or len(met.judged) >= MOST_PIECES:
@@ -185,7 +192,7 @@ class Tailor:
         refused, spare = {}, []
         while True:
             chains = sorted(met.network.chains, key=lambda chain: -_length(met.network, chain))
-            for chain in chains + [half for chain in chains for half in _halves(chain)]:
+            for chain in chains + [half for whole in chains for half in _halves(whole)]:
                 key = (min(chain[0], chain[-1]), max(chain[0], chain[-1]), len(chain))
                 whole = refused.get(_whole(key, chain, chains))
                 if key in refused or (whole is not None and whole > HOPELESS):
@@ -258,6 +265,12 @@ def _places(network, chain):
     way = np.concatenate([[0], np.cumsum(np.linalg.norm(np.diff(points, axis=0), axis=1))])
     middle = [np.interp(0.5 * way[-1], way, axis) for axis in points.T]
     return np.array([points[0], middle, points[-1]])
+
+
+def _piece_at(network, place):
+    """The piece nearest to a place (3,)."""
+    near = np.linalg.norm(network.surface.points - place, axis=1).argmin()
+    return network.pieces[1][np.argmax((network.surface.triangles == near).any(axis=1))]
 
 
 def _without_nearest(network, places):

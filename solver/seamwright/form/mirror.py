@@ -54,6 +54,10 @@ class Plane:
         """(k, 3) mirror images of directions."""
         return vectors - 2 * (vectors @ self.normal)[:, None] * self.normal
 
+    def scaled(self, factor):
+        """The Plane after all lengths are multiplied by a factor about the origin."""
+        return Plane(self.point * factor, self.normal, self.error * factor)
+
 
 def planes(surface, most=1):
     """List of at most `most` Planes of symmetry of a connected Surface, best first, each at right angles to the others.

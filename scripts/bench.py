@@ -98,6 +98,11 @@ def line(row):
             f"{row.pieces:6d} {row.metres:7.2f} {'yes' if row.fits else 'NO':4} {', '.join(row.refused)}")
 
 
+def numbers(words):
+    """List of the numbers in words with commas between."""
+    return [float(word) for word in words.split(",")]
+
+
 def main(arguments):
     """Exit status: 0 when all was measured."""
     import gallery
@@ -106,7 +111,7 @@ def main(arguments):
     parser.add_argument("--forms", default=",".join(gallery.FORMS), help="names, comma between")
     parser.add_argument("--points", type=int, default=5000, help="about how many points each form has")
     parser.add_argument("--goods", default="", help="names, comma between: the cheapest network that fits (default: felt)")
-    parser.add_argument("--thrift", default="", help="numbers, comma between: the network for a price of seam")
+    parser.add_argument("--thrift", default=[], type=numbers, help="numbers, comma between: the network for a price of seam")
     parser.add_argument("--route", default="through", choices=("through", "edges"))
     parser.add_argument("--picture", action="store_true", help="also a page with every form, front and back")
     options = parser.parse_args(arguments)
@@ -114,7 +119,7 @@ def main(arguments):
     unknown = [name for name in names if name not in gallery.FORMS]
     if unknown:
         parser.error(f"no form is called {', '.join(unknown)}; there are {', '.join(gallery.FORMS)}")
-    wishes = [{"goods": "spandex", "thrift": float(word)} for word in options.thrift.split(",") if word]
+    wishes = [{"goods": "spandex", "thrift": thrift} for thrift in options.thrift]
     wishes += [{"goods": word.strip()} for word in options.goods.split(",") if word]
     rows, shown, unit = [], [], {}
     print(HEAD, flush=True)
@@ -123,7 +128,7 @@ def main(arguments):
             row, pattern = bench(name, options.points, unit, {**wish, "route": options.route})
             rows.append(row)
             print(line(row), flush=True)
-            shown.append((row, pattern)) if options.picture else None
+            shown.append((line(row), pattern))
     for wish in dict.fromkeys(row.wish for row in rows):
         ours = [row for row in rows if row.wish == wish]
         taken = [row.factorisations for row in ours]
@@ -135,7 +140,7 @@ def main(arguments):
     if options.picture:
         import portraits
 
-        print(f"Look at {portraits.page(OUT, [(line(row), pattern) for row, pattern in shown])}")
+        print(f"Look at {portraits.page(OUT, shown)}")
     return 0
 
 

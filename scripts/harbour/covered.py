@@ -83,7 +83,7 @@ def _broadest(scene, piece, eye, size):
     if every * breadth[seen].sum() < 3 * size * size:
         return None
     apart = np.linalg.norm(middles[seen][:, None] - middles[seen], axis=2)
-    return middles[seen[np.argmax(np.exp(-((apart / (2 * size)) ** 2)) @ breadth[seen])]]
+    return middles[seen[np.argmax(np.exp(-((apart / (4 * size)) ** 2)) @ breadth[seen])]]
 
 
 def _letters(scene, words, spot, eye, size):

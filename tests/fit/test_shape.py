@@ -103,3 +103,15 @@ def test_shaping_flips_nothing_and_is_the_same_every_time():
         assert once.tobytes() == again.tobytes()
         u, v = (once[surface.triangles[:, k]] - once[surface.triangles[:, 0]] for k in (1, 2))
         assert (u[:, 0] * v[:, 1] - u[:, 1] * v[:, 0] > 0).all()
+
+
+def test_the_judge_goes_on_from_what_is_known():
+    surface = Surface(*cap(1.1, 10))
+    for name, stages in (("felt", 3), ("canvas", 6)):
+        quick = judge(surface, get(name), 0.5)
+        full = judge(surface, get(name), 0.5, stages=None)
+        further = judge(surface, get(name), 0.5, stages=None, start=quick.flat, done=1)
+        assert quick.utilisation > 1
+        assert further.utilisation == pytest.approx(full.utilisation, rel=0.03)
+        nothing = judge(surface, get(name), 0.5, stages=None, start=full.flat, done=stages)
+        assert nothing.utilisation == pytest.approx(full.utilisation, rel=1e-3)

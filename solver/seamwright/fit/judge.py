@@ -23,12 +23,14 @@ class Judged:
     crossings: list
 
 
-def judge(surface, goods, comfort=0.0, grain=None, stages=1):
+def judge(surface, goods, comfort=0.0, grain=None, stages=1, start=None, done=0):
     """Flatten a disk, shape it for the goods with the first `stages` exponents (None: all), and measure the outcome.
 
-    A piece that fits by this fits: more shaping only helps. Stops as soon as it does.
+    A piece that fits by this fits: more shaping only helps. Stops as soon as it does. Begins from `start`, a flip-free flat
+    (n, 2) that has been through the first `done` exponents, where that is known.
     """
-    flat = relax_for_goods(surface, flatten(surface).flat, goods, comfort, grain, stages, enough=1.0).flat
+    flat = flatten(surface).flat if start is None else start
+    flat = relax_for_goods(surface, flat, goods, comfort, grain, stages, 1.0, done).flat
     each = utilisation(warp_weft_shear(surface.points, surface.triangles, flat), goods, comfort)
     share = area_quantile(each, areas(surface.points, surface.triangles))
     return Judged(share, each, flat, overlaps(flat, surface.boundary_loops[0]))

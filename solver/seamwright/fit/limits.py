@@ -24,8 +24,8 @@ class GoodsEnergy:
     def density(self, alpha, beta):
         """(t,) energy per area; infinite where a triangle is flipped."""
         inside = np.abs(alpha) > np.abs(beta)
-        values = self._channels(np.where(inside, alpha, 1.0), np.where(inside, beta, 0.0))[0]
-        return np.where(inside, self._steep(values)[0].sum(axis=0), np.inf)
+        log, w = log_and_ratio(np.where(inside, alpha, 1.0), np.where(inside, beta, 0.0))
+        return np.where(inside, self._steep(self._values(log, w))[0].sum(axis=0), np.inf)
 
     def first(self, alpha, beta):
         """Gradients with respect to alpha and beta, two (t,) complex."""
@@ -34,7 +34,7 @@ class GoodsEnergy:
         return (slope * at_alpha).sum(axis=0), (slope * at_beta).sum(axis=0)
 
     def second(self, alpha, beta):
-        """(t, 4, 4) Gauss-Newton Hessian, never negative; for principal stretches with the turning of their directions."""
+        """Gauss-Newton's Hessian, as in `flat.strain`; for principal stretches with the turning of their directions."""
         values, at_alpha, at_beta, turning = self._channels(alpha, beta)
         _, slope, bend = self._steep(values)
         if turning:
@@ -42,21 +42,25 @@ class GoodsEnergy:
             apart = np.abs(slope[::2] - slope[1::2]) / np.maximum(radius, 1e-9)
             bend = np.concatenate([bend, np.where(radius > 1e-9, apart, bend[::2] + bend[1::2])])
             at_alpha, at_beta = np.concatenate([at_alpha, turn_alpha]), np.concatenate([at_beta, turn_beta])
-        rows = np.stack([at_alpha.real, at_alpha.imag, at_beta.real, at_beta.imag])
-        return np.stack([(bend * row * rows).sum(axis=1).T for row in rows], axis=1)
+        return bend, at_alpha, at_beta
 
     def used(self, log, w):
         """(t,) largest channel, utilisation over `level`, from `log_and_ratio` of a flat piece."""
+        return np.abs(self._values(log, w)).max(axis=0)
+
+    def _values(self, log, w):
+        """(c, t) channels; those of principal stretches positive or 0."""
         left = 1 - np.abs(w) ** 2
         if self.shear:
             warp, weft, shear = _threads(log, w, left)
-            stretched = np.maximum(warp / self.warp, weft / self.weft)
-            return np.maximum(np.maximum(stretched, -np.minimum(warp, weft) / self.ease_in), np.abs(shear) / self.shear)
-        middle, spread = log - 0.5 * np.log(left), -np.arctanh(np.abs(w)) * w / np.maximum(np.abs(w), 1e-300)
+            warp, weft = (e / np.where(e > 0, limit, self.ease_in) for e, limit in ((warp, self.warp), (weft, self.weft)))
+            return np.stack([warp, weft, shear / self.shear])
+        size = np.abs(w)
+        middle, spread = log - 0.5 * np.log(left), -np.arctanh(size) * w / np.maximum(size, 1e-300)
         weft, warp = (middle + spread.real) / self.weft, (middle - spread.real) / self.warp
-        mixed = spread.imag / np.sqrt(self.warp * self.weft)
-        stretched = 0.5 * (weft + warp) + np.hypot(0.5 * (weft - warp), mixed)
-        return np.maximum(stretched, (np.abs(spread) - middle) / self.ease_in)
+        mean, radius = 0.5 * (weft + warp), np.hypot(0.5 * (weft - warp), spread.imag / np.sqrt(self.warp * self.weft))
+        eased, apart = -middle / self.ease_in, np.abs(spread) / self.ease_in
+        return np.maximum(np.stack([mean + radius, mean - radius, eased - apart, eased + apart]), 0)
 
     def _steep(self, x):
         """(cosh(k x) - 1) / k^2 with its first and second derivative, all over e^k."""

@@ -11,7 +11,7 @@ from ..form.surface import Surface
 from .grain import pull
 from .limits import GoodsEnergy, log_and_ratio
 from .measure import area_quantile
-from .shape import DAMPING, EXPONENTS, EXPONENTS_WOVEN, settle
+from .shape import DAMPING, STEPS, exponents_for, settle
 
 STIFFNESS = 100.0
 """Of the springs along the seams, per area of the pieces; the energy of a piece at its limits is under half its area."""
@@ -54,10 +54,12 @@ def match(surfaces, flats, joints, goods, comfort=0.0, wanted=None):
         each = limits.used(*log_and_ratio(*rest.maps(flat)))
         return [area_quantile(each[piece == k], rest.area[piece == k]) for k in range(len(surfaces))]
 
-    for exponent in EXPONENTS if goods.shear is None else EXPONENTS_WOVEN:
+    damping = DAMPING
+    for exponent in exponents_for(goods):
         energy = GoodsEnergy(goods, comfort, exponent, max(LEAST_LEVEL, *used(now)))
         state = _Sewn(rest, energy, now, seams, STIFFNESS * rest.total)
-        settle(state, lambda state=state: state.direction(held))
+        damping = settle(state, lambda damping, state=state: state.direction(held, damping),
+                         STEPS // len(exponents_for(goods)), damping)[1]
         now = state.flat
     parts = [as_points(now[a:b]) for a, b in zip(begin[:-1], begin[1:], strict=True)]
     return Matched(parts, used(now), np.split(seams.gaps(now)[0], seams.ends[:-1]))
@@ -77,10 +79,10 @@ class _Sewn(State):
         gaps, rows = self.seams.gaps(flat)
         return super().slope(flat, maps) + self.stiffness * gaps @ rows
 
-    def direction(self, held):
+    def direction(self, held, damping):
         rows = self.seams.gaps(self.flat)[1]
         give = np.concatenate([np.full(len(rows), 1 / self.stiffness), np.zeros(len(held))])
-        return self.newton_direction(DAMPING, np.concatenate([rows, held]), give)
+        return self.newton_direction(damping, np.concatenate([rows, held]), give)
 
 
 class _Seams:

@@ -14,8 +14,12 @@ from .measure import area_quantile
 EXPONENTS_WOVEN = (2, 4, 8, 16, 32, 64)
 EXPONENTS = (16, 32, 64)
 """Without a shear limit the isotropic flattening is close enough to begin high."""
-STEPS = 6
+STEPS = 24
+"""Most Newton steps in all, the same number for each exponent."""
 DAMPING = 0.01
+"""Share of the mean stiffness that every triangle gets besides its own, to begin with."""
+LEAST_GAIN = 0.05
+"""An exponent is left when a step lowers its energy by less than this share."""
 
 
 @dataclass
@@ -27,12 +31,13 @@ class Shaped:
     steps: int
 
 
-def relax_for_goods(surface, flat, goods, comfort=0.0, wanted=None, stages=None, enough=0.0):
+def relax_for_goods(surface, flat, goods, comfort=0.0, wanted=None, stages=None, enough=0.0, done=0):
     """Shape a flip-free flat (n, 2) so that it uses least of the goods' limits at a comfort. Returns Shaped.
 
     The exponent k of the energy rises (a p-norm that tends to the maximum), each time with the limits measured in the
-    utilisation reached so far; the best piece on the way is kept. The first `stages` exponents only, if given; no further
-    once the utilisation is `enough`. The grain may turn, unless a `wanted` direction (3,) on the form is held along +y.
+    utilisation reached so far; the best piece on the way is kept. The first `stages` exponents only, if given, without
+    those already `done`; no further once the utilisation is `enough`. The grain may turn, unless a `wanted` direction (3,)
+    on the form is held along +y.
     """
     rest = Rest(surface)
     held = None if wanted is None else pull(rest, wanted)[None].astype(complex)
@@ -42,23 +47,38 @@ def relax_for_goods(surface, flat, goods, comfort=0.0, wanted=None, stages=None,
         return area_quantile(limits.used(*log_and_ratio(*rest.maps(flat))), rest.area)
 
     now = lay_on_grain(rest, as_complex(np.asarray(flat, dtype=float)), goods, comfort, wanted)
-    best, steps = (used(now), now), 0
-    for exponent in (EXPONENTS if goods.shear is None else EXPONENTS_WOVEN)[:stages]:
+    best, steps, damping = (used(now), now), 0, DAMPING
+    exponents = exponents_for(goods)
+    for exponent in exponents[done:stages]:
         if best[0] <= max(enough, 1e-6):
             break
         state = State(rest, GoodsEnergy(goods, comfort, exponent, used(now)), now)
-        steps += settle(state, lambda state=state: state.newton_direction(DAMPING, held, np.zeros(1)))
-        now = resize(rest, state.flat, goods, comfort)
+        taken, damping = settle(state, lambda damping, state=state: state.newton_direction(damping, held, np.zeros(1)),
+                                STEPS // len(exponents), damping)
+        now, steps = resize(rest, state.flat, goods, comfort), steps + taken
         best = min(best, (used(now), now), key=lambda pair: pair[0])
     return Shaped(as_points(best[1]), best[0], steps)
 
 
-def settle(state, direction):
-    """Steps of a State along direction() while they pay; returns their number."""
-    for step in range(STEPS):
-        before, way = state.value, direction()
-        if -dot(state.gradient, way) <= 1e-3 * before or not state.step(way):
-            return step
-        if before - state.value < 0.02 * before:
-            return step + 1
-    return STEPS
+def exponents_for(goods):
+    """The exponents of the energy, rising."""
+    return EXPONENTS if goods.shear is None else EXPONENTS_WOVEN
+
+
+def settle(state, direction, most, damping):
+    """At most so many steps of a State along direction(damping) while they pay. Returns (steps taken, damping).
+
+    The damping falls after full steps as good as foreseen and rises after shortened ones (Levenberg 1944, Marquardt 1963).
+    """
+    for step in range(most):
+        before, way = state.value, direction(damping)
+        promise = -dot(state.gradient, way)
+        if promise <= 1e-3 * before:
+            return step, damping
+        if state.step(way) < 1:
+            damping = min(3 * damping, 1.0)
+        elif before - state.value > 0.35 * promise:
+            damping = max(damping / 2, 1e-5)
+        if before - state.value < LEAST_GAIN * before:
+            return step + 1, damping
+    return most, damping

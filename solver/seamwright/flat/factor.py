@@ -2,6 +2,7 @@
 
 import numpy as np
 from scipy.linalg import LinAlgError, cho_solve_banded, cholesky_banded
+from scipy.sparse import coo_matrix, tril
 from scipy.sparse.csgraph import reverse_cuthill_mckee
 
 from ..form.laplacian import Factor
@@ -10,27 +11,52 @@ WIDEST = 250
 """Bandwidth beyond which general sparse factors are quicker; measured, a round piece reaches it at some 12 000 points."""
 
 
-def factor(matrix):
-    """What solves a sparse symmetric positive definite matrix (n, n): has solve(load), load (n,) or (n, k).
+class Pattern:
+    """Where the entries of a symmetric matrix stand; made once, for many matrices.
 
-    Cholesky's factors of the band in reverse Cuthill-McKee order; of a wide band, `form.laplacian.Factor`. Raises
-    CoverError as that does.
+    row, column (e,): each unordered pair of unknowns that has an entry, in either order; entries of a repeated pair add
+    up. order (n,): the unknowns from one end of the piece to the other, reverse Cuthill-McKee's if not given.
     """
-    entries = matrix.tocoo()
-    order = reverse_cuthill_mckee(matrix.tocsr(), symmetric_mode=True)
-    place = np.empty(len(order), dtype=np.int64)
-    place[order] = np.arange(len(order))
-    row, column = place[entries.row], place[entries.col]
-    width = int(np.max(row - column, initial=0))
-    if width > WIDEST or not np.isfinite(entries.data).all():
-        return Factor(matrix)
-    lower = row >= column
-    band = np.bincount((column * (width + 1) + row - column)[lower], entries.data[lower], len(order) * (width + 1))
-    band = band.reshape(-1, width + 1).T
-    try:
-        return _Banded(cholesky_banded(band, overwrite_ab=True, lower=True, check_finite=False), order)
-    except LinAlgError:
-        return Factor(matrix)
+
+    def __init__(self, row, column, count, order=None):
+        self.row, self.column, self.count = row, column, count
+        self.order = narrow_order(row, column, count) if order is None else order
+        place = np.empty(count, dtype=np.int64)
+        place[self.order] = np.arange(count)
+        row, column = place[row], place[column]
+        self.wide = int(np.max(np.abs(row - column), initial=0)) + 1
+        self._slot = np.minimum(row, column) * self.wide + np.abs(row - column)
+
+    def factor(self, entries):
+        """What solves the positive definite matrix with these entries (e,): has solve(load), load (n,) or (n, k).
+
+        Cholesky's factors of the band; of a wide one `form.laplacian.Factor`, and raises CoverError as that does.
+        """
+        if self.wide <= WIDEST and np.isfinite(entries).all():
+            band = np.bincount(self._slot, entries, self.count * self.wide).reshape(-1, self.wide).T
+            try:
+                return _Banded(cholesky_banded(band, overwrite_ab=True, lower=True, check_finite=False), self.order)
+            except LinAlgError:
+                pass
+        return Factor(self.matrix(entries))
+
+    def matrix(self, entries):
+        """(n, n) csc with these entries (e,)."""
+        apart = self.row != self.column
+        row, column = np.append(self.row, self.column[apart]), np.append(self.column, self.row[apart])
+        return coo_matrix((np.append(entries, entries[apart]), (row, column)), shape=(self.count, self.count)).tocsc()
+
+
+def factor(matrix):
+    """Factors of a sparse symmetric positive definite matrix (n, n), as by `Pattern.factor`."""
+    lower = tril(matrix).tocoo()
+    return Pattern(lower.row, lower.col, matrix.shape[0]).factor(lower.data)
+
+
+def narrow_order(row, column, count):
+    """(n,) an order of the unknowns in which pairs (e,) stand close together."""
+    graph = coo_matrix((np.ones(2 * len(row)), (np.append(row, column), np.append(column, row))), shape=(count, count))
+    return reverse_cuthill_mckee(graph.tocsr(), symmetric_mode=True)
 
 
 class _Banded:

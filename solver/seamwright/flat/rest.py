@@ -8,9 +8,9 @@ exactly where the triangle is flipped.
 from functools import cached_property
 
 import numpy as np
-from scipy.sparse import coo_matrix, csc_matrix, csr_matrix, diags
+from scipy.sparse import csr_matrix
 
-from .factor import factor
+from .factor import Pattern
 
 LEAST_HEIGHT = 1e-3
 """A triangle thinner than this share of its longest edge counts as this thick, so no matrix entry runs away."""
@@ -54,46 +54,59 @@ class Rest:
         """(n,) complex gradient at the points from (t,) complex gradients with respect to alpha and beta."""
         return self._to_alpha @ at_alpha + self._to_beta @ at_beta
 
-    def stiffness(self, bend):
-        """(2n, 2n) csc from (t, 4, 4) per area in (Re alpha, Im alpha, Re beta, Im beta), held at a point of every part."""
-        p = self.slope
-        rows = np.stack([
-            np.stack([p.real, p.imag], 2), np.stack([-p.imag, p.real], 2),
-            np.stack([p.real, -p.imag], 2), np.stack([p.imag, p.real], 2)], 1).reshape(-1, 4, 6)
-        blocks = self.area[:, None, None] * (rows.transpose(0, 2, 1) @ bend @ rows)
-        order, first, inner, outer, held = self._pattern
-        data = np.add.reduceat(blocks.ravel()[order], first)
-        data[held] *= 2
-        return csc_matrix((data, inner, outer), shape=(2 * self.count, 2 * self.count))
+    def stiffness(self, bend, at_alpha, at_beta, floor):
+        """Factors of the (2n, 2n) second derivative of an energy, held at a point of every part.
 
-    @cached_property
-    def _pattern(self):
-        """Where the entries of `stiffness` go: sorted once, summed many times."""
-        at = (2 * self.triangles[:, :, None] + np.arange(2)).reshape(-1, 6)
-        size = 2 * self.count
-        place = (np.repeat(at, 6, axis=1) + size * np.tile(at, (1, 6))).ravel()
-        order = np.argsort(place, kind="stable")
-        place = place[order]
-        first = np.flatnonzero(np.concatenate([[True], np.diff(place) > 0]))
-        inner, column = place[first] % size, place[first] // size
-        held = np.flatnonzero((inner == column) & np.isin(inner // 2, self.anchors))
-        return order, first, inner, np.searchsorted(column, np.arange(size + 1)), held
+        bend (r, t) by the direction (at_alpha, at_beta), each (r, t) complex, as from `strain`; floor (t,) is added to the
+        second derivatives in all directions. Unknown 2i is x of point i, 2i + 1 its y.
+        """
+        corner = [self.slope[:, k] * at_alpha + self.slope[:, k].conj() * at_beta for k in range(3)]
+        rows = np.stack([part for c in corner for part in (c.real, c.imag)])
+        heavy = self.area * bend * rows
+        entries = np.concatenate([(heavy[i] * rows[: i + 1]).sum(axis=1) for i in range(6)])
+        i, j = np.tril_indices(6)
+        plain = (i - j) % 2 == 0
+        entries[plain] += 0.5 * floor * self._pull[(i // 2 * (i // 2 + 1) // 2 + j // 2)[plain]]
+        pattern, held = self._coordinates
+        return pattern.factor(_held(entries, held))
+
+    def solver(self, weight):
+        """Factors of the Laplacian with (t,) weights, held at a point of every part.
+
+        Gradients sum to zero over a part, so that holding costs nothing.
+        """
+        pattern, held = self._points
+        return pattern.factor(_held(weight * self._pull, held))
 
     def laplacian(self, weight):
         """(n, n) csc: cotangent Laplacian with (t,) weights."""
-        first, second = self.triangles.ravel(), np.roll(self.triangles, -1, axis=1).ravel()
-        pull = self.slope * np.roll(self.slope, -1, axis=1).conj()
-        entry = (4 * (weight * self.area)[:, None] * pull.real).ravel()
-        half = coo_matrix((entry, (first, second)), shape=(self.count, self.count)).tocsc()
-        both = half + half.T
-        return (both - diags(np.asarray(both.sum(axis=1)).ravel())).tocsc()
+        return self._points[0].matrix((weight * self._pull).ravel())
 
-    def solver(self, weight):
-        """Factors of the weighted Laplacian, held at a point of every part: gradients sum to zero, so that costs nothing."""
-        matrix = self.laplacian(weight)
-        held = np.zeros(self.count)
-        held[self.anchors] = matrix.diagonal()[self.anchors]
-        return factor(matrix + diags(held))
+    @cached_property
+    def _pull(self):
+        """(6, t) integrals of the products of the corners' hat gradients, pairs of corners as in `np.tril_indices`."""
+        i, j = np.tril_indices(3)
+        return 4 * self.area * (self.slope[:, i] * self.slope[:, j].conj()).real.T
+
+    @cached_property
+    def _points(self):
+        """Pattern of the entries between points, and which of them hold an anchor."""
+        pairs = self.triangles[:, np.array(np.tril_indices(3))].transpose(1, 2, 0)
+        return Pattern(*pairs.reshape(2, -1), self.count), (pairs[0] == pairs[1]) & np.isin(pairs[0], self.anchors)
+
+    @cached_property
+    def _coordinates(self):
+        """The same of the entries between coordinates."""
+        at = (2 * self.triangles[:, :, None] + np.arange(2)).reshape(-1, 6)
+        pairs = at[:, np.array(np.tril_indices(6))].transpose(1, 2, 0)
+        order = (2 * self._points[0].order[:, None] + np.arange(2)).ravel()
+        held = (pairs[0] == pairs[1]) & np.isin(pairs[0] // 2, self.anchors)
+        return Pattern(*pairs.reshape(2, -1), 2 * self.count, order), held
+
+
+def _held(entries, held):
+    """(e,) entries of a matrix, those on its diagonal that hold an anchor doubled."""
+    return np.where(held, 2 * entries, entries).ravel()
 
 
 def solve_complex(factor, load):

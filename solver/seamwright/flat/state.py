@@ -2,8 +2,6 @@
 
 import numpy as np
 
-from .factor import factor
-
 
 class State:
     """Flat points (n,) complex with their maps, energy (`value`, not per area) and gradient (n,) complex."""
@@ -22,7 +20,7 @@ class State:
         return self.rest.gather(self.rest.area * at_alpha, self.rest.area * at_beta)
 
     def step(self, direction):
-        """Take the longest halved step that lowers the energy enough and stays 10 % short of any flip; False if none."""
+        """Take the longest halved step that lowers the energy enough, 10 % short of any flip; its length, 0 if none."""
         alpha, beta = self.maps
         d_alpha, d_beta = self.rest.maps(direction)
         length = min(1.0, 0.9 * first_flip(alpha, beta, d_alpha, d_beta))
@@ -32,9 +30,9 @@ class State:
             value = self.worth(flat, (alpha + length * d_alpha, beta + length * d_beta))
             if value <= self.value + 1e-4 * length * promise and value < self.value:
                 self._take(flat, self.rest.maps(flat))
-                return True
+                return length
             length *= 0.5
-        return False
+        return 0.0
 
     def newton_direction(self, damping=0.0, rows=None, give=None):
         """(n,) complex Newton step on the positive part of the Hessian.
@@ -43,10 +41,10 @@ class State:
         sums over the points, Re(conj(row) . flat), that resist change: a row by the inverse of its `give` (m,), one that
         gives 0 entirely (Woodbury's formula).
         """
-        bend = self.energy.second(*self.maps)
-        stiffness = np.einsum("tii->t", bend) / 4
-        bend += (1e-8 * stiffness + damping * (self.rest.area @ stiffness) / self.rest.total)[:, None, None] * np.eye(4)
-        factors = factor(self.rest.stiffness(bend))
+        bend, at_alpha, at_beta = self.energy.second(*self.maps)
+        stiffness = 0.25 * (bend * (np.abs(at_alpha) ** 2 + np.abs(at_beta) ** 2)).sum(axis=0)
+        floor = 1e-8 * stiffness + damping * (self.rest.area @ stiffness) / self.rest.total
+        factors = self.rest.stiffness(bend, at_alpha, at_beta, floor)
         direction = -factors.solve(self.gradient.view(float)).view(complex)
         if rows is not None:
             real = np.ascontiguousarray(rows).view(float)

@@ -1,9 +1,9 @@
 """Strain energies of one triangle, as functions of (alpha, beta), the map from form to flat (see `rest`).
 
 An energy has four vectorised methods of (t,) complex alpha and beta, all per area of the form: `density` (t,);
-`first`, the gradients with respect to alpha and beta as complex numbers; `second` (t, 4, 4), the Hessian in
-(Re alpha, Im alpha, Re beta, Im beta) with its negative part left out; `secant` (t,), the weight of the Laplacian that
-pulls as hard as the energy does.
+`first`, the gradients with respect to alpha and beta as complex numbers; `second`, the Hessian without its negative part
+as a sum of squares: how far it bends, (r, t), along each direction, two (r, t) complex; `secant` (t,), the weight of the
+Laplacian that pulls as hard as the energy does.
 """
 
 import numpy as np
@@ -33,18 +33,13 @@ class Isotropic:
         return (large + small) / a * alpha, (large - small) / np.maximum(b, 1e-300) * beta
 
     def second(self, alpha, beta):
-        """(t, 4, 4) positive part of the Hessian."""
+        """(bend, at_alpha, at_beta), (4, t) each, the latter two complex: the positive part of the Hessian."""
         a, b = np.abs(alpha), np.maximum(np.abs(beta), 1e-12 * np.abs(alpha))
         _, large, large2 = self.line(a + b)
         _, small, small2 = self.line(a - b)
-        large2, small2 = np.maximum(large2, 0), np.maximum(small2, 0)
-        around_a, around_b = np.maximum((large + small) / a, 0), np.maximum((large - small) / b, 0)
+        bend = np.stack([large2, small2, (large + small) / a, (large - small) / b])
         p, q = alpha / a, np.where(np.abs(beta) > 0, beta, b) / b
-        zero = np.zeros_like(a)
-        out_a, out_b = np.stack([p.real, p.imag, zero, zero], 1), np.stack([zero, zero, q.real, q.imag], 1)
-        side_a, side_b = np.stack([-p.imag, p.real, zero, zero], 1), np.stack([zero, zero, -q.imag, q.real], 1)
-        return (_outer(large2, out_a + out_b) + _outer(small2, out_a - out_b)
-                + _outer(around_a, side_a) + _outer(around_b, side_b))
+        return np.maximum(bend, 0), np.stack([p, p, 1j * p, 0 * p]), np.stack([q, -q, 0 * q, 1j * q])
 
     def secant(self, alpha, beta):
         """(t,) mean over both singular values of the first derivative over the distance from no stretch."""
@@ -62,6 +57,3 @@ def symmetric_dirichlet(s):
     """Half of (s - 1/s)^2, which is cosh(2 ln s) - 1: grows without bound both ways, and no flip can be reached."""
     return 0.5 * (s - 1 / s) ** 2, s - s**-3, 1 + 3 * s**-4
 
-
-def _outer(weight, v):
-    return (weight[:, None] * v)[:, :, None] * v[:, None, :]

@@ -8,6 +8,7 @@ from .assemble import assemble
 from .errors import CoverError, WishError
 from .fit.goods import get
 from .fit.tailor import Tailor
+from .form.mirror import planes, reflection
 from .form.surface import Surface
 from .pattern import Pattern
 from .seams.ladder import Ladder
@@ -65,7 +66,8 @@ def _parts(form):
 
 
 def _cover_part(form, part, wishes, goods, tell):
-    ladder = Ladder(part.surface, seam_prices(form, wishes)[part.points])
+    price = seam_prices(form, wishes)[part.points]
+    ladder = Ladder(part.surface, price, _planes(part.surface, price, wishes))
     metric = 1 / ladder.factor
 
     def explicit(cut):
@@ -79,11 +81,18 @@ def _cover_part(form, part, wishes, goods, tell):
         result = tailor.run(tell)
     else:
         found = seek(ladder, wishes.thrift or 0.1, wishes.energy, wishes.pieces, _begin(form, part, wishes), tell)
-        result = tailor.real(len(ladder.levels) - 1, found.cut)
+        result = tailor.real(len(ladder.levels) - 1, found.cut, fully=True)
         if wishes.pieces is None:
             result = tailor.dropped(result)[0]
     result.network = replace(result.network, source=part.triangles[result.network.source])
     return result
+
+
+def _planes(surface, price, wishes):
+    """Planes of symmetry that the network is to keep: none where the wishes are lopsided themselves."""
+    if wishes.symmetry == "none" or wishes.start is not None:
+        return []
+    return [plane for plane in planes(surface) if np.abs(reflection(surface, plane) @ price - price).max() < 0.1]
 
 
 def _begin(form, part, wishes):

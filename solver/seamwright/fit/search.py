@@ -14,8 +14,9 @@ from ..seams.cut import cut_by_fields, recut
 from ..seams.descend import descend
 from ..seams.energy import evaluate
 from ..seams.fields import from_labels, redistance
+from ..seams.merging import merges
 from ..seams.starts import starts, tidied
-from ..seams.topology import merged, nearer, regions, through
+from ..seams.topology import nearer, regions, through
 from .foresee import largest
 
 STEPS = 6  # flow steps in a round
@@ -23,6 +24,7 @@ HALVINGS = (2, 2, 4)  # rounds on the first rung after each of which only the be
 CELLS = (2, 3, 4, 6, 9)  # sizes of the cells among the starts
 TOO_MUCH = 3.0  # use of the limits at which a piece is split at once
 PATIENCE = 4  # rounds running that a piece may be beyond its limits before it is split
+REPAIRS = 3  # flows after a lift, as long as regions had to be put right
 ROOM = 0.97  # foreseen use under which a union may be merged
 OVER = 1.02  # foreseen use that counts as beyond
 MOST_PIECES = 40
@@ -74,7 +76,13 @@ class Search:
     def lifted(self, rung, state):
         """The State one rung up."""
         fields = self.ladder.lift(state.fields, rung - 1, rung)
-        return self._after(rung, state, self._flow(rung, fields, state).cut)
+        for _ in range(REPAIRS):
+            cut = self._flow(rung, fields, state).cut
+            state = self._after(rung, state, cut)
+            fields = state.fields
+            if np.array_equal(state.cut.labels, cut.labels):
+                break
+        return state
 
     def learnt(self, rung, state, real, local):
         """The State after the real use (K,) of its pieces is known, and (n of the level,) how it is spread within them.
@@ -135,6 +143,10 @@ class Search:
         size = np.bincount(labels, minlength=count)
         weights = np.exp(np.bincount(labels, np.log(point_weights), minlength=count) / size)
         use, peaks = self._use(rung, labels, cost.u, strictness)
+        if level.symmetry is not None:
+            for twins in level.symmetry.partners(labels, count):
+                weights = np.sqrt(weights * weights[twins])
+                use = np.maximum(use, use[twins])
         return State(cut, redistance(level, cut, count), weights, use, cost.length, strictness, peaks, strained)
 
     def _overdone(self, rung, state):
@@ -150,6 +162,7 @@ class Search:
         places: for each region the two points (2, 3), on the level's scale, that are to be parted; without, the new seam runs through the point that asks most.
         """
         level, labels = self.ladder.levels[rung], state.cut.labels
+        which, places = self._with_twins(level, state, which, places)
         trial = labels.copy()
         for number, region in enumerate(which[: max(0, MOST_PIECES - len(state.use))]):
             inside = np.flatnonzero(labels == region)
@@ -162,28 +175,43 @@ class Search:
             return state
         return self._state(rung, state.cut, tidied(level, trial), state.weights[labels], state.strictness)
 
+    def _with_twins(self, level, state, which, places):
+        """The regions and places together with their mirror images, each once."""
+        which = list(which)
+        places = None if places is None else list(places)
+        for mirror in level.symmetry.mirrors if level.symmetry is not None else ():
+            twins = mirror.partners(state.cut.labels, len(state.use))
+            for number, region in enumerate(list(which)):
+                if twins[region] not in which:
+                    which.append(int(twins[region]))
+                    if places is not None:
+                        places.append(mirror.plane.mirrored(places[number]))
+        return which, places
+
     def _merge(self, rung, state):
-        """Merge neighbours, longest border first, whose union is a disk and still fits."""
+        """Merge neighbours, longest border first, whose union is a disk and still fits (with their mirror images)."""
         level = self.ladder.levels[rung]
         least = 2 if level.free.all() else 1
         refused = set()
         while len(state.use) > least:
             labels = state.cut.labels
-            tables = regions(level, labels)
-            order = np.argsort(-tables.border, kind="stable")
-            for at in order:
-                i, j = tables.pairs[at]
-                key = (int(np.flatnonzero(labels == i)[0]), int(np.flatnonzero(labels == j)[0]))
-                if tables.pair_euler[at] != 1 or key in refused or state.use[[i, j]].max() > ROOM:
+            for trial in merges(level, labels):
+                if trial.max() + 1 < least or trial.tobytes() in refused:
                     continue
-                trial = merged(labels, i, j)
+                grown = _grown(labels, trial)
                 cut = recut(level.surface, state.cut, trial)
                 cost = evaluate(level, cut, 1.0, "square", gradient=False)
-                use = self._use(rung, trial, cost.u, state.strictness)[0]
-                if use[trial[labels == i][0]] <= ROOM:
+                if self._use(rung, trial, cost.u, state.strictness)[0][grown].max() <= ROOM:
                     state = self._state(rung, cut, trial, state.weights[labels], state.strictness, state.strained)
                     break
-                refused.add(key)
+                refused.add(trial.tobytes())
             else:
                 return state
         return state
+
+
+def _grown(labels, trial):
+    """Regions of `trial` that hold more than one of `labels`."""
+    pairs = np.unique(np.column_stack([trial, labels]), axis=0)
+    number, parts = np.unique(pairs[:, 0], return_counts=True)
+    return number[parts > 1]

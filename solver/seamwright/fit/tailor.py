@@ -12,11 +12,13 @@ from ..errors import CoverError
 from ..form.measure import areas
 from ..seams.network import cut_through
 from ..seams.opened import edges_in, halves_border, opened
+from ..seams.twins import twin_stretch
 from .foresee import reach
 from .judge import judge
 from .search import MOST_PIECES, Search
 
-LEARNING = 1  # the rung on which the foresight learns, where there is one
+FINE_ENOUGH = 1200  # points of the rung on which the foresight learns: coarser ones strain where the form does not
+FEW_CHAINS = 12  # of seam, up to which the form itself is asked what can be dropped
 CANDIDATES = 2  # networks that learn
 ENOUGH = 1.0  # real use of the limits that counts as fitting
 NEARLY = 0.93  # a network that fits and has a piece this near its limits is not worth another lesson
@@ -62,12 +64,15 @@ class Tailor:
         self.ladder, self.explicit = ladder, explicit
         self.goods, self.comfort, self.grain = goods, comfort, grain
         self.search = Search(ladder, reach(goods, comfort))
+        symmetry = ladder.levels[-1].symmetry
+        self.planes = [] if symmetry is None else [mirror.plane.scaled(1 / ladder.factor) for mirror in symmetry.mirrors]
         self.known = {}
 
     def run(self, tell):
         """The cheapest Tailored found whose pieces fit, or the least strained one met. tell(share, words) as it goes."""
-        top = len(self.ladder.levels) - 1
-        learning = min(LEARNING, max(top - 1, 0))
+        levels = self.ladder.levels
+        top = len(levels) - 1
+        learning = next((rung for rung, level in enumerate(levels) if len(level.free) >= FINE_ENOUGH), top)
         tell(0.0, "trying seams")
         pool = self.search.begin()[:CANDIDATES]
         for rung in range(1, learning + 1):
@@ -77,16 +82,17 @@ class Tailor:
         if not met.fits and len(met.judged) < MOST_PIECES:
             state, met = self.schooled(learning, state, LESSONS[1])
         tell(0.5, "dropping spare seams")
-        met, spare = self.dropped(met, ENOUGH if learning == top else MARGIN)
-        if learning == top:
-            return self.untangled(met)
+        spare = self.dropped(met, MARGIN, fully=False)[1]
         for rung in range(learning + 1, top + 1):
             tell(0.5 + 0.1 * (rung - learning), "refining seams")
             state = self.search.lifted(rung, state)
         tell(0.8, "flattening pieces")
-        return self.confirmed(top, state, spare)
+        met = self.confirmed(top, state, spare)
+        if len(met.network.chains) <= FEW_CHAINS:  # what the coarse rung thought needed, the form itself may not
+            met = self.dropped(met, ENOUGH, fully=True, halves=False)[0]
+        return met
 
-    def real(self, rung, cut, spare=()):
+    def real(self, rung, cut, spare=(), fully=False):
         """The Tailored of a cut, every piece flattened for the goods; spare: places (3, 3) of stretches to leave out."""
         if rung == len(self.ladder.levels) - 1:
             network = self.explicit(cut)
@@ -94,14 +100,18 @@ class Tailor:
             network = cut_through(self.ladder.levels[rung], cut, 1 / self.ladder.factor)
         for places in spare:
             network = _without_nearest(network, places)
-        fully = rung == len(self.ladder.levels) - 1
         return Tailored(network, [self.judge(network.piece_surface(k)[0], fully) for k in range(network.pieces[0])])
 
     def judge(self, surface, fully):
-        """Judged for one piece: shaped for the goods fully, or so far that the rest can be foreseen. Remembered."""
+        """Judged for one piece: shaped for the goods fully, or so far that the rest can be foreseen. Remembered.
+
+        What fits, or is far from fitting, after the first stage of shaping is not shaped further.
+        """
         key = (fully, surface.points.tobytes(), surface.triangles.tobytes())
         if key not in self.known:
-            one = judge(surface, self.goods, self.comfort, self.grain, stages=None if fully else 1)
+            one = judge(surface, self.goods, self.comfort, self.grain, stages=1)
+            if fully and ENOUGH < one.utilisation < HOPELESS / SHAPED_WOVEN:
+                one = judge(surface, self.goods, self.comfort, self.grain, stages=None)
             share = 1.0 if fully else SHAPED if self.goods.shear is None else SHAPED_WOVEN
             self.known[key] = replace(one, utilisation=one.utilisation * share)
         return self.known[key]
@@ -121,11 +131,11 @@ class Tailor:
         """The best Tailored on the form itself, corrected while it does not fit."""
         best = None
         for turn in range(CONFIRMATIONS):
-            met = self.real(rung, state.cut, spare)
+            met = self.real(rung, state.cut, spare, fully=True)
             needed = [places for places in spare if met.judged[_piece_at(met.network, places[1])].crossings]
             if needed:  # a piece lies over itself for want of a seam that was dropped: put it back
                 spare = [places for places in spare if not any(places is one for one in needed)]
-                met = min(met, self.real(rung, state.cut, spare), key=lambda met: met.rank)
+                met = min(met, self.real(rung, state.cut, spare, fully=True), key=lambda met: met.rank)
             if best is None or met.rank < best.rank:
                 best = met
             if best.fits or turn == CONFIRMATIONS - 1 or len(met.judged) >= MOST_PIECES:
@@ -185,48 +195,63 @@ class Tailor:
         np.add.at(votes, (corners.ravel(), np.repeat(piece, 3)), 1)
         return votes.argmax(axis=1)
 
-    def dropped(self, met, limit=ENOUGH):
+    def dropped(self, met, limit=ENOUGH, fully=True, halves=True):
         """(Tailored, what was left out): seam chains dropped, longest first, while the piece they leave is a disk, within
-        the limit and not over itself; then halves of chains, so that darts are left. What was left out: for each the
-        places (3, 3) where it began, its middle and its end."""
+        the limit and not over itself; then halves of chains, so that darts are left. On a symmetric form a chain goes
+        together with its mirror image. What was left out: for each the places (3, 3) of its begin, middle and end."""
         refused, spare = {}, []
         while True:
             chains = sorted(met.network.chains, key=lambda chain: -_length(met.network, chain))
-            for chain in chains + [half for whole in chains for half in _halves(whole)]:
-                key = (min(chain[0], chain[-1]), max(chain[0], chain[-1]), len(chain))
-                whole = refused.get(_whole(key, chain, chains))
-                if key in refused or (whole is not None and whole > HOPELESS):
+            for chain in chains + [half for whole in chains if halves for half in _halves(whole)]:
+                key, whole = _key(chain), refused.get(_key(_whole(chain, chains)), 0.0)
+                if key in refused or whole > HOPELESS:
                     continue
-                trial, refused[key] = self.without(met, chain, limit)
+                group = self.with_images(met.network, chain)
+                trial, use = self.without(met, group, limit, fully)
+                if use == np.inf and len(group) > 1:  # of the two seams of a sleeve one has to stay
+                    group = [chain]
+                    trial, use = self.without(met, group, limit, fully)
+                refused.update((_key(one), use) for one in group)
                 if trial is not None:
-                    spare.append(_places(met.network, chain))
+                    spare += [_places(met.network, one) for one in group]
                     met = trial
                     break
             else:
                 return met, spare
 
-    def without(self, met, chain, limit):
-        """(Tailored without a chain, its use), or (None, the use that it would have; infinite where no disk is left)."""
+    def with_images(self, network, chain):
+        """The chain, or half of one, and its mirror images, each once."""
+        group = [chain]
+        for plane in self.planes:
+            group += [twin for twin in (twin_stretch(network, plane, one) for one in group) if twin is not None]
+        return group
+
+    def without(self, met, group, limit, fully):
+        """(Tailored without some chains, the worst use that leaves), or (None, that use; infinite where no disk is left)."""
         network = met.network
         surface = network.surface
-        first = surface.edge_triangles[surface.edge_index(chain[:2][None])[0]][0]
+        firsts = [surface.edge_triangles[surface.edge_index(chain[:2][None])[0]][0] for chain in group]
         number, piece = network.pieces
-        trial = network.without(chain)
+        trial = network
+        for chain in group:
+            trial = trial.without(chain)
         now = trial.pieces[1]
-        part = trial.part_surface(np.flatnonzero(now == now[first]))[0]
-        if not _is_disk(part):
-            return None, np.inf
-        try:
-            one = self.judge(part, len(self.ladder.levels) == 1)
-        except CoverError:
-            return None, np.inf
-        if one.crossings or one.utilisation > limit:
-            return None, one.utilisation
         judged = [None] * trial.pieces[0]
         for old in range(number):  # the others keep their verdicts under their new numbers
             judged[now[np.argmax(piece == old)]] = met.judged[old]
-        judged[now[first]] = one
-        return Tailored(trial, judged), one.utilisation
+        worst = 0.0
+        for new in dict.fromkeys(now[first] for first in firsts):
+            part = trial.part_surface(np.flatnonzero(now == new))[0]
+            if not _is_disk(part):
+                return None, np.inf
+            try:
+                judged[new] = self.judge(part, fully)
+            except CoverError:
+                return None, np.inf
+            worst = max(worst, judged[new].utilisation)
+            if judged[new].crossings or worst > limit:
+                return None, worst
+        return Tailored(trial, judged), worst
 
 
 def lobes(part, one):
@@ -243,12 +268,16 @@ def _halves(chain):
     return [chain[: middle + 1], chain[middle:]] if len(chain) >= 8 and chain[0] != chain[-1] else []
 
 
-def _whole(key, half, chains):
-    """The key of the chain that `half` is a half of."""
+def _whole(half, chains):
+    """The chain that `half` is a half of, or is."""
     for chain in chains:
         if len(chain) > len(half) and (np.array_equal(chain[: len(half)], half) or np.array_equal(chain[-len(half):], half)):
-            return (min(chain[0], chain[-1]), max(chain[0], chain[-1]), len(chain))
-    return key
+            return chain
+    return half
+
+
+def _key(chain):
+    return min(chain[0], chain[-1]), max(chain[0], chain[-1]), len(chain)
 
 
 def _length(network, chain):

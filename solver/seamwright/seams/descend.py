@@ -36,23 +36,25 @@ def descend(level, fields, thrift, energy="square", weights=None, steps=30, tole
     cost = evaluate(level, cut, thrift, energy, weights, emphasis=emphasis)
     history, taken, small, stuck = [cost.total], 0, 0, 0
     while taken < steps and small < 2 and stuck < 2:
-        fields = redistance(level, cut, count)
+        fields, twins = _fields(level, cut, count)
         cut = cut_by_fields(level.surface, fields)
         cost = evaluate(level, cut, thrift, energy, weights, emphasis=emphasis)
-        gradient = field_gradient(level, cut, fields, cost.slope)
+        gradient = _gradient(level, cut, fields, cost, twins)
         pairs = deque(maxlen=MEMORY)
         for _ in range(min(ROUND, steps - taken)):
             taken += 1
             direction = _two_loop(level, gradient, pairs)
             if (direction * gradient).sum() >= 0:
                 direction, pairs = -_metric(level, gradient), deque(maxlen=MEMORY)
+            if twins is not None:
+                direction = level.symmetry.project(direction, twins)
             direction *= _allowed(level, cut, direction, first=not pairs)
             step = _backtrack(level, fields, direction, gradient, cost, thrift, energy, weights, emphasis)
             if step is None:
                 stuck += 1
                 break
             new_fields, cut, new_cost = step
-            new_gradient = field_gradient(level, cut, new_fields, new_cost.slope)
+            new_gradient = _gradient(level, cut, new_fields, new_cost, twins)
             moved, bent = new_fields - fields, new_gradient - gradient
             if (moved * bent).sum() > 1e-12 * np.linalg.norm(moved) * np.linalg.norm(bent):
                 pairs.append((moved, bent))
@@ -64,6 +66,20 @@ def descend(level, fields, thrift, energy="square", weights=None, steps=30, tole
             if small == 2:
                 break
     return Descent(fields, cut, cost, taken, small >= 2 or stuck >= 2, history)
+
+
+def _fields(level, cut, count):
+    """(fields redistanced and, where the level is to be symmetric, made so; the regions' partners or None)."""
+    fields = redistance(level, cut, count)
+    if level.symmetry is None:
+        return fields, None
+    twins = level.symmetry.partners(cut.labels, count)
+    return level.symmetry.project(fields, twins), twins
+
+
+def _gradient(level, cut, fields, cost, twins):
+    gradient = field_gradient(level, cut, fields, cost.slope)
+    return gradient if twins is None else level.symmetry.pull_back(gradient, twins)
 
 
 def _metric(level, gradient):

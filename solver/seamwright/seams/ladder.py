@@ -7,6 +7,7 @@ from ..form.laplacian import smoothed_defects
 from ..form.measure import total_area
 from .fields import smoothed
 from .level import Level, scaled
+from .symmetric import Symmetry
 
 RUNGS = (500, 1500, 6000)
 GROWTH = 1.7  # a rung is worth building only where the next has this many times its points
@@ -15,10 +16,11 @@ GROWTH = 1.7  # a rung is worth building only where the next has this many times
 class Ladder:
     """levels: coarse to fine, the last is the form; owners: for each level (n,) its point for every point of the form.
 
-    surface: one connected Surface. price (n,) factor on seam length. `factor`: lengths on the levels over lengths in metres.
+    surface: one connected Surface. price (n,) factor on seam length. planes: list of Planes of symmetry that networks are to
+    keep, at right angles. `factor`: lengths on the levels over lengths in metres.
     """
 
-    def __init__(self, surface, price=None, rungs=RUNGS):
+    def __init__(self, surface, price=None, planes=(), rungs=RUNGS):
         fine, self.factor = scaled(surface, total_area(surface))
         n = len(fine.points)
         price = np.ones(n) if price is None else price
@@ -28,10 +30,11 @@ class Ladder:
             rung = coarsen(fine, count) if count * GROWTH < n else None
             if rung is not None:
                 size = np.bincount(rung.owner, minlength=len(rung.surface.points))
-                level = Level(_to_area(rung.surface), rung.gather(load), rung.gather(price) / size)
-                self.levels.append(level)
+                coarse, more = scaled(rung.surface, total_area(rung.surface))
+                symmetry = _symmetry(coarse, planes, self.factor * more)
+                self.levels.append(Level(coarse, rung.gather(load), rung.gather(price) / size, symmetry))
                 self.owners.append(rung.owner)
-        self.levels.append(Level(fine, load, price))
+        self.levels.append(Level(fine, load, price, _symmetry(fine, planes, self.factor)))
         self.owners.append(np.arange(n))
 
     def lift(self, fields, source, target):
@@ -46,5 +49,5 @@ class Ladder:
         return smoothed(level, carried, smooth)
 
 
-def _to_area(surface):
-    return scaled(surface, total_area(surface))[0]
+def _symmetry(surface, planes, factor):
+    return Symmetry(surface, [plane.scaled(factor) for plane in planes]) if len(planes) else None

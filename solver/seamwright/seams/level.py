@@ -16,10 +16,11 @@ FORM_AREA = 4 * np.pi
 
 
 class Level:
-    """surface: Surface at scale (area near 4 pi). load (n,) curvature, radians. price (n,) factor on the seam's length."""
+    """surface: Surface at scale (area near 4 pi). load (n,) curvature, radians. price (n,) factor on the seam's length.
+    symmetry: the Symmetry that networks here keep, or None."""
 
-    def __init__(self, surface, load, price=None):
-        self.surface = surface
+    def __init__(self, surface, load, price=None, symmetry=None):
+        self.surface, self.symmetry = surface, symmetry
         self.load = np.asarray(load, dtype=float)
         self.price = np.ones(len(surface.points)) if price is None else np.asarray(price, dtype=float)
         self.areas = areas(surface)

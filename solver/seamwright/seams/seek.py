@@ -8,9 +8,10 @@ from .cut import recut
 from .descend import descend
 from .energy import evaluate
 from .fields import from_labels, redistance
+from .merging import merges
 from .starts import starts, tidied
-from .topology import merged, regions
 
+REPAIRS = 3  # flows, as long as regions had to be put right after the last
 PIECE_PRICE = 0.02  # fixed price of a piece, or specks pay
 KEPT = (3, 2, 1)  # networks carried on from the first rungs; one after that
 STEPS = (24, 16, 10, 8)  # steps by rung, coarse to fine; the form itself takes the last
@@ -29,9 +30,15 @@ class Found:
 
 def flow(level, fields, thrift, energy="square", weights=None, steps=20):
     """Flow, then put the topology right (disks, no specks). Returns Found, its fields matching its cut."""
-    end = descend(level, fields, thrift, energy, weights, steps)
-    labels = tidied(level, end.cut.labels)
-    return settle(level, end.cut, labels, thrift, energy, None if labels.max() + 1 != fields.shape[1] else weights, end.converged)
+    for _ in range(REPAIRS):
+        end = descend(level, fields, thrift, energy, weights, steps)
+        labels = tidied(level, end.cut.labels)
+        same = labels.max() + 1 == fields.shape[1]
+        found = settle(level, end.cut, labels, thrift, energy, weights if same else None, end.converged)
+        if np.array_equal(labels, end.cut.labels):
+            break
+        fields, weights = found.fields, None
+    return found
 
 
 def settle(level, cut, labels, thrift, energy="square", weights=None, converged=True):
@@ -47,10 +54,8 @@ def simplify(level, found, thrift, energy="square", pieces=None):
     while True:
         labels = found.cut.labels
         count = int(labels.max()) + 1
-        tables = regions(level, labels)
         trials = [
-            settle(level, found.cut, merged(labels, i, j), thrift, energy)
-            for i, j in tables.pairs[tables.pair_euler == 1]
+            settle(level, found.cut, trial, thrift, energy) for trial in merges(level, labels)
         ] if count > max(2 if level.free.all() else 1, pieces or 1) else []
         best = min(trials, key=lambda trial: trial.score, default=None)
         if best is None or (best.score >= found.score and (pieces is None or count <= pieces)):

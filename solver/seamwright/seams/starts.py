@@ -2,6 +2,7 @@
 
 import numpy as np
 
+from .symmetric import symmetrised
 from .topology import absorb, make_disks, voronoi
 
 CELLS = (2, 3, 4, 5, 7, 10)
@@ -16,10 +17,14 @@ def starts(level, cells=CELLS):
     sides = [(off @ axis > 0).astype(np.int64) for axis in axes]
     raw = [*sides, 2 * sides[0] + sides[1], 2 * sides[0] + sides[2], 2 * sides[1] + sides[2]]
     raw += [voronoi(level, count) for count in cells if count * 4 < len(points)]
-    return [tidied(level, labels) for labels in raw]
+    if level.symmetry is not None:
+        raw += [mirror.right.astype(np.int64) for mirror in level.symmetry.mirrors]
+    tidy = [tidied(level, labels) for labels in raw]
+    return list({labels.tobytes(): labels for labels in tidy}.values())  # some of them are the same by now
 
 
 def tidied(level, labels):
-    """Labels whose regions are connected disks of a sensible size."""
+    """Labels whose regions are connected disks of a sensible size, symmetric where the level is to be."""
     labels = make_disks(level, labels)
-    return make_disks(level, absorb(level, labels, SPECK * level.mass.sum()))
+    labels = make_disks(level, absorb(level, labels, SPECK * level.mass.sum()))
+    return labels if level.symmetry is None else symmetrised(level, level.symmetry, labels)

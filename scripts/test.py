@@ -20,7 +20,9 @@ def main(arguments):
     # a path among the arguments is relative to the root; without one, all of tests/
     named = any(not word.startswith("-") and (setup.ROOT / word.split("::")[0]).exists() for word in arguments)
     where = [] if named else ["tests"]
-    tests = subprocess.call([sys.executable, "-m", "pytest", "-rs", *where, *arguments], **here)
+    # a test that takes minutes shows where it is; -rs says what was skipped and why
+    options = ["-rs", "-o", "faulthandler_timeout=300"]
+    tests = subprocess.call([sys.executable, "-m", "pytest", *options, *where, *arguments], **here)
     return lint or tests
 
 

@@ -2,13 +2,13 @@
 
 import numpy as np
 import pytest
-from forms import cap
+from forms import cap, split_quads
 from seamwright.fit.goods import Goods, get, goods
 from seamwright.fit.grain import lay_on_grain, pull
 from seamwright.fit.judge import judge
 from seamwright.fit.measure import area_quantile, areas, stretches, utilisation, warp_weft_shear
 from seamwright.fit.shape import relax_for_goods
-from seamwright.flat import flatten
+from seamwright.flat import flatten, overlaps
 from seamwright.flat.flatten import as_complex, as_points
 from seamwright.flat.rest import Rest
 from seamwright.form.surface import Surface
@@ -115,3 +115,20 @@ def test_the_judge_goes_on_from_what_is_known():
         assert further.utilisation == pytest.approx(full.utilisation, rel=0.03)
         nothing = judge(surface, get(name), 0.5, stages=None, start=full.flat, done=stages)
         assert nothing.utilisation == pytest.approx(full.utilisation, rel=1e-3)
+
+
+def test_a_piece_that_would_lie_over_itself_is_kept_apart_where_the_goods_take_it():
+    # a cone of more than a full turn, slit from its rim to near its tip: exact in the flat, but over itself
+    radius, angle = np.meshgrid(np.linspace(0.05, 1, 10), np.linspace(0, 2 * np.pi, 61), indexing="ij")
+    points = np.stack([radius * np.cos(angle), radius * np.sin(angle), 0.3 * radius * np.sin(2 * angle)], axis=-1)
+    index = np.arange(radius.size).reshape(radius.shape)
+    quads = np.stack([index[:-1, :-1], index[1:, :-1], index[1:, 1:], index[:-1, 1:]], axis=-1).reshape(-1, 4)
+    surface = Surface(points.reshape(-1, 3), split_quads(quads))
+    outline = surface.boundary_loops[0]
+    assert overlaps(flatten(surface).flat, outline)
+    for stages in (1, None):
+        kept = judge(surface, get("jersey"), stages=stages)
+        assert kept.crossings == [] == overlaps(kept.flat, outline)
+        assert 0.05 < kept.utilisation <= 1
+    told = judge(surface, get("card"), stages=None)
+    assert told.crossings and told.utilisation < 0.01

@@ -4,9 +4,13 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from ..flat import flatten, overlaps
+from ..flat import flatten, overlaps, untangled
+from ..flat.fence import Fence
 from .measure import area_quantile, areas, utilisation, warp_weft_shear
 from .shape import relax_for_goods
+
+SENSELESS = 2.0
+"""Use of the limits from which a piece needs a split anyway: then its crossings say where."""
 
 
 @dataclass
@@ -27,10 +31,19 @@ def judge(surface, goods, comfort=0.0, grain=None, stages=1, start=None, done=0)
     """Flatten a disk, shape it for the goods with the first `stages` exponents (None: all), and measure the outcome.
 
     A piece that fits by this fits: more shaping only helps. Stops as soon as it does. Begins from `start`, a flip-free flat
-    (n, 2) that has been through the first `done` exponents, where that is known.
+    (n, 2) that has been through the first `done` exponents, where that is known. A piece that then lies over itself is
+    shaped again within a fence, and left as it was only where that asks more than SENSELESS of the limits.
     """
-    flat = flatten(surface).flat if start is None else start
-    flat = relax_for_goods(surface, flat, goods, comfort, grain, stages, 1.0, done).flat
-    each = utilisation(warp_weft_shear(surface.points, surface.triangles, flat), goods, comfort)
-    share = area_quantile(each, areas(surface.points, surface.triangles))
-    return Judged(share, each, flat, overlaps(flat, surface.boundary_loops[0]))
+    outline = surface.boundary_loops[0]
+
+    def judged(flat, done, fence=None):
+        flat = relax_for_goods(surface, flat, goods, comfort, grain, stages, 1.0, done, fence).flat
+        each = utilisation(warp_weft_shear(surface.points, surface.triangles, flat), goods, comfort)
+        return Judged(area_quantile(each, areas(surface.points, surface.triangles)), each, flat, overlaps(flat, outline))
+
+    free = judged(flatten(surface).flat if start is None else start, done)
+    if not free.crossings or free.utilisation > SENSELESS:
+        return free
+    apart = untangled(surface)
+    fenced = free if apart is None else judged(apart, 0, Fence(surface.points, [outline]))
+    return free if fenced.crossings or fenced.utilisation > SENSELESS else fenced

@@ -4,6 +4,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from ..flat.fence import Fenced
 from ..flat.flatten import as_complex, as_points
 from ..flat.rest import Rest
 from ..flat.state import State, dot
@@ -31,13 +32,13 @@ class Shaped:
     steps: int
 
 
-def relax_for_goods(surface, flat, goods, comfort=0.0, wanted=None, stages=None, enough=0.0, done=0):
+def relax_for_goods(surface, flat, goods, comfort=0.0, wanted=None, stages=None, enough=0.0, done=0, fence=None):
     """Shape a flip-free flat (n, 2) so that it uses least of the goods' limits at a comfort. Returns Shaped.
 
     The exponent k of the energy rises (a p-norm that tends to the maximum), each time with the limits measured in the
     utilisation reached so far; the best piece on the way is kept. The first `stages` exponents only, if given, without
     those already `done`; no further once the utilisation is `enough`. The grain may turn, unless a `wanted` direction (3,)
-    on the form is held along +y.
+    on the form is held along +y. A `fence` (flat.fence) keeps a boundary that does not cross itself from doing so.
     """
     rest = Rest(surface)
     held = None if wanted is None else pull(rest, wanted)[None].astype(complex)
@@ -52,7 +53,8 @@ def relax_for_goods(surface, flat, goods, comfort=0.0, wanted=None, stages=None,
     for exponent in exponents[done:stages]:
         if best[0] <= max(enough, 1e-6):
             break
-        state = State(rest, GoodsEnergy(goods, comfort, exponent, used(now)), now)
+        energy = GoodsEnergy(goods, comfort, exponent, used(now))
+        state = Fenced(rest, energy, now, fence) if fence else State(rest, energy, now)
         taken, damping = settle(state, lambda damping, state=state: state.newton_direction(damping, held, np.zeros(1)),
                                 STEPS // len(exponents), damping)
         now, steps = resize(rest, state.flat, goods, comfort), steps + taken

@@ -2,5 +2,6 @@
 
 from .flatten import Flattening, flatten
 from .overlap import overlaps
+from .untangle import untangled
 
-__all__ = ["Flattening", "flatten", "overlaps"]
+__all__ = ["Flattening", "flatten", "overlaps", "untangled"]

@@ -25,7 +25,7 @@ def assemble(form, goods, wishes, tailored, notes):
         by_name = dict(zip(names, pieces[-len(names):], strict=True))
         seams += [_seam(joint, network, names, by_name) for joint in joints(network)]
     _name(seams)
-    notes += _strain(pieces, goods)
+    notes += _strain(pieces, goods) + _ease(seams, goods)
     from . import __version__
 
     return pt.Pattern(form, goods, pieces, seams, sewing_order(seams), notes, {"comfort": wishes.comfort}, __version__)
@@ -43,6 +43,19 @@ def _strain(pieces, goods):
     return [
         f"{head} strained: {100 * worst.beyond:.1f} % of {worst.name} is beyond what {goods.name} takes, most near "
         f"({x:.0f}, {y:.0f}, {z:.0f}) mm. Goods that take more would help, or a rounder form there, or a seam of your own."
+    ]
+
+
+def _ease(seams, goods):
+    """List with a sentence on the seams whose sides differ by more than the goods can be sewn with, or none."""
+    most = goods.mismatch[1]
+    uneven = sorted((seam for seam in seams if abs(seam.ease) > most), key=lambda seam: -abs(seam.ease))
+    if not uneven:
+        return []
+    named = ", ".join(seam.name for seam in uneven[:8]) + (", ..." if len(uneven) > 8 else "")
+    return [
+        f"The sides of {len(uneven)} of {len(seams)} seams ({named}) differ by more than the {100 * most:g} % that {goods.name} "
+        f"can be eased, {uneven[0].name} by {100 * abs(uneven[0].ease):.1f} %: goods that take more, or more seams, would help."
     ]
 
 

@@ -13,6 +13,7 @@ from .form.surface import Surface
 from .pattern import Pattern
 from .seams.ladder import Ladder
 from .seams.network import cut_through
+from .seams.opened import opened
 from .seams.prices import seam_prices
 from .seams.route import cut_along
 from .seams.seek import seek
@@ -74,7 +75,7 @@ def _cover_part(form, part, wishes, goods, tell):
         level = ladder.levels[-1]
         if wishes.route == "edges":
             return cut_along(level, cut, part.polygon, part.diagonal, metric)
-        return cut_through(level, cut, metric)
+        return opened(cut_through(level, cut, metric))
 
     tailor = Tailor(ladder, explicit, goods, wishes.comfort, wishes.grain)
     if wishes.thrift is None and wishes.pieces is None and wishes.start is None:
@@ -84,6 +85,7 @@ def _cover_part(form, part, wishes, goods, tell):
         result = tailor.real(len(ladder.levels) - 1, found.cut, fully=True)
         if wishes.pieces is None:
             result = tailor.dropped(result)[0]
+        result = tailor.sewn(tailor.untangled(result))
     result.network = replace(result.network, source=part.triangles[result.network.source])
     return result
 

@@ -16,6 +16,7 @@ from ..seams.twins import twin_stretch
 from .foresee import reach
 from .judge import judge
 from .search import MOST_PIECES, Search
+from .sewn import sewn
 
 FINE_ENOUGH = 1200  # points of the rung on which the foresight learns: coarser ones strain where the form does not
 FEW_CHAINS = 12  # of seam, up to which the form itself is asked what can be dropped
@@ -90,14 +91,18 @@ class Tailor:
         met = self.confirmed(top, state, spare)
         if len(met.network.chains) <= FEW_CHAINS:  # what the coarse rung thought needed, the form itself may not
             met = self.dropped(met, ENOUGH, fully=True, halves=False)[0]
-        return met
+        return self.sewn(met)
+
+    def sewn(self, met):
+        """The Tailored with the two sides of its seams matched, where the goods allow it."""
+        return Tailored(met.network, sewn(met.network, met.judged, self.goods, self.comfort, self.grain))
 
     def real(self, rung, cut, spare=(), fully=False):
         """The Tailored of a cut, every piece flattened for the goods; spare: places (3, 3) of stretches to leave out."""
         if rung == len(self.ladder.levels) - 1:
             network = self.explicit(cut)
         else:
-            network = cut_through(self.ladder.levels[rung], cut, 1 / self.ladder.factor)
+            network = opened(cut_through(self.ladder.levels[rung], cut, 1 / self.ladder.factor))
         for places in spare:
             network = _without_nearest(network, places)
         return Tailored(network, [self.judge(network.piece_surface(k)[0], fully) for k in range(network.pieces[0])])

@@ -1,0 +1,33 @@
+"""Make what is sewn together equally long, where the goods allow it: all pieces shaped together, then judged anew."""
+
+from dataclasses import replace
+
+import numpy as np
+
+from ..flat import overlaps
+from ..pattern import STRAINED
+from ..seams.sides import joints
+from .match import match
+from .measure import measure, utilisation, warp_weft_shear
+
+
+def sewn(network, judged, goods, comfort, grain=None):
+    """List of Judged, one a piece, with both sides of every seam matched; as they were where that would strain a piece
+    beyond the goods' hard limits (or further beyond) or lay one over itself. Comfort gives way to seams that go together."""
+    seams = [(joint.left.piece, joint.left.points, joint.right.piece, joint.right.points)
+             for joint in joints(network) if joint.right is not None]
+    if not seams:
+        return judged
+    surfaces = [network.piece_surface(piece)[0] for piece in range(network.pieces[0])]
+    matched = match(surfaces, [one.flat for one in judged], seams, goods, comfort, grain)
+    new = []
+    for surface, flat, use, old in zip(surfaces, matched.flats, matched.utilisation, judged, strict=True):
+        crossings = overlaps(flat, surface.boundary_loops[0])
+        if not np.isfinite(flat).all() or (crossings and not old.crossings):
+            return judged
+        now, before = (measure(surface.points, surface.triangles, one, goods, comfort) for one in (flat, old.flat))
+        if now.fit == STRAINED and now.beyond > before.beyond:
+            return judged
+        each = utilisation(warp_weft_shear(surface.points, surface.triangles, flat), goods, comfort)
+        new.append(replace(old, utilisation=use, each=each, flat=flat, crossings=crossings))
+    return new

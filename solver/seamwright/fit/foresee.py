@@ -6,6 +6,9 @@ the shear about 2.3 of it. A compass for the search, never the verdict.
 
 import numpy as np
 
+from ..form.laplacian import Factor, cotangent_laplacian
+from ..form.measure import angle_defects, open_points, vertex_areas
+
 QUANTILE = 0.995  # share of a piece's area that must keep the limits
 STRAIN_SHARE = 0.73
 SHEAR_SHARE = 1.17
@@ -21,6 +24,22 @@ def reach(goods, comfort):
 def largest(level, labels, u):
     """(K,) the QUANTILE by area of |u| in every region."""
     return area_quantile(np.abs(u), level.mass, labels, int(labels.max()) + 1)
+
+
+def piece_log_scale(surface):
+    """(n,) log scale u of the least-stretch conformal flattening of one piece: Laplace u = K inside, 0 on its edge."""
+    inner = ~open_points(surface)
+    u = np.zeros(len(surface.points))
+    if inner.any():
+        laplacian = cotangent_laplacian(surface)[inner][:, inner]
+        u[inner] = Factor(laplacian).solve(angle_defects(surface)[inner])
+    return u
+
+
+def piece_use(surface, reach):
+    """The use of the limits foreseen for one piece; `reach` is the u that uses them fully."""
+    u = np.abs(piece_log_scale(surface))
+    return area_quantile(u, vertex_areas(surface), np.zeros(len(u), dtype=np.int64), 1)[0] / reach
 
 
 def area_quantile(values, area, group, count):

@@ -13,7 +13,7 @@ from ..form.measure import areas
 from ..seams.network import cut_through
 from ..seams.opened import edges_in, halves_border, opened
 from ..seams.twins import twin_stretch
-from .foresee import reach
+from .foresee import piece_use, reach
 from .judge import judge
 from .search import MOST_PIECES, Search
 from .sewn import sewn
@@ -29,8 +29,9 @@ CONFIRMATIONS = 3  # most flattenings of the form itself, with a lesson between
 SHAPED, SHAPED_WOVEN = 0.93, 0.65  # full shaping brings the use down to about this share of what the first stage reaches
 DAMPED = 0.4  # power with which the spread of the real use within a piece is taken over
 MARGIN = 0.97  # use under which a seam is dropped on the learning rung: the form itself may ask a little more
+FAR = 4.0  # use after the first stage of shaping that more shaping cannot mend
 MOST_SPLITS = 12  # of pieces that still lie over themselves at the end
-HOPELESS = 2.0  # use without a chain above which half of it is not tried either
+HOPELESS = 1.6  # use without a chain above which half of it is not tried either, and foreseen, above which none is
 NEAR = 0.15  # a chain on another rung is the same one when its middle is this near, as a share of the form's size
 
 
@@ -115,7 +116,7 @@ class Tailor:
         key = (fully, surface.points.tobytes(), surface.triangles.tobytes())
         if key not in self.known:
             one = judge(surface, self.goods, self.comfort, self.grain, stages=1)
-            if fully and ENOUGH < one.utilisation < HOPELESS / SHAPED_WOVEN:
+            if fully and ENOUGH < one.utilisation < FAR:
                 one = judge(surface, self.goods, self.comfort, self.grain, stages=None)
             share = 1.0 if fully else SHAPED if self.goods.shear is None else SHAPED_WOVEN
             self.known[key] = replace(one, utilisation=one.utilisation * share)
@@ -205,6 +206,7 @@ class Tailor:
         the limit and not over itself; then halves of chains, so that darts are left. On a symmetric form a chain goes
         together with its mirror image. What was left out: for each the places (3, 3) of its begin, middle and end."""
         refused, spare = {}, []
+        self.typical = self.foresight(met)
         while True:
             chains = sorted(met.network.chains, key=lambda chain: -_length(met.network, chain))
             for chain in chains + [half for whole in chains if halves for half in _halves(whole)]:
@@ -223,6 +225,12 @@ class Tailor:
                     break
             else:
                 return met, spare
+
+    def foresight(self, met):
+        """The real use over the foreseen one, low among the pieces: what is foreseen at that rate will hardly be less."""
+        rates = [one.utilisation / max(piece_use(met.network.piece_surface(piece)[0], self.search.reach), 1e-9)
+                 for piece, one in enumerate(met.judged)]
+        return float(np.quantile(rates, 0.25))
 
     def with_images(self, network, chain):
         """The chain, or half of one, and its mirror images, each once."""
@@ -248,6 +256,8 @@ class Tailor:
         for new in dict.fromkeys(now[first] for first in firsts):
             part = trial.part_surface(np.flatnonzero(now == new))[0]
             if not _is_disk(part):
+                return None, np.inf
+            if self.typical * piece_use(part, self.search.reach) > HOPELESS:
                 return None, np.inf
             try:
                 judged[new] = self.judge(part, fully)

@@ -40,21 +40,22 @@ def cover(scene_file, out, workers):
     Raises RuntimeError where the command ends without a summary.
     """
     command = [sys.executable, "-c", "import sys; from addon.cli import main; sys.exit(main(sys.argv[1:]))",
-               "cover", str(scene_file), "--out", str(out), "--workers", str(workers), "--json",
+               "cover", str(scene_file), "--out", str(out), "--workers", str(workers),
                "--save", str(out / "harbour covered.blend")]
-    run = subprocess.Popen(command, stdout=subprocess.PIPE, stderr=subprocess.PIPE, text=True, encoding="utf-8")
+    summary = out / "summary.json"
+    summary.unlink(missing_ok=True)
+    run = subprocess.Popen(command, stdout=subprocess.DEVNULL, stderr=subprocess.PIPE, text=True, encoding="utf-8")
     first, last = {}, {}
     for line in run.stderr:
         print(line, end="", file=sys.stderr, flush=True)
         name = line.split(":")[0]
         first.setdefault(name, time.monotonic())
         last[name] = time.monotonic()
-    summary = run.stdout.read()
     status = run.wait()
-    if not summary:
+    if not summary.exists():
         raise RuntimeError(f"The command ended with status {status} and no summary; its messages are above.")
     seconds = {name: last[name] - first[name] for name in first}
-    return status, [_row(form, out, seconds) for form in json.loads(summary)["forms"]]
+    return status, [_row(form, out, seconds) for form in json.loads(summary.read_text(encoding="utf-8"))["forms"]]
 
 
 def _row(form, out, seconds):

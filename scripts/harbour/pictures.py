@@ -32,7 +32,7 @@ def draw(out, folders, workers=2):
 
 
 def _start(out, words):
-    command = [sys.executable, "-m", "harbour.pictures", str(out), *words]
+    command = [sys.executable, "-m", "harbour.pictures", str(out.absolute()), *words]
     return subprocess.run(command, cwd=HERE, stdout=subprocess.PIPE, stderr=subprocess.STDOUT, text=True)
 
 

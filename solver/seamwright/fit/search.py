@@ -199,6 +199,8 @@ class Search:
                 if trial.max() + 1 < least or trial.tobytes() in refused:
                     continue
                 grown = _grown(labels, trial)
+                if state.use[np.unique(labels[np.isin(trial, grown)])].max() > ROOM:
+                    continue
                 cut = recut(level.surface, state.cut, trial)
                 cost = evaluate(level, cut, 1.0, "square", gradient=False)
                 if self._use(rung, trial, cost.u, state.strictness)[0][grown].max() <= ROOM:

@@ -124,12 +124,13 @@ class Tailor:
 
     def schooled(self, rung, state, lessons):
         """(State, Tailored) best met while the foresight learns from real flattening, with at most so many lessons."""
-        best = None
+        best, vain = None, 0
         for lesson in range(lessons):
             met = self.real(rung, state.cut)
-            if best is None or met.rank < best[1].rank:
-                best = (state, met)
-            if (met.fits and met.use > NEARLY) or lesson == lessons - 1 or len(met.judged) >= MOST_PIECES:
+            better = best is None or met.rank < best[1].rank
+            best, vain = ((state, met), 0) if better else (best, vain + 1)
+            done = (met.fits and met.use > NEARLY) or vain == 2 or len(met.judged) >= MOST_PIECES
+            if done or lesson == lessons - 1:
                 return best
             state = self.taught(rung, state, met, ROUNDS)
 
@@ -146,13 +147,17 @@ class Tailor:
                 best = met
             if best.fits or turn == CONFIRMATIONS - 1 or len(met.judged) >= MOST_PIECES:
                 return self.untangled(best)
-            state = self.taught(rung, state, met, 2)
+            state = self.taught(rung, state, met, 2, insist=turn > 0)
 
-    def taught(self, rung, state, met, rounds):
+    def taught(self, rung, state, met, rounds, insist=False):
         """The State after what `met` teaches: weights by the real use; pieces that lie over themselves split, where they do."""
         own = self.piece_of_region(rung, state, met)
         use = np.array([one.utilisation for one in met.judged])
         state = self.search.learnt(rung, state, use[own], self.spread(rung, met))
+        if insist:  # weights alone did not do it: a seam through the worst place
+            state.peaks = self.worst(rung, met)[own]
+            state = self.search.split(rung, state, np.flatnonzero(use[own] > ENOUGH))
+            return self.search.rounds(rung, state, rounds)
         crossed = [region for region, piece in enumerate(own) if met.judged[piece].crossings]
         parts = [met.network.piece_surface(own[region])[0] for region in crossed]
         places = [part.points[lobes(part, met.judged[own[region]])] * self.ladder.factor
@@ -191,6 +196,13 @@ class Tailor:
         n = len(surface.points)
         mean = np.bincount(corners, area * np.repeat(each, 3), minlength=n) / np.bincount(corners, area, minlength=n)
         return mean**DAMPED
+
+    def worst(self, rung, met):
+        """(P,) the level's point at the worst place of every piece."""
+        triangles = self.ladder.levels[rung].surface.triangles[met.network.source]
+        number, piece = met.network.pieces
+        at = [np.flatnonzero(piece == index)[one.each.argmax()] for index, one in enumerate(met.judged)]
+        return triangles[at, 0]
 
     def piece_of_region(self, rung, state, met):
         """(K,) the piece that most of every region's triangle corners lie in."""

@@ -25,7 +25,7 @@ ENOUGH = 1.0  # real use of the limits that counts as fitting
 NEARLY = 0.93  # a network that fits and has a piece this near its limits is not worth another lesson
 LESSONS = (3, 5)  # most lessons on the learning rung: for every candidate, then for the best
 ROUNDS = 5  # rounds after each
-CONFIRMATIONS = 3  # most flattenings of the form itself, with a lesson between
+CONFIRMATIONS = 4  # most flattenings of the form itself, with a lesson between
 SHAPED, SHAPED_WOVEN = 0.93, 0.65  # full shaping brings the use down to about this share of what the first stage reaches
 DAMPED = 0.4  # power with which the spread of the real use within a piece is taken over
 MARGIN = 0.97  # use under which a seam is dropped on the learning rung: the form itself may ask a little more
@@ -147,7 +147,7 @@ class Tailor:
                 best = met
             if best.fits or turn == CONFIRMATIONS - 1 or len(met.judged) >= MOST_PIECES:
                 return self.untangled(best)
-            state = self.taught(rung, state, met, 2, insist=turn > 0)
+            state = self.taught(rung, state, met, 2, insist=turn == CONFIRMATIONS - 2)
 
     def taught(self, rung, state, met, rounds, insist=False):
         """The State after what `met` teaches: weights by the real use; pieces that lie over themselves split, where they do."""

@@ -1,6 +1,7 @@
 """Everything the maker asks for beside the form."""
 
 from dataclasses import dataclass
+from math import isfinite
 from numbers import Real
 
 import numpy as np
@@ -11,6 +12,7 @@ ROUTES = ("through", "edges")
 ENERGIES = ("square", "dirichlet", "hencky")
 SYMMETRIES = ("auto", "none")
 THICKNESS_SIDES = ("none", "outside", "inside")
+SQUARE = 0.01  # largest cosine between planes that count as at right angles
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -19,10 +21,12 @@ class Wishes:
 
     goods: a name or a Goods. comfort: 0 (hard limits) to 1 (comfortable ones). thrift: None finds the cheapest network
     that fits, a number is the price of a metre of seam on a form scaled to area 4 pi. energy: "square", "dirichlet",
-    "hencky" or (j, dj/du). symmetry: "auto", "none" or a list of (point, normal). keep_clear: (n,) weights of the
-    caller's points, 0 free, inf never. held, shut: (k, 2) point pairs that are, or may not be, seams. start: a Pattern
-    or (m,) face labels to improve. only: (m,) bool. pieces: a wished number. route: "through" faces or along "edges".
-    grain: a direction on the form. thickness_side: which side of thick goods the form's surface is.
+    "hencky" or (j, dj/du), functions of an array; it counts where thrift, pieces or start is given. symmetry: "auto",
+    "none" or a list of planes (point, normal), metres, at right angles. keep_clear: (n,) weights of the caller's points, 0
+    free, 1 twice the price, inf never. held, shut: (k, 2) point pairs that are, or may not be, seams. start: a Pattern of
+    the form or (m,) face labels, improved: with thrift the total never rises, without it neither length nor distortion does.
+    only: (m,) bool. pieces: a wished number. route: "through" faces or along "edges". grain: a direction on the form.
+    thickness_side: which side of thick goods the form's surface is. seed: another one tries other coarse levels.
     """
 
     goods: object = "canvas"
@@ -49,24 +53,83 @@ class Wishes:
         _choice("thickness_side", self.thickness_side, THICKNESS_SIDES)
         if isinstance(self.energy, str):
             _choice("energy", self.energy, ENERGIES)
-        elif not (isinstance(self.energy, tuple | list) and len(self.energy) == 2 and all(map(callable, self.energy))):
-            raise WishError("energy: give a name or a pair of functions (j, dj/du).")
+        else:
+            _check_density(self.energy)
         if isinstance(self.symmetry, str):
             _choice("symmetry", self.symmetry, SYMMETRIES)
-        if self.pieces is not None and (int(self.pieces) != self.pieces or self.pieces < 1):
-            raise WishError(f"pieces: {self.pieces!r} is not a whole number of at least 1.")
+        else:
+            _check_planes(self.symmetry)
+        if self.pieces is not None:
+            _whole("pieces", self.pieces, 1)
+        _whole("seed", self.seed, 0)
+        if self.grain is not None:
+            direction = _numbers("grain", self.grain, "a direction of three numbers, such as (0, 0, 1)")
+            if direction.shape != (3,) or not np.isfinite(direction).all() or not direction.any():
+                raise WishError(f"grain: {self.grain!r} is not a direction of three numbers, such as (0, 0, 1).")
         if self.keep_clear is not None:
-            weights = np.asarray(self.keep_clear, dtype=float)
-            if np.isnan(weights).any() or (weights < 0).any():
+            weights = _numbers("keep_clear", self.keep_clear, "a weight for each point")
+            if not (weights >= 0).all():
                 bad = np.flatnonzero(~(weights >= 0))[:5]
                 raise WishError(f"keep_clear: weights must be 0 or more; points {bad.tolist()} are not. Paint them again.")
 
 
 def _number(name, value, low, high):
-    if not isinstance(value, Real) or not low <= value <= high:
+    if isinstance(value, bool) or not isinstance(value, Real) or not low <= value <= high:
         raise WishError(f"{name}: {value!r} is not a number from {low:g} to {high:g}.")
 
 
+def _whole(name, value, least):
+    if isinstance(value, bool) or not isinstance(value, Real) or not isfinite(value) or int(value) != value or value < least:
+        raise WishError(f"{name}: {value!r} is not a whole number of at least {least}.")
+
+
+def _numbers(name, value, wanted):
+    """The value as an array of floats."""
+    try:
+        return np.asarray(value, dtype=float)
+    except (TypeError, ValueError) as error:
+        raise WishError(f"{name}: {value!r:.60} is not {wanted}.") from error
+
+
 def _choice(name, value, allowed):
-    if value not in allowed:
+    if not isinstance(value, str) or value not in allowed:
         raise WishError(f"{name}: {value!r} is not one of {', '.join(allowed)}.")
+
+
+def _check_density(pair):
+    """Refuse what is no pair of functions of arrays, the second the slope of the first."""
+    if not (isinstance(pair, tuple | list) and len(pair) == 2 and all(map(callable, pair))):
+        raise WishError("energy: give a name or a pair of functions (j, dj/du).")
+    u = np.linspace(-0.9, 0.9, 12)
+    for name, function in zip(("j", "dj/du"), pair, strict=True):
+        try:
+            with np.errstate(all="ignore"):
+                values = np.asarray(function(u), dtype=float)
+        except Exception as error:
+            raise WishError(f"energy: {name} fails on an array ({error}). It takes u (n,) and gives (n,).") from error
+        if values.shape != u.shape:
+            raise WishError(f"energy: {name} gives {values.size} numbers for {u.size}. It takes u (n,) and gives (n,).")
+        if not np.isfinite(values).all():
+            raise WishError(f"energy: {name} is not finite at u = {u[~np.isfinite(values)][0]:.2g}.")
+    j, slope = pair
+    step = 1e-5
+    by_difference = (np.asarray(j(u + step), dtype=float) - np.asarray(j(u - step), dtype=float)) / (2 * step)
+    off = np.abs(by_difference - slope(u))
+    if off.max() > 1e-3 * max(1.0, np.abs(by_difference).max()):
+        raise WishError(f"energy: the second function is not the slope of the first at u = {u[off.argmax()]:.2g}.")
+
+
+def _check_planes(planes):
+    """Refuse what is no list of planes (point, normal) at right angles to each other."""
+    wanted = "symmetry: give \"auto\", \"none\" or a list of planes (point, normal), three numbers each."
+    try:
+        found = np.array([(point, normal) for point, normal in planes], dtype=float)
+    except (TypeError, ValueError) as error:
+        raise WishError(wanted) from error
+    if found.shape[1:] != (2, 3) or not np.isfinite(found).all() or not found[:, 1].any(axis=1).all():
+        raise WishError(wanted)
+    normals = found[:, 1] / np.linalg.norm(found[:, 1], axis=1, keepdims=True)
+    cosines = np.abs(np.triu(normals @ normals.T, 1))
+    if cosines.max() > SQUARE:
+        i, j = np.unravel_index(cosines.argmax(), cosines.shape)
+        raise WishError(f"symmetry: planes {i} and {j} are not at right angles. Give only planes that are.")

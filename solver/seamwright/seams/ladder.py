@@ -17,17 +17,17 @@ class Ladder:
     """levels: coarse to fine, the last is the form; owners: for each level (n,) its point for every point of the form.
 
     surface: one connected Surface. price (n,) factor on seam length. planes: list of Planes of symmetry that networks are to
-    keep, at right angles. `factor`: lengths on the levels over lengths in metres.
+    keep, at right angles. seed: of the coarse levels. `factor`: lengths on the levels over lengths in metres.
     """
 
-    def __init__(self, surface, price=None, planes=(), rungs=RUNGS):
+    def __init__(self, surface, price=None, planes=(), rungs=RUNGS, seed=0):
         fine, self.factor = scaled(surface, total_area(surface))
         n = len(fine.points)
         price = np.ones(n) if price is None else price
         load = smoothed_defects(fine)
         self.levels, self.owners = [], []
         for count in rungs:
-            rung = coarsen(fine, count) if count * GROWTH < n else None
+            rung = coarsen(fine, count, seed) if count * GROWTH < n else None
             if rung is not None:
                 size = np.bincount(rung.owner, minlength=len(rung.surface.points))
                 coarse, more = scaled(rung.surface, total_area(rung.surface))

@@ -6,29 +6,46 @@ import numpy as np
 
 from . import pattern as pt
 from .fit.measure import measure
+from .naming import named
 from .seams.sides import joints
 from .sheets.order import sewing_order
 
-LETTERS = "ABCDEFGHJKLMNPQRSTUVWXYZ"  # no I and O: on a cutting table they read as one and nought
 
-
-def assemble(form, goods, wishes, tailored, notes):
-    """Pattern from the Tailored of every part of the form."""
+def assemble(form, goods, wishes, parts, notes):
+    """Pattern from (Tailored, planes of symmetry) of every part of the form."""
+    names, order, alike = named([part.network for part, _ in parts], [planes for _, planes in parts])
     pieces, seams = [], []
-    for part in tailored:
+    for part, _ in parts:
         network = part.network
-        names = [piece_name(len(pieces) + k) for k in range(network.pieces[0])]
-        for k, name in enumerate(names):
+        own = names[len(pieces) : len(pieces) + network.pieces[0]]
+        for k, name in enumerate(own):
             pieces.append(_piece(name, network, k, part.judged[k], goods, wishes))
             if part.judged[k].crossings:
                 notes.append(f"Piece {name} lies over itself in the flat; split it with a seam.")
-        by_name = dict(zip(names, pieces[-len(names):], strict=True))
-        seams += [_seam(joint, network, names, by_name) for joint in joints(network)]
-    _name(seams)
+        by_name = dict(zip(own, pieces[-len(own):], strict=True))
+        seams += [_seam(joint, network, own, by_name) for joint in joints(network)]
+    pieces = [pieces[k] for k in order]
+    _number(seams)
     notes += _strain(pieces, goods) + _ease(seams, goods)
     from . import __version__
 
-    return pt.Pattern(form, goods, pieces, seams, sewing_order(seams), notes, {"comfort": wishes.comfort}, __version__)
+    details = _details(wishes, [plane for _, planes in parts for plane in planes], alike)
+    return pt.Pattern(form, goods, pieces, seams, sewing_order(seams), notes, details, __version__)
+
+
+def _details(wishes, planes, alike):
+    """Plain data on how the pattern came about: wishes by name, planes of symmetry in metres, sets of mirrored pieces."""
+    return {
+        "comfort": float(wishes.comfort),
+        "thrift": None if wishes.thrift is None else float(wishes.thrift),
+        "energy": wishes.energy if isinstance(wishes.energy, str) else "own",
+        "route": wishes.route,
+        "pieces": None if wishes.pieces is None else int(wishes.pieces),
+        "seed": int(wishes.seed),
+        "planes": [{"point": plane.point.tolist(), "normal": plane.normal.tolist(), "error": float(plane.error)}
+                   for plane in planes],
+        "mirrored": alike,
+    }
 
 
 def _strain(pieces, goods):
@@ -38,8 +55,8 @@ def _strain(pieces, goods):
         return []
     worst = strained[0]
     x, y, z = 1000 * (worst.points[worst.triangles].mean(axis=1)[worst.utilisation.argmax()])
-    named = ", ".join(piece.name for piece in strained[:8]) + (", ..." if len(strained) > 8 else "")
-    head = f"Piece {named} is" if len(strained) == 1 else f"{len(strained)} of {len(pieces)} pieces ({named}) are"
+    names = ", ".join(piece.name for piece in strained[:8]) + (", ..." if len(strained) > 8 else "")
+    head = f"Piece {names} is" if len(strained) == 1 else f"{len(strained)} of {len(pieces)} pieces ({names}) are"
     return [
         f"{head} strained: {100 * worst.beyond:.1f} % of {worst.name} is beyond what {goods.name} takes, most near "
         f"({x:.0f}, {y:.0f}, {z:.0f}) mm. Goods that take more would help, or a rounder form there, or a seam of your own."
@@ -52,17 +69,12 @@ def _ease(seams, goods):
     uneven = sorted((seam for seam in seams if abs(seam.ease) > most), key=lambda seam: -abs(seam.ease))
     if not uneven:
         return []
-    named = ", ".join(seam.name for seam in uneven[:8]) + (", ..." if len(uneven) > 8 else "")
+    names = ", ".join(seam.name for seam in uneven[:8]) + (", ..." if len(uneven) > 8 else "")
     return [
-        f"The sides of {len(uneven)} of {len(seams)} seams ({named}) differ by more than the {100 * most:g} % that {goods.name} "
-        f"can be eased, {uneven[0].name} by {100 * abs(uneven[0].ease):.1f} %: goods that take more, or more seams, would help."
+        f"The sides of {len(uneven)} of {len(seams)} seams ({names}) differ by more than the {100 * most:g} % that "
+        f"{goods.name} can be eased, {uneven[0].name} by {100 * abs(uneven[0].ease):.1f} %: goods that take more, or more "
+        "seams, would help."
     ]
-
-
-def piece_name(index):
-    """A, B, ... Z, A2, B2, ..."""
-    turn = index // len(LETTERS)
-    return LETTERS[index % len(LETTERS)] + (str(turn + 1) if turn else "")
 
 
 def _piece(name, network, index, judged, goods, wishes):
@@ -87,7 +99,7 @@ def _flat_length(piece, along):
     return float(np.linalg.norm(np.diff(piece.flat[along], axis=0), axis=1).sum())
 
 
-def _name(seams):
+def _number(seams):
     """Seams S1, S2, ... and hems H1, H2, ..., with enough digits to sort."""
     for letter, chosen in (("S", [s for s in seams if not s.open]), ("H", [s for s in seams if s.open])):
         digits = ceil(np.log10(len(chosen) + 1)) if chosen else 1

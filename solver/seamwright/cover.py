@@ -4,21 +4,25 @@ from dataclasses import replace
 
 import numpy as np
 
+from .asked import check, planes_of, prices_allow, shared_out
 from .assemble import assemble
-from .errors import CoverError, WishError
+from .errors import CoverError
 from .fit.goods import get
+from .fit.improve import improve
+from .fit.join import joined
 from .fit.tailor import Tailor
-from .form.mirror import planes, reflection
 from .form.surface import Surface
 from .pattern import Pattern
+from .seams.begun import network_of_labels, network_of_pattern
 from .seams.ladder import Ladder
 from .seams.network import cut_through
 from .seams.opened import opened
-from .seams.prices import seam_prices
+from .seams.prices import NEVER, seam_prices
 from .seams.route import cut_along
 from .seams.seek import seek
-from .seams.topology import point_labels
 from .wishes import Wishes
+
+PLAIN_THRIFT = 0.1  # price of a metre of seam where a number of pieces is wished and no thrift
 
 
 def cover(form, wishes=None, progress=None):
@@ -28,20 +32,23 @@ def cover(form, wishes=None, progress=None):
     """
     wishes = wishes or Wishes()
     goods = get(wishes.goods)
-    _check(form, wishes)
+    check(form, wishes)
+    prices = seam_prices(form, wishes)
     parts = list(_parts(form))
-    tailored, notes = [], list(form.mended)
-    for number, part in enumerate(parts):
+    wanted = shared_out(form, parts, wishes.pieces)
+    covered, notes = [], list(form.mended)
+    for number, (part, pieces) in enumerate(zip(parts, wanted, strict=True)):
         def tell(share, words, number=number):
             if progress:
                 progress((number + 0.95 * share) / len(parts), words)
 
         try:
-            tailored.append(_cover_part(form, part, wishes, goods, tell))
+            covered.append(_cover_part(form, part, prices[part.points], wishes, goods, pieces, tell, notes))
         except CoverError as error:
             where = f"{form.name}, part {number + 1} of {len(parts)}" if len(parts) > 1 else form.name
             raise CoverError(f"{where}: {error}") from error
-    pattern = assemble(form, goods, wishes, tailored, notes)
+    pattern = assemble(form, goods, wishes, covered, notes)
+    pattern.notes += _unmet(pattern, wishes, prices)
     if progress:
         progress(1.0, "done")
     return pattern
@@ -66,9 +73,12 @@ def _parts(form):
         yield _Part(form, np.flatnonzero(component == index))
 
 
-def _cover_part(form, part, wishes, goods, tell):
-    price = seam_prices(form, wishes)[part.points]
-    ladder = Ladder(part.surface, price, _planes(part.surface, price, wishes))
+def _cover_part(form, part, price, wishes, goods, pieces, tell, notes):
+    """(Tailored, planes of symmetry it keeps) of one part; what the maker should know goes to notes."""
+    prices_allow(form, part, price, NEVER)
+    begun = _begun(form, part, wishes)
+    planes = planes_of(part, price, wishes, begun)
+    ladder = Ladder(part.surface, price, planes, seed=int(wishes.seed))
     metric = 1 / ladder.factor
 
     def explicit(cut):
@@ -78,48 +88,66 @@ def _cover_part(form, part, wishes, goods, tell):
         return opened(cut_through(level, cut, metric))
 
     tailor = Tailor(ladder, explicit, goods, wishes.comfort, wishes.grain)
-    if wishes.thrift is None and wishes.pieces is None and wishes.start is None:
+    if begun is not None:
+        result, kept = improve(tailor, begun, wishes.thrift, wishes.energy, pieces, tell)
+        if kept:
+            notes.append("Start: no better seams were found from there, so they are as they were.")
+    elif wishes.thrift is None and pieces is None:
         result = tailor.run(tell)
+        return _placed(result, part), planes
     else:
-        found = seek(ladder, wishes.thrift or 0.1, wishes.energy, wishes.pieces, _begin(form, part, wishes), tell)
-        result = tailor.real(len(ladder.levels) - 1, found.cut, fully=True)
-        if wishes.pieces is None:
-            result = tailor.dropped(result)[0]
-        result = tailor.sewn(tailor.untangled(result))
+        found = seek(ladder, wishes.thrift or PLAIN_THRIFT, wishes.energy, pieces, tell)
+        result = tailor.untangled(tailor.real(len(ladder.levels) - 1, found.cut, fully=True))
+    if pieces is not None:
+        result = joined(tailor, result, pieces)
+    return _placed(tailor.sewn(result), part), planes
+
+
+def _placed(result, part):
+    """The Tailored, its sources the form's triangles."""
     result.network = replace(result.network, source=part.triangles[result.network.source])
     return result
 
 
-def _planes(surface, price, wishes):
-    """Planes of symmetry that the network is to keep: none where the wishes are lopsided themselves."""
-    if wishes.symmetry == "none" or wishes.start is not None:
-        return []
-    return [plane for plane in planes(surface) if np.abs(reflection(surface, plane) @ price - price).max() < 0.1]
-
-
-def _begin(form, part, wishes):
-    """(n,) labels of a part's points from the partition to improve, None without one."""
+def _begun(form, part, wishes):
+    """The Network that a part begins with, None without one."""
     if wishes.start is None:
         return None
     if isinstance(wishes.start, Pattern):
-        labels = np.zeros(len(form.triangles), dtype=np.int64)
-        for number, piece in enumerate(wishes.start.pieces):
-            labels[piece.source] = number
-    else:
-        labels = np.asarray(wishes.start)
-        if labels.shape != (form.face_count,):
-            raise WishError(f"start: {labels.size} labels for a form of {form.face_count} faces. Give one for each face.")
-        labels = np.unique(labels, return_inverse=True)[1].ravel()[form.polygon]
-    return point_labels(part.surface, labels[part.triangles])
+        return network_of_pattern(wishes.start.pieces, part.triangles)
+    labels = np.unique(wishes.start, return_inverse=True)[1].ravel()[form.polygon][part.triangles]
+    return network_of_labels(part.surface, labels, ~part.diagonal)
 
 
-def _check(form, wishes):
-    """Refuse what this version cannot do, rather than leave it undone in silence."""
-    later = {"held": wishes.held, "shut": wishes.shut, "only": wishes.only}
-    for name, value in later.items():
-        if value is not None:
-            raise WishError(f"{name}: not offered yet. Leave it out; keep_clear, pieces, thrift and start are there.")
-    if not isinstance(wishes.symmetry, str):
-        raise WishError("symmetry: planes of your own are not offered yet. Leave it at \"auto\" or \"none\".")
-    if wishes.thickness_side != "none":
-        raise WishError("thickness_side: not offered yet. Offset the form by half the goods' thickness in the application.")
+def _unmet(pattern, wishes, prices):
+    """Sentences on wishes that are not met."""
+    found = []
+    if wishes.pieces is not None and len(pattern.pieces) != wishes.pieces:
+        found.append(f"Pieces: {wishes.pieces} were wished, the pattern has {len(pattern.pieces)}; no seams were found that "
+                     "give as many.")
+    if wishes.energy != "square" and wishes.thrift is wishes.pieces is wishes.start is None:
+        found.append("Energy: it had no say, as the seams were sought for the goods. It counts with thrift, pieces or "
+                     "start.")
+    never = (prices >= NEVER)[pattern.form.triangles].all(axis=1)
+    length = _metres_in(pattern, never)
+    if length > 0:
+        found.append(f"Keep clear: {1000 * length:.0f} mm of seam run where there should never be any, as without them the "
+                     "form could not be covered so.")
+    return found
+
+
+def _metres_in(pattern, triangles):
+    """Metres of seam that run within triangles (t,) bool of the form."""
+    total = 0.0
+    for piece in pattern.pieces:
+        inside = triangles[piece.source]
+        edges = np.sort(np.concatenate([piece.triangles[inside][:, [k, (k + 1) % 3]] for k in range(3)]), axis=1)
+        n = len(piece.points)
+        inner = np.unique(edges @ [n, 1])
+        for seam in pattern.seams:
+            for name, along in seam.sides:
+                if name == piece.name and not seam.open:
+                    ends = np.sort(np.column_stack([along[:-1], along[1:]]), axis=1)
+                    length = np.linalg.norm(np.diff(piece.points[along], axis=0), axis=1)
+                    total += length[np.isin(ends @ [n, 1], inner)].sum() / 2
+    return float(total)

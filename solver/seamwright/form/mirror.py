@@ -82,6 +82,14 @@ def planes(surface, most=1):
     return found
 
 
+def measured(surface, point, normal):
+    """The Plane through a point (3,) with a normal (3,) of any length, its error measured on a Surface."""
+    normal = np.asarray(normal, dtype=float)
+    plane = Plane(np.asarray(point, dtype=float), normal / np.linalg.norm(normal), np.inf)
+    plane.error = _error(_Spread(surface), Nearest(surface), plane)
+    return plane
+
+
 def mirrored_points(surface, plane):
     """(triangle (n,), barycentric (n, 3)): where on the Surface each point's mirror image lies."""
     points, normals = plane.mirrored(surface.points), plane.turned(vertex_normals(surface))

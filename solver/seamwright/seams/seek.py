@@ -10,10 +10,13 @@ from .energy import evaluate
 from .fields import from_labels, redistance
 from .merging import merges
 from .starts import starts, tidied
+from .topology import through
 
 REPAIRS = 3  # flows, as long as regions had to be put right after the last
 PIECE_PRICE = 0.02  # fixed price of a piece, or specks pay
 KEPT = (3, 2, 1)  # networks carried on from the first rungs; one after that
+MOST_PIECES = 40
+SPLIT_STEPS = 12  # of flow after a split
 STEPS = (24, 16, 10, 8)  # steps by rung, coarse to fine; the form itself takes the last
 
 
@@ -51,31 +54,63 @@ def settle(level, cut, labels, thrift, energy="square", weights=None, converged=
 
 def simplify(level, found, thrift, energy="square", pieces=None):
     """Merge neighbours while that lowers the score (or while there are more than the wished pieces)."""
+    least = max(2 if level.free.all() else 1, pieces or 1)
     while True:
         labels = found.cut.labels
         count = int(labels.max()) + 1
-        trials = [
-            settle(level, found.cut, trial, thrift, energy) for trial in merges(level, labels)
-        ] if count > max(2 if level.free.all() else 1, pieces or 1) else []
+        few = [trial for trial in merges(level, labels) if trial.max() + 1 >= least] if count > least else []
+        trials = [settle(level, found.cut, trial, thrift, energy) for trial in few]
         best = min(trials, key=lambda trial: trial.score, default=None)
         if best is None or (best.score >= found.score and (pieces is None or count <= pieces)):
             return found
         found = best
 
 
-def seek(ladder, thrift, energy="square", pieces=None, begin=None, progress=None):
-    """Best Found on the ladder's last level. begin: (n,) labels of the form's points to improve, instead of the starts."""
+def enriched(level, found, thrift, energy="square", pieces=None):
+    """Split regions through the point of most stretch, one at a time, the best first, while that lowers the score (or while
+    there are fewer than the wished pieces). Returns the flowed Found."""
+    while True:
+        count = found.fields.shape[1]
+        if count >= (pieces or MOST_PIECES):
+            return found
+        fields = [from_labels(level, labels) for labels in _splits(level, found)]
+        trials = [flow(level, one, thrift, energy, steps=SPLIT_STEPS) for one in fields]
+        if pieces is None:
+            trials = [simplify(level, trial, thrift, energy) for trial in trials]
+            trials = [trial for trial in trials if trial.score < found.score]
+        else:
+            trials = [trial for trial in trials if count < trial.fields.shape[1] <= pieces]
+        if not trials:
+            return found
+        found = min(trials, key=lambda trial: trial.score)
+
+
+def _splits(level, found):
+    """Labels (n,) after the split of one region, for each, the one with most distortion first."""
+    labels, u = found.cut.labels, np.abs(found.cost.u)
+    met = {labels.tobytes()}
+    for region in np.argsort(-np.bincount(labels, level.mass * u * u), kind="stable"):
+        inside = np.flatnonzero(labels == region)
+        half = through(level, inside, inside[u[inside].argmax()])
+        trial = labels.copy()
+        trial[inside[half == 1]] = labels.max() + 1
+        trial = tidied(level, trial)
+        if trial.tobytes() not in met:
+            met.add(trial.tobytes())
+            yield trial
+
+
+def seek(ladder, thrift, energy="square", pieces=None, progress=None):
+    """Best Found on the ladder's last level, from several starts. pieces: a wished number, come as near to as can be."""
     levels = ladder.levels
-    if begin is not None:
-        level = levels[-1]
-        return flow(level, from_labels(level, tidied(level, begin)), thrift, energy, steps=3 * STEPS[-1])
     level = levels[0]
     cells = sorted({*(2, 3, 4, 5, 7, 10), *((pieces, pieces + 2) if pieces else ())})
     pool = []
     for labels in starts(level, cells):
         found = flow(level, from_labels(level, labels), thrift, energy, steps=STEPS[0])
-        found = simplify(level, found, thrift, energy, pieces)
-        pool.append(found)
+        pool.append(simplify(level, found, thrift, energy, pieces))
+    if pieces is not None and all(found.fields.shape[1] < pieces for found in pool):
+        pool = [enriched(level, min(pool, key=lambda found: _rank(found, pieces)), thrift, energy, pieces)]
     for rung in range(1, len(levels)):
         pool = sorted(pool, key=lambda found: _rank(found, pieces))[: KEPT[min(rung - 1, 2)]]
         level, steps = levels[rung], STEPS[-1] if rung == len(levels) - 1 else STEPS[min(rung, 3)]
@@ -90,4 +125,4 @@ def seek(ladder, thrift, energy="square", pieces=None, begin=None, progress=None
 
 
 def _rank(found, pieces):
-    return (pieces is not None and found.fields.shape[1] != pieces, found.score)
+    return (0 if pieces is None else abs(found.fields.shape[1] - pieces), found.score)

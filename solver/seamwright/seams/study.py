@@ -4,10 +4,12 @@ import numpy as np
 from scipy.sparse import coo_matrix
 
 from ..errors import WishError
-from ..form.laplacian import smoothed_defects
-from ..form.measure import total_area
+from ..form.laplacian import Factor, cotangent_laplacian, smoothed_defects
+from ..form.measure import open_points, total_area, vertex_areas
+from ..form.nearest import closest_on_triangles
+from ..form.surface import Surface
 from .cut import cut_by_fields
-from .energy import evaluate
+from .energy import Cost, density, evaluate
 from .fields import smoothed
 from .level import Level, scaled
 
@@ -26,6 +28,45 @@ def seam_energy(form, labels, thrift=1.0, energy="square"):
     level, cut = _cut(form, labels)
     cost = evaluate(level, cut, thrift, energy, gradient=False)
     return cost.distortion, cost.length, cost.total
+
+
+def network_cost(ladder, network, thrift, energy="square"):
+    """Cost of an explicit Network of the Ladder's form, darts and slits included; u at its own points.
+
+    Seams run along its edges, so u = 0 there. Load and price at points within the form's triangles are interpolated.
+    """
+    level = ladder.levels[-1]
+    share = shares(level.surface, network, ladder.factor)
+    corners = level.surface.triangles[network.source]
+    surface = Surface(network.surface.points * ladder.factor, network.surface.triangles)
+    load, price = (_at_points(surface, (share * values[corners][:, None]).sum(axis=2))
+                   for values in (level.density, level.price))
+    mass, fixed = vertex_areas(surface), open_points(surface)
+    fixed[surface.edges[network.seam]] = True
+    u, free = np.zeros(len(mass)), np.flatnonzero(~fixed)
+    if len(free):
+        u[free] = Factor(cotangent_laplacian(surface)[free][:, free].tocsc()).solve((load * mass)[free])
+    pair = density(energy)
+    distortion = 0.5 * float((load * mass) @ u) if pair is None else float(mass @ pair[0](u))
+    length = float((surface.edge_lengths * price[surface.edges].mean(axis=1))[network.seam].sum())
+    return Cost(distortion, length, distortion + thrift * length, u)
+
+
+def shares(surface, network, factor):
+    """(t, 3, 3) barycentric place of each corner of a Network's triangles in the Surface's triangle they come from.
+
+    factor: lengths on the Surface over lengths of the Network.
+    """
+    places = network.surface.points[network.surface.triangles].reshape(-1, 3) * factor
+    corners = surface.points[surface.triangles[np.repeat(network.source, 3)]]
+    return closest_on_triangles(places, corners)[0].reshape(-1, 3, 3)
+
+
+def _at_points(surface, values):
+    """(n,) one of the values (t, 3) that the triangles' corners have at each point: they agree."""
+    found = np.zeros(len(surface.points))
+    found[surface.triangles] = values
+    return found
 
 
 def _cut(form, labels):

@@ -1,0 +1,82 @@
+"""Improve the network that the maker begins with, and never make it worse."""
+
+import numpy as np
+
+from ..seams.begun import point_shares
+from ..seams.fields import from_labels, smoothed
+from ..seams.seek import PIECE_PRICE, STEPS, enriched, flow, simplify
+from ..seams.starts import tidied
+from ..seams.study import network_cost
+from .tailor import Tailored
+
+TRIES = 6  # prices tried until length and distortion both fall
+FACTOR = 4.0  # by which the price changes at first
+COARSE = 1  # rung on which splits are tried
+
+
+def improve(tailor, network, thrift, energy, pieces, tell):
+    """(Tailored, whether it is still what was there) for a Network on the tailor's part. pieces: wished number or None.
+
+    With a thrift the total, the price of the pieces with it, is not higher than before; without one neither length nor
+    distortion is. A wished number of pieces that was not there before goes before that.
+    """
+    ladder = tailor.ladder
+    tell(0.1, "improving seams")
+    price = 0.0 if thrift is None else thrift
+    before = network_cost(ladder, network, price, energy)
+    begin = smoothed(ladder.levels[-1], point_shares(ladder.levels[-1].surface, network, ladder.factor), 1.0).argmax(axis=1)
+    if thrift is None and pieces is None:
+        found = _less_of_both(ladder.levels[-1], begin, energy, before)
+    else:
+        found = _less_in_all(ladder, begin, thrift or before.distortion / before.length, energy, pieces)
+    tell(0.7, "flattening pieces")
+    if found is not None:
+        met = tailor.untangled(tailor.real(len(ladder.levels) - 1, found.cut, fully=True))
+        after = network_cost(ladder, met.network, price, energy)
+        if pieces is not None and network.pieces[0] != pieces:
+            better = True
+        elif thrift is None:
+            better = after.length <= before.length and after.distortion <= before.distortion
+        else:
+            more = met.network.pieces[0] - network.pieces[0]
+            better = after.total + PIECE_PRICE * more <= before.total
+        if better:
+            return met, False
+    judged = [tailor.judge(network.piece_surface(k)[0], True) for k in range(network.pieces[0])]
+    return tailor.untangled(Tailored(network, judged)), True
+
+
+def _less_of_both(level, begin, energy, before):
+    """The Found with less length and less distortion than a Cost, by trying prices; None where none was met."""
+    price, factor, way = before.distortion / max(before.length, 1e-12), FACTOR, 0
+    fields = from_labels(level, tidied(level, begin))
+    for _ in range(TRIES):
+        found = flow(level, fields, price, energy, steps=STEPS[-1])
+        longer, worse = found.cost.length > before.length, found.cost.distortion > before.distortion
+        if not longer and not worse:
+            return found
+        turn = 1 if longer else -1
+        factor = factor**0.5 if turn == -way else factor
+        price, way, fields = price * factor**turn, turn, found.fields
+    return None
+
+
+def _less_in_all(ladder, begin, thrift, energy, pieces):
+    """The Found of least score, from the form's points' labels on, with splits and merges."""
+    levels = ladder.levels
+    top, rung = len(levels) - 1, min(COARSE, len(levels) - 1)
+    level = levels[top]
+    found = flow(level, from_labels(level, tidied(level, begin)), thrift, energy, steps=3 * STEPS[-1])
+    pool = [simplify(level, found, thrift, energy, pieces)]
+    level = levels[rung]
+    votes = np.zeros((len(level.surface.points), int(begin.max()) + 1))
+    np.add.at(votes, (ladder.owners[rung], begin), levels[top].mass)
+    coarse = flow(level, from_labels(level, tidied(level, votes.argmax(axis=1))), thrift, energy, steps=STEPS[rung])
+    coarse = simplify(level, coarse, thrift, energy, pieces)
+    richer = enriched(level, coarse, thrift, energy, pieces)
+    if richer is not coarse:
+        for higher in range(rung + 1, top + 1):
+            fields = ladder.lift(richer.fields, higher - 1, higher)
+            richer = flow(levels[higher], fields, thrift, energy, steps=STEPS[-1])
+        pool.append(simplify(levels[top], richer, thrift, energy, pieces))
+    return min(pool, key=lambda one: (0 if pieces is None else abs(one.fields.shape[1] - pieces), one.score))

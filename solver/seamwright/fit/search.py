@@ -20,6 +20,7 @@ from ..seams.topology import nearer, regions, through
 from .foresee import largest
 
 STEPS = 6  # flow steps in a round
+SETTLE = 16  # flow steps after a lift, which leaves the seams as rough as the rung below
 HALVINGS = (2, 2, 4)  # rounds on the first rung after each of which only the better half of the starts goes on
 CELLS = (2, 3, 4, 6, 9)  # sizes of the cells among the starts
 TOO_MUCH = 3.0  # use of the limits at which a piece is split at once
@@ -77,7 +78,7 @@ class Search:
         """The State one rung up."""
         fields = self.ladder.lift(state.fields, rung - 1, rung)
         for _ in range(REPAIRS):
-            cut = self._flow(rung, fields, state).cut
+            cut = self._flow(rung, fields, state, SETTLE).cut
             state = self._after(rung, state, cut)
             fields = state.fields
             if np.array_equal(state.cut.labels, cut.labels):
@@ -119,14 +120,14 @@ class Search:
         owner, count = self.ladder.owners[rung], len(self.ladder.levels[rung].surface.points)
         return np.bincount(owner, values, minlength=count) / np.bincount(owner, minlength=count)
 
-    def _flow(self, rung, fields, state):
+    def _flow(self, rung, fields, state, steps=STEPS):
         """Descent with the state's weights; where more strain was met than foreseen, distortion counts for more."""
         emphasis = self._on(rung, state.strictness) ** 2
         for region in range(len(state.weights)):  # relative within each region: its level is in the weight
             inside = state.cut.labels == region if len(state.cut.labels) == len(emphasis) else emphasis > 0
             emphasis[inside] /= np.exp(np.log(emphasis[inside]).mean())
         level = self.ladder.levels[rung]
-        return descend(level, fields, 1.0, "square", state.weights, STEPS, emphasis=emphasis)
+        return descend(level, fields, 1.0, "square", state.weights, steps, emphasis=emphasis)
 
     def _use(self, rung, labels, u, strictness):
         """((K,) use of the limits as foreseen, (K,) the point of each region that asks most)."""

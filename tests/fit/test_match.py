@@ -4,10 +4,16 @@ import numpy as np
 import pytest
 from forms import disk
 from seamwright.fit.goods import get
-from seamwright.fit.match import _Seams, match
+from seamwright.fit.grain import HeldGrain, pull
+from seamwright.fit.match import FURTHER, match
 from seamwright.fit.measure import area_quantile, areas, utilisation, warp_weft_shear
 from seamwright.fit.shape import relax_for_goods
-from seamwright.flat import flatten
+from seamwright.fit.springs import Gaps, Springs
+from seamwright.flat import flatten, overlaps
+from seamwright.flat.flatten import DIRICHLET
+from seamwright.flat.rest import Rest
+from seamwright.flat.stack import Stack
+from seamwright.flat.state import State
 from seamwright.form.surface import Surface
 
 
@@ -31,8 +37,8 @@ def length(flat, path):
     return np.linalg.norm(np.diff(flat[path], axis=0), axis=1).sum()
 
 
-@pytest.mark.parametrize("name, dearer", [("felt", 1.03), ("jersey", 1.03), ("canvas", 2.5)])
-def test_both_sides_of_a_seam_become_equally_long(pillow, name, dearer):
+@pytest.mark.parametrize("name", ["felt", "jersey", "canvas"])
+def test_both_sides_of_a_seam_become_equally_long(pillow, name):
     pieces, joints = pillow
     goods, rim = get(name), joints[0][1]
     shaped = [relax_for_goods(piece, flatten(piece).flat, goods) for piece in pieces]
@@ -46,7 +52,7 @@ def test_both_sides_of_a_seam_become_equally_long(pillow, name, dearer):
         area = areas(piece.points, piece.triangles)
         measured = area_quantile(utilisation(warp_weft_shear(piece.points, piece.triangles, flat), goods), area)
         assert used == pytest.approx(measured, rel=1e-6)
-        assert used < dearer * max(one.utilisation for one in shaped)
+        assert used <= 1
 
 
 def test_a_dart_closes():
@@ -64,23 +70,74 @@ def test_a_dart_closes():
     assert length(matched.flats[0], one) == pytest.approx(length(matched.flats[0], other), rel=0.0005)
 
 
-def test_gaps_have_the_right_derivative(pillow):
+def test_springs_have_the_right_derivative(pillow):
     pieces, joints = pillow
     points = np.concatenate([piece.points for piece in pieces])
     _, at, _, bt = joints[0]
-    seams = _Seams(points, [(at, bt + len(pieces[0].points))])
+    springs = Springs(Gaps(points, [(at, bt + len(pieces[0].points))]), 3.0)
     rng = np.random.default_rng(0)
     flat = points[:, 0] + 1j * points[:, 1] + 0.01 * rng.standard_normal(len(points))
     move = rng.standard_normal(len(points)) + 1j * rng.standard_normal(len(points))
-    rows = seams.gaps(flat)[1]
     step = 1e-6
-    slope = (seams.gaps(flat + step * move)[0] - seams.gaps(flat - step * move)[0]) / (2 * step)
-    np.testing.assert_allclose((rows.conj() @ move).real, slope, rtol=1e-6, atol=1e-8)
+    ahead, behind = (flat + s * move for s in (step, -step))
+    rows, give = springs.rows(flat)
+    change = (springs.gaps.sizes(ahead)[0] - springs.gaps.sizes(behind)[0]) / (2 * step)
+    np.testing.assert_allclose((rows.conj() @ move).real, change, rtol=1e-6, atol=1e-8)
+    assert give == pytest.approx(np.full(springs.gaps.count, 1 / 3))
+    slope = (springs.worth(ahead) - springs.worth(behind)) / (2 * step)
+    assert np.vdot(springs.slope(flat), move).real == pytest.approx(slope, rel=1e-6)
+
+
+def test_several_pieces_are_as_one():
+    # a Stack of pieces against one Rest of all their triangles: the same maps, gradients and Newton steps
+    pieces = [shell(0.6), shell(0.3, inside=True)]
+    stack = Stack([Rest(piece) for piece in pieces])
+    whole = Rest(Surface(np.concatenate([piece.points for piece in pieces]),
+                         np.concatenate([pieces[0].triangles, pieces[1].triangles + len(pieces[0].points)])))
+    flat = np.concatenate([piece.points[:, 0] + 1j * piece.points[:, 1] * sign
+                           for piece, sign in zip(pieces, (1, -1), strict=True)])
+    one, other = (State(rest, DIRICHLET, flat, [HeldGrain([Rest(piece) for piece in pieces], (1, 0, 0))])
+                  for rest in (stack, whole))
+    np.testing.assert_allclose(one.gradient, other.gradient, atol=1e-12)
+    np.testing.assert_allclose(one.newton_direction(0.01), other.newton_direction(0.01), rtol=1e-6, atol=1e-9)
+    assert [len(part) for part in stack.split(flat)] == [len(piece.points) for piece in pieces]
+    assert [len(part) for part in stack.split_faces(stack.area)] == [len(piece.triangles) for piece in pieces]
+
+
+@pytest.mark.parametrize("name, comfort", [("canvas", 0.6), ("canvas", 0.8), ("woven-back", 0.6), ("leather", 0.8)])
+def test_no_piece_uses_more_than_it_may_and_the_seams_give_way_instead(pillow, name, comfort):
+    # goods that do not take what full matching asks
+    pieces, joints = pillow
+    goods, rim = get(name), joints[0][1]
+    shaped = [relax_for_goods(piece, flatten(piece).flat, goods, comfort) for piece in pieces]
+    matched = match(pieces, [one.flat for one in shaped], joints, goods, comfort)
+    for used, free in zip(matched.utilisation, shaped, strict=True):
+        assert used <= (1 if free.utilisation <= 1 else FURTHER * free.utilisation)
+    before = abs(np.log(length(shaped[0].flat, rim) / length(shaped[1].flat, rim)))
+    after = abs(np.log(length(matched.flats[0], rim) / length(matched.flats[1], rim)))
+    assert 1e-5 < after < before
+    assert matched.sewable == (np.abs(matched.mismatch[0]).max() <= goods.mismatch[0])
+
+
+def test_no_piece_comes_to_lie_over_itself():
+    # a ring of nearly one turn that must become longer at its rim to meet another: its ends would pass each other
+    def ring(turn, stretch):
+        angle, radius = np.meshgrid(np.linspace(0, turn, 61), np.linspace(0.6, 1, 6), indexing="ij")
+        points = np.stack([radius * np.cos(angle), radius * np.sin(angle), stretch * angle], axis=-1).reshape(-1, 3)
+        i, j = (a.ravel() for a in np.meshgrid(np.arange(60), np.arange(5), indexing="ij"))
+        a, b = 6 * i + j, 6 * (i + 1) + j
+        return Surface(points, np.concatenate([np.column_stack([a, a + 1, b + 1]), np.column_stack([a, b + 1, b])])[:, ::-1])
+
+    pieces = [ring(6.25, 0.0), ring(6.25, 0.15)]
+    flats = [flatten(piece).flat for piece in pieces]
+    assert not any(overlaps(flat, piece.boundary_loops[0]) for flat, piece in zip(flats, pieces, strict=True))
+    rim = 6 * np.arange(61) + 5
+    matched = match(pieces, flats, [(0, rim, 1, rim)], get("jersey"))
+    assert length(matched.flats[0], rim) == pytest.approx(length(matched.flats[1], rim), rel=0.005)
+    assert not any(overlaps(flat, piece.boundary_loops[0]) for flat, piece in zip(matched.flats, pieces, strict=True))
 
 
 def test_a_wanted_grain_is_held_in_every_piece(pillow):
-    from seamwright.fit.grain import pull
-    from seamwright.flat.rest import Rest
     pieces, joints = pillow
     wanted = (1.0, 0.3, 0.0)
     flats = [relax_for_goods(piece, flatten(piece).flat, get("canvas"), wanted=wanted, stages=1).flat for piece in pieces]

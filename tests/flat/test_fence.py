@@ -4,7 +4,7 @@ import numpy as np
 import pytest
 from forms import cap, split_quads
 from seamwright.flat import flatten, overlaps, untangled
-from seamwright.flat.fence import Fence, Fenced
+from seamwright.flat.fence import Fence, Push
 from seamwright.flat.flatten import DIRICHLET, as_complex
 from seamwright.flat.rest import Rest
 from seamwright.form.surface import Surface
@@ -100,21 +100,38 @@ def test_gaps_are_the_distances_an_outside_library_finds():
 
 def test_the_push_is_the_derivative():
     surface, fence, flat = close()
-    state = Fenced(Rest(surface), DIRICHLET, flat, fence)
-    state.strength *= 100
-    gradient = state.slope(flat, state.rest.maps(flat))
-    assert np.abs(gradient - super(Fenced, state).slope(flat, state.maps)).max() > 0
+    push = Push(fence, 1.0)
+    gradient = push.slope(flat)
     rng = np.random.default_rng(0)
     move = rng.standard_normal(len(flat)) + 1j * rng.standard_normal(len(flat))
     step = 1e-8
-    ahead, behind = (state.worth(flat + s * move, state.rest.maps(flat + s * move)) for s in (step, -step))
+    ahead, behind = (push.worth(flat + s * move) for s in (step, -step))
     assert np.vdot(gradient, move).real == pytest.approx((ahead - behind) / (2 * step), rel=1e-4)
+
+
+def test_the_push_resists_as_its_force_changes():
+    # along each gap by itself; that the direction of the gap turns is left out
+    surface, fence, flat = close()
+    gap, _, _ = fence.gaps(flat)
+    rows, give = Push(fence, 1.0).rows(flat)
+    step = 1e-7
+    for at in range(0, len(gap), 3):
+        row = rows[at].toarray().ravel()
+        after = fence.gaps(flat + step * row / np.sum(np.abs(row) ** 2))[0][at]
+        assert after - gap[at] == pytest.approx(step, rel=1e-3)
+        force = [-2e-3 * (1 / x - 1) / x**2 for x in (gap[at], after)]
+        assert (force[1] - force[0]) / step == pytest.approx(1 / give[at], rel=1e-3)
+
+
+def test_outlines_that_cross_already_are_left_out():
+    surface = ring(1.5)
+    fence = Fence(surface.points, surface.boundary_loops)
+    assert fence.uncrossed(as_complex(flatten(surface).flat)).outlines == []
+    assert len(fence.uncrossed(as_complex(untangled(surface))).outlines) == 1
 
 
 def test_crossing_is_never_worth_it():
     surface = ring(1.5)
-    rest = Rest(surface)
-    fence = Fence(surface.points, surface.boundary_loops)
-    state = Fenced(rest, DIRICHLET, as_complex(untangled(surface)), fence)
-    over = as_complex(flatten(surface).flat)
-    assert state.worth(over, rest.maps(over)) == np.inf
+    push = Push(Fence(surface.points, surface.boundary_loops), 1.0)
+    assert np.isfinite(push.worth(as_complex(untangled(surface))))
+    assert push.worth(as_complex(flatten(surface).flat)) == np.inf

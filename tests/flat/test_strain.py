@@ -105,7 +105,8 @@ def test_stiffness_is_the_second_derivative_held_at_the_anchors():
         at_alpha, at_beta = ENERGY.first(alpha, beta)
         return rest.gather(rest.area * (at_alpha + floor * alpha), rest.area * (at_beta + floor * beta))
 
-    factors = rest.stiffness(*ENERGY.second(*rest.maps(flat)), floor)
+    [(own, factors)] = rest.stiffness(*ENERGY.second(*rest.maps(flat)), floor)
+    assert own == slice(0, rest.count)
     move = np.random.default_rng(0).standard_normal(rest.count) * np.exp(1j * np.arange(rest.count))
     move[rest.anchors] = 0   # there the matrix is stiffened
     step = 1e-6

@@ -51,7 +51,7 @@ class GoodsEnergy:
     def _values(self, log, w):
         """(c, t) channels; those of principal stretches positive or 0."""
         left = 1 - np.abs(w) ** 2
-        if self.shear:
+        if self.shear is not None:
             warp, weft, shear = _threads(log, w, left)
             warp, weft = (e / np.where(e > 0, limit, self.ease_in) for e, limit in ((warp, self.warp), (weft, self.weft)))
             return np.stack([warp, weft, shear / self.shear])
@@ -82,7 +82,7 @@ class GoodsEnergy:
             # d ln|alpha| = Re(d alpha / alpha); d w = d beta / conj(alpha) - w d conj(alpha) / conj(alpha)
             return (-by_log - by_w.conj() * w) / alpha.conj(), by_w / alpha
 
-        if self.shear:
+        if self.shear is not None:
             values, by_log, by_w = self._woven(log, w, left)
             return values, *back(by_log, by_w), None
         values, by_log, by_w, radius, turn_log, turn_w = self._principal(log, w, left)

@@ -4,120 +4,93 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from ..flat.fence import Fence, Push
 from ..flat.flatten import as_complex, as_points
 from ..flat.rest import Rest
+from ..flat.stack import Stack
 from ..flat.state import State
-from ..form.surface import Surface
-from .grain import pull
+from .grain import HeldGrain
 from .limits import GoodsEnergy, log_and_ratio
 from .measure import area_quantile
-from .shape import DAMPING, STEPS, exponents_for, settle
+from .shape import DAMPING, exponents_for, settle
+from .springs import Gaps, Springs
 
+STEPS = 5
+"""Most Newton steps for each exponent."""
 STIFFNESS = 100.0
-"""Of the springs along the seams, per area of the pieces; the energy of a piece at its limits is under half its area."""
-LEAST_LEVEL = 0.01
-"""Pieces that use less of the limits than this are developments: nothing is gained by using still less."""
-SPACING = 0.1
-"""Metres between the marks that must meet, at most an eighth of the seam: about the trade's distance of notches."""
+"""Of the springs along the seams, per area of the pieces; that of a piece's energy at its limits is under 1e-4."""
+EXACT = 5e-4
+"""A stretch of seam whose sides differ by less is matched: 0.05 mm in 100."""
+GROWTH = np.geomspace(1e-6, 1e-1, 6)
+"""Shares of the stiffness, one after the other, where the full one asks more of a piece than it may use."""
+FURTHER = 1.1
+"""A piece that is strained anyway may be strained this much more: seams that cannot be sewn are worse."""
+SPARE = 0.97
+"""Share of what a piece may use that its energy takes for the limit."""
 
 
 @dataclass
 class Matched:
     """flats, an (n, 2) a piece; utilisation of each on 99.5 % of its area; mismatch of every joint's stretches, a list of
-    (s,) logs of length ratios."""
+    (s,) logs of length ratios; sewable: none differs by more than the goods are easily sewn with; Newton steps taken."""
 
     flats: list
     utilisation: list
     mismatch: list
+    sewable: bool
+    steps: int
 
 
 def match(surfaces, flats, joints, goods, comfort=0.0, wanted=None):
-    """Shape the pieces together so that both sides of every joint are equally long, stretch by stretch. Returns Matched.
+    """Bring both sides of every joint to one length, stretch by stretch, as far as the goods' limits allow.
 
     surfaces and flats (n, 2), one a piece; joints: (piece, points (q,), piece, points (q,)), points along the seam within
-    the piece; a dart joins a piece to itself. As in `shape`, with the level of the most used piece for all, and springs on
-    the logs of the length ratios. `wanted`, a direction (3,) on the form, holds each piece's grain along +y.
+    the piece; a dart joins a piece to itself. A piece may use its limits fully, or FURTHER than it does already where that
+    is more. Springs pull the sides together; where that would ask more of a piece than it may use, they begin again softly
+    and grow only as far as they may. `wanted`, a direction (3,) on the form, holds each piece's grain along +y. No piece
+    comes to lie over itself. Returns Matched.
     """
-    begin = np.cumsum([0] + [len(surface.points) for surface in surfaces])
-    whole = Surface(np.concatenate([surface.points for surface in surfaces]),
-                    np.concatenate([surface.triangles + at for surface, at in zip(surfaces, begin, strict=False)]))
-    rest, now = Rest(whole), as_complex(np.concatenate(flats))
-    piece = np.repeat(np.arange(len(surfaces)), [len(surface.triangles) for surface in surfaces])
-    seams = _Seams(whole.points, [(begin[a] + at, begin[b] + bt) for a, at, b, bt in joints])
-    held = np.zeros((0, rest.count), dtype=complex)
-    if wanted is not None:
-        owner = np.repeat(np.arange(len(surfaces)), np.diff(begin))
-        held = pull(rest, wanted) * (owner == np.arange(len(surfaces))[:, None])
+    stack = Stack([Rest(surface) for surface in surfaces])
+    points, now = np.concatenate([surface.points for surface in surfaces]), as_complex(np.concatenate(flats))
+    begin = stack.begin[:-1]
+    gaps = Gaps(points, [(begin[a] + at, begin[b] + bt) for a, at, b, bt in joints])
+    fence = Fence(points, [first + surface.boundary_loops[0] for first, surface in zip(begin, surfaces, strict=True)])
+    fence = fence.uncrossed(now)
+    held = [] if wanted is None else [HeldGrain(stack.rests, wanted)]
     limits = GoodsEnergy(goods, comfort, 1, 1.0)
 
+    def each(flat):
+        return limits.used(*log_and_ratio(*stack.maps(flat)))
+
     def used(flat):
-        each = limits.used(*log_and_ratio(*rest.maps(flat)))
-        return [area_quantile(each[piece == k], rest.area[piece == k]) for k in range(len(surfaces))]
+        parts = zip(stack.split_faces(each(flat)), stack.rests, strict=True)
+        return np.array([area_quantile(part, rest.area) for part, rest in parts])
+
+    free, may, steps = now, used(now), 0
+    may = np.where(may > 1, FURTHER * may, 1.0)
+
+    def pulled(now, exponent, share, damping):
+        level = may * max(SPARE, (used(now) / may).max())
+        level = np.maximum(level[stack.owner], each(now))  # what is beyond already may stay so
+        energy = GoodsEnergy(goods, comfort, exponent, level)
+        beside = [Springs(gaps, share * STIFFNESS * stack.total), *held]
+        if fence.outlines:
+            beside.append(Push(fence, stack.area @ energy.density(*stack.maps(now))))
+        state = State(stack, energy, now, beside)
+        taken, damping = settle(state, STEPS, damping)
+        return state.flat, taken, damping, bool((used(state.flat) <= may).all())
 
     damping = DAMPING
     for exponent in exponents_for(goods):
-        energy = GoodsEnergy(goods, comfort, exponent, max(LEAST_LEVEL, *used(now)))
-        state = _Sewn(rest, energy, now, seams, STIFFNESS * rest.total)
-        damping = settle(state, lambda damping, state=state: state.direction(held, damping),
-                         STEPS // len(exponents_for(goods)), damping)[1]
-        now = state.flat
-    parts = [as_points(now[a:b]) for a, b in zip(begin[:-1], begin[1:], strict=True)]
-    return Matched(parts, used(now), np.split(seams.gaps(now)[0], seams.ends[:-1]))
-
-
-class _Sewn(State):
-    """A State of all pieces with springs along the seams."""
-
-    def __init__(self, rest, energy, flat, seams, stiffness):
-        self.seams, self.stiffness = seams, stiffness
-        super().__init__(rest, energy, flat)
-
-    def worth(self, flat, maps):
-        return super().worth(flat, maps) + 0.5 * self.stiffness * np.sum(self.seams.gaps(flat)[0] ** 2)
-
-    def slope(self, flat, maps):
-        gaps, rows = self.seams.gaps(flat)
-        return super().slope(flat, maps) + self.stiffness * gaps @ rows
-
-    def direction(self, held, damping):
-        rows = self.seams.gaps(self.flat)[1]
-        give = np.concatenate([np.full(len(rows), 1 / self.stiffness), np.zeros(len(held))])
-        return self.newton_direction(damping, np.concatenate([rows, held]), give)
-
-
-class _Seams:
-    """Every joint cut into stretches; `ends` (j,) the number of stretches up to the end of each joint."""
-
-    def __init__(self, points, joints):
-        tails, heads, stretches, sides, self.ends = [], [], [], [], []
-        count = 0
-        for one, other in joints:
-            stretch = count + _stretches(points[one])
-            count = int(stretch[-1]) + 1
-            self.ends.append(count)
-            for side, path in ((1, one), (-1, other)):
-                tails.append(path[:-1])
-                heads.append(path[1:])
-                stretches.append(stretch)
-                sides.append(np.full(len(stretch), side))
-        self.tail, self.head, self.stretch, self.side = (np.concatenate(part) for part in (tails, heads, stretches, sides))
-        self.count = count
-
-    def gaps(self, flat):
-        """((s,) log of length of one side over the other, (s, n) complex derivatives) of every stretch."""
-        step = flat[self.head] - flat[self.tail]
-        length = np.abs(step)
-        one, other = (np.bincount(self.stretch, length * (self.side == side), self.count) for side in (1, -1))
-        pull = self.side * step / length / np.where(self.side > 0, one[self.stretch], other[self.stretch])
-        rows = np.zeros((self.count, len(flat)), dtype=complex)
-        np.add.at(rows, (self.stretch, self.head), pull)
-        np.add.at(rows, (self.stretch, self.tail), -pull)
-        return np.log(one / other), rows
-
-
-def _stretches(path):
-    """(q - 1,) number of the stretch, from 0, that each side of a path (q, 3) lies in: about equal lengths, none empty."""
-    steps = np.linalg.norm(np.diff(path, axis=0), axis=1)
-    number = int(np.clip(steps.sum() / SPACING, 8, 16))
-    stretch = np.minimum(((np.cumsum(steps) - 0.5 * steps) / steps.sum() * number).astype(int), number - 1)
-    return np.cumsum(np.concatenate([[0], np.diff(stretch) > 0]))
+        now, taken, damping, kept = pulled(now, exponent, 1.0, damping)
+        steps += taken
+        if kept and np.abs(gaps.sizes(now)[0]).max() <= EXACT:
+            break
+    if not kept:
+        now, trial, damping = free, free, DAMPING
+        for share in GROWTH:
+            trial, taken, damping, kept = pulled(trial, exponents_for(goods)[-1], share, damping)
+            now, steps = trial if kept else now, steps + taken
+    mismatch = gaps.sizes(now)[0]
+    return Matched([as_points(part) for part in stack.split(now)], used(now).tolist(), np.split(mismatch, gaps.ends[:-1]),
+                   bool(np.abs(mismatch).max() <= goods.mismatch[0]), steps)

@@ -4,11 +4,11 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from ..flat.fence import Fenced
+from ..flat.fence import Push
 from ..flat.flatten import as_complex, as_points
 from ..flat.rest import Rest
 from ..flat.state import State, dot
-from .grain import lay_on_grain, pull, resize
+from .grain import HeldGrain, lay_on_grain, resize
 from .limits import GoodsEnergy, log_and_ratio
 from .measure import area_quantile
 
@@ -41,7 +41,7 @@ def relax_for_goods(surface, flat, goods, comfort=0.0, wanted=None, stages=None,
     on the form is held along +y. A `fence` (flat.fence) keeps a boundary that does not cross itself from doing so.
     """
     rest = Rest(surface)
-    held = None if wanted is None else pull(rest, wanted)[None].astype(complex)
+    held = [] if wanted is None else [HeldGrain([rest], wanted)]
     limits = GoodsEnergy(goods, comfort, 1, 1.0)
 
     def used(flat):
@@ -53,10 +53,10 @@ def relax_for_goods(surface, flat, goods, comfort=0.0, wanted=None, stages=None,
     for exponent in exponents[done:stages]:
         if best[0] <= max(enough, 1e-6):
             break
-        energy = GoodsEnergy(goods, comfort, exponent, used(now))
-        state = Fenced(rest, energy, now, fence) if fence else State(rest, energy, now)
-        taken, damping = settle(state, lambda damping, state=state: state.newton_direction(damping, held, np.zeros(1)),
-                                STEPS // len(exponents), damping)
+        state = State(rest, GoodsEnergy(goods, comfort, exponent, used(now)), now, held)
+        if fence:
+            state = State(rest, state.energy, now, [*held, Push(fence, state.value)])
+        taken, damping = settle(state, STEPS // len(exponents), damping)
         now, steps = resize(rest, state.flat, goods, comfort), steps + taken
         best = min(best, (used(now), now), key=lambda pair: pair[0])
     return Shaped(as_points(best[1]), best[0], steps)
@@ -67,13 +67,13 @@ def exponents_for(goods):
     return EXPONENTS if goods.shear is None else EXPONENTS_WOVEN
 
 
-def settle(state, direction, most, damping):
-    """At most so many steps of a State along direction(damping) while they pay. Returns (steps taken, damping).
+def settle(state, most, damping):
+    """At most so many Newton steps of a State while they pay. Returns (steps taken, damping).
 
     The damping falls after full steps as good as foreseen and rises after shortened ones (Levenberg 1944, Marquardt 1963).
     """
     for step in range(most):
-        before, way = state.value, direction(damping)
+        before, way = state.value, state.newton_direction(damping)
         promise = -dot(state.gradient, way)
         if promise <= 1e-3 * before:
             return step, damping

@@ -1,10 +1,10 @@
 """A fence along the boundary of a flat piece: parts of it that come close push each other away, and none ever cross."""
 
 import numpy as np
+from scipy.sparse import csr_matrix
 from scipy.spatial import cKDTree
 
 from .overlap import overlaps
-from .state import State
 
 REACH = 0.1
 """Gap under which the fence pushes, as a share of the mean side of the outline."""
@@ -18,15 +18,20 @@ class Fence:
     """The outlines of one or several pieces. points (n, 3) on the form; outlines, of each piece (q,) indices in order."""
 
     def __init__(self, points, outlines):
-        self.outlines = outlines
-        sides = [np.linalg.norm(points[np.roll(outline, -1)] - points[outline], axis=1) for outline in outlines]
-        self.tail = np.concatenate(outlines)
-        self.head = np.concatenate([np.roll(outline, -1) for outline in outlines])
-        self.side = np.concatenate(sides)
-        self.around = np.concatenate([np.full(len(s), s.sum()) for s in sides])
-        self.at = np.concatenate([np.cumsum(s) - s for s in sides])
-        self.piece = np.repeat(np.arange(len(outlines)), [len(s) for s in sides])
-        self.reach = REACH * self.side.mean()
+        self._form, self.outlines = points, outlines
+        heads = [np.roll(outline, -1) for outline in outlines]
+        sides = [np.linalg.norm(points[head] - points[tail], axis=1) for tail, head in zip(outlines, heads, strict=True)]
+        if outlines:
+            self.tail, self.head, self.side = (np.concatenate(parts) for parts in (outlines, heads, sides))
+            self.around = np.concatenate([np.full(len(side), side.sum()) for side in sides])
+            self.at = np.concatenate([np.cumsum(side) - side for side in sides])
+            self.piece = np.repeat(np.arange(len(sides)), [len(side) for side in sides])
+            self.reach = REACH * self.side.mean()
+
+    def uncrossed(self, flat):
+        """The Fence of those outlines that do not cross themselves in the flat points (n,) complex; maybe of none."""
+        corners = np.column_stack([flat.real, flat.imag])
+        return Fence(self._form, [outline for outline in self.outlines if not overlaps(corners, outline)])
 
     def crossed(self, flat):
         """True when an outline of the flat points (n,) complex crosses itself."""
@@ -65,34 +70,31 @@ class Fence:
         return point[kept], side[kept]
 
 
-class Fenced(State):
-    """A State within a Fence: (reach / gap - 1)^2 for each close pair (Smith, Schaefer 2015), infinite once crossed."""
+class Push:
+    """What a Fence does `beside` the strain of a State: (reach / gap - 1)^2 for each close pair (Smith, Schaefer 2015).
 
-    def __init__(self, rest, energy, flat, fence):
-        self.fence = fence
-        self.strength = STRENGTH * (rest.area @ energy.density(*rest.maps(flat)))
-        super().__init__(rest, energy, flat)
+    Infinite once an outline crosses itself. `value` is the energy of the State, of which the push gets its share.
+    """
 
-    def worth(self, flat, maps):
-        """As a State's, with the fence's push."""
-        value = super().worth(flat, maps)
-        if not np.isfinite(value) or self.fence.crossed(flat):
+    def __init__(self, fence, value):
+        self.fence, self.strength = fence, STRENGTH * value
+
+    def worth(self, flat):
+        """Energy of the push."""
+        if self.fence.crossed(flat):
             return np.inf
-        return value + self.strength * np.sum((1 / self.fence.gaps(flat)[0] - 1) ** 2)
+        return self.strength * np.sum((1 / self.fence.gaps(flat)[0] - 1) ** 2)
 
-    def slope(self, flat, maps):
-        """As a State's, with the fence's push."""
+    def slope(self, flat):
+        """(n,) complex gradient."""
         gap, ends, pull = self.fence.gaps(flat)
-        slope = super().slope(flat, maps)
+        slope = np.zeros(len(flat), dtype=complex)
         np.add.at(slope, ends, -2 * self.strength * ((1 / gap - 1) / gap**2)[:, None] * pull)
         return slope
 
-    def newton_direction(self, damping=0.0, rows=None, give=None):
-        """As a State's, the fence stiff where it is close."""
-        gap, ends, pull = self.fence.gaps(self.flat)
-        own = np.zeros((len(gap), len(self.flat)), dtype=complex)
-        np.add.at(own, (np.arange(len(gap))[:, None], ends), pull)
-        own_give = 0.5 * gap**4 / (3 - 2 * gap) / self.strength
-        if rows is not None:
-            own, own_give = np.concatenate([own, rows]), np.concatenate([own_give, give])
-        return super().newton_direction(damping, own, own_give)
+    def rows(self, flat):
+        """The gaps of the close pairs, as rows that resist change."""
+        gap, ends, pull = self.fence.gaps(flat)
+        pair = np.repeat(np.arange(len(gap)), 3)
+        rows = csr_matrix((pull.ravel(), (pair, ends.ravel())), shape=(len(gap), len(flat)))
+        return rows, 0.5 * gap**4 / (3 - 2 * gap) / self.strength

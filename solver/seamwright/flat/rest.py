@@ -55,7 +55,7 @@ class Rest:
         return self._to_alpha @ at_alpha + self._to_beta @ at_beta
 
     def stiffness(self, bend, at_alpha, at_beta, floor):
-        """Factors of the (2n, 2n) second derivative of an energy, held at a point of every part.
+        """[(slice of the points, factors)] of the (2n, 2n) second derivative of an energy, held at a point of every part.
 
         bend (r, t) by the direction (at_alpha, at_beta), each (r, t) complex, as from `strain`; floor (t,) is added to the
         second derivatives in all directions. Unknown 2i is x of point i, 2i + 1 its y.
@@ -68,7 +68,7 @@ class Rest:
         plain = (i - j) % 2 == 0
         entries[plain] += 0.5 * floor * self._pull[(i // 2 * (i // 2 + 1) // 2 + j // 2)[plain]]
         pattern, held = self._coordinates
-        return pattern.factor(_held(entries, held))
+        return [(slice(0, self.count), pattern.factor(_held(entries, held)))]
 
     def solver(self, weight):
         """Factors of the Laplacian with (t,) weights, held at a point of every part.

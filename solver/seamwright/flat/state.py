@@ -1,23 +1,31 @@
 """A flat piece on its way: points, strain energy and gradient kept together, steps that never flip a triangle."""
 
 import numpy as np
+from scipy.sparse import vstack
 
 
 class State:
-    """Flat points (n,) complex with their maps, energy (`value`, not per area) and gradient (n,) complex."""
+    """Flat points (n,) complex with their maps, energy (`value`, not per area) and gradient (n,) complex.
 
-    def __init__(self, rest, energy, flat):
-        self.rest, self.energy = rest, energy
+    `beside`: what acts on the points besides the strain. Each has `worth(flat)`, its energy; `slope(flat)`, the gradient of
+    that, (n,) complex; and `rows(flat)`: (m, n) complex csr, sums over the points, Re(conj(row) . flat), that resist change,
+    and the inverse of how much, (m,); 0 resists entirely.
+    """
+
+    def __init__(self, rest, energy, flat, beside=()):
+        self.rest, self.energy, self.beside = rest, energy, beside
         self._take(flat, rest.maps(flat))
 
     def worth(self, flat, maps):
         """Energy of flat points with these maps; infinite where a triangle is flipped."""
-        return self.rest.area @ self.energy.density(*maps)
+        value = self.rest.area @ self.energy.density(*maps)
+        return value + sum(other.worth(flat) for other in self.beside) if np.isfinite(value) else np.inf
 
     def slope(self, flat, maps):
         """(n,) complex gradient of `worth`."""
         at_alpha, at_beta = self.energy.first(*maps)
-        return self.rest.gather(self.rest.area * at_alpha, self.rest.area * at_beta)
+        strain = self.rest.gather(self.rest.area * at_alpha, self.rest.area * at_beta)
+        return sum((other.slope(flat) for other in self.beside), strain)
 
     def step(self, direction):
         """Take the longest halved step that lowers the energy enough, 10 % short of any flip; its length, 0 if none."""
@@ -34,23 +42,36 @@ class State:
             length *= 0.5
         return 0.0
 
-    def newton_direction(self, damping=0.0, rows=None, give=None):
+    def newton_direction(self, damping=0.0):
         """(n,) complex Newton step on the positive part of the Hessian.
 
-        `damping` is the share of the mean stiffness that every triangle gets besides its own. `rows` (m, n) complex are
-        sums over the points, Re(conj(row) . flat), that resist change: a row by the inverse of its `give` (m,), one that
-        gives 0 entirely (Woodbury's formula).
+        `damping` is the share of the mean stiffness that every triangle gets besides its own.
         """
         bend, at_alpha, at_beta = self.energy.second(*self.maps)
         stiffness = 0.25 * (bend * (np.abs(at_alpha) ** 2 + np.abs(at_beta) ** 2)).sum(axis=0)
         floor = 1e-8 * stiffness + damping * (self.rest.area @ stiffness) / self.rest.total
-        factors = self.rest.stiffness(bend, at_alpha, at_beta, floor)
-        direction = -factors.solve(self.gradient.view(float)).view(complex)
-        if rows is not None:
-            real = np.ascontiguousarray(rows).view(float)
-            answers = factors.solve(real.T)
-            pulls = np.linalg.solve(np.diag(give) + real @ answers, real @ direction.view(float))
-            direction -= (answers @ pulls).view(complex)
+        blocks = self.rest.stiffness(bend, at_alpha, at_beta, floor)
+        direction = np.concatenate([-factors.solve(self.gradient[own].view(float)) for own, factors in blocks]).view(complex)
+        resisting = [other.rows(self.flat) for other in self.beside]
+        if not sum(len(give) for _, give in resisting):
+            return direction
+        return self._resisted(direction, blocks, vstack([rows for rows, _ in resisting]).tocsc(),
+                              np.concatenate([give for _, give in resisting]))
+
+    def _resisted(self, direction, blocks, rows, give):
+        """The direction with the resistance of the rows (Woodbury's formula), block by block."""
+        matrix, right, answers = np.diag(give), np.zeros(len(give)), []
+        for own, factors in blocks:
+            part = rows[:, own].tocsr()
+            touched = np.flatnonzero(np.diff(part.indptr))
+            part = part[touched].toarray().view(float)
+            answer = factors.solve(part.T)
+            matrix[np.ix_(touched, touched)] += part @ answer
+            right[touched] += part @ direction[own].view(float)
+            answers.append((own, touched, answer))
+        pulls = np.linalg.solve(matrix, right)
+        for own, touched, answer in answers:
+            direction[own] -= (answer @ pulls[touched]).view(complex)
         return direction
 
     def _take(self, flat, maps):

@@ -1,9 +1,10 @@
 """Lay a piece flat so that it nowhere lies over itself, where the least strained flattening does."""
 
-from .fence import Fence, Fenced
+from .fence import Fence, Push
 from .flatten import DIRICHLET, as_points, disk_loop
 from .rest import Rest
 from .start import best_scale, embedded_start
+from .state import State
 
 ROUND = 5
 """Steps after which the fence is made anew: its strength goes with the energy, which falls."""
@@ -22,7 +23,8 @@ def untangled(surface, most=40):
     fence, flat = Fence(surface.points, [loop]), flat * best_scale(rest, flat)
     for step in range(most):
         if step % ROUND == 0:
-            state = Fenced(rest, DIRICHLET, flat, fence)
+            state = State(rest, DIRICHLET, flat)
+            state = State(rest, DIRICHLET, flat, [Push(fence, state.value)])
         before = state.value
         state.step(state.newton_direction())
         flat = state.flat

@@ -22,7 +22,7 @@ def twin_pieces(network, plane):
     whole = votes.sum(axis=1)
     twin = votes.argmax(axis=1)
     alike = (votes.max(axis=1) > ALIKE * whole) & (twin[twin] == np.arange(count))
-    twin = np.where(alike, twin, -1)
+    twin = np.where(alike & alike[twin], twin, -1)
     lean = np.bincount(piece, area * ((middles - plane.point) @ plane.normal), minlength=count)
     return twin, np.where(twin == np.arange(count), 0, np.sign(lean)).astype(np.int64)
 

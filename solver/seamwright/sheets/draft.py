@@ -14,7 +14,7 @@ DOWN = np.array([1.0, -1.0])
 LEAST_EASE = 1.0
 """Millimetres by which one side of a seam must be longer before its name says so."""
 QUANTITY = 1
-"""Every piece is cut once: mirrored twins are pieces of their own."""
+"""Every piece is cut once: mirrored twins are pieces of their own, left and right."""
 
 
 @dataclass(frozen=True)
@@ -139,6 +139,10 @@ def _heads(pattern, order):
     allowance = f"{goods.allowance * 1000:g} mm allowance included" if goods.allowance else "no allowance"
     full = [piece.name, f"{pattern.form.name}, piece {numbered}, cut {QUANTITY}", f"{goods.name}, face side up",
             f"{allowance}, scale 1:1", grain]
+    alike = next((names for names in pattern.details.get("mirrored", ()) if piece.name in names), ())
+    twins = [name for name in alike if name != piece.name]
+    if twins:
+        full.insert(2, f"mirror image of {' and '.join(twins)}")
     if pattern.version:
         full.append(f"seamwright {pattern.version}")
     return [full, [piece.name, f"{numbered}, cut {QUANTITY}"], [piece.name], [str(order + 1)]]

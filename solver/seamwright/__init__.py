@@ -5,12 +5,12 @@ from .errors import CoverError, FormError, SeamwrightError, WishError
 from .fit.goods import Goods, goods, read_goods
 from .form.form import Form
 from .pattern import Pattern, Piece, Seam
-from .seams import log_scale, seam_energy
+from .seams import crease_weights, log_scale, seam_energy, seen_weights
 from .wishes import Wishes
 
 __version__ = "0.1.0"
 
 __all__ = [
     "CoverError", "Form", "FormError", "Goods", "Pattern", "Piece", "Seam", "SeamwrightError", "WishError", "Wishes",
-    "cover", "goods", "log_scale", "read_goods", "seam_energy",
+    "cover", "crease_weights", "goods", "log_scale", "read_goods", "seam_energy", "seen_weights",
 ]

@@ -13,6 +13,8 @@ from scipy.sparse.csgraph import connected_components
 from ..form.measure import total_area
 from ..form.surface import Surface, components_through
 
+NEAREST = 0.05  # share of an edge that a cut keeps from its ends: less makes needles, more makes the seam zigzag
+
 
 @dataclass
 class Network:
@@ -122,10 +124,10 @@ def trace_chains(surface, marked, nodes=None):
 def cut_through(level, cut, metric):
     """(Network with the cut's seams as edges, (m,) region of each triangle): the route through faces.
 
-    metric: metres over lengths on the level. Cuts keep a tenth of the edge from its ends, so no needle arises.
+    metric: metres over lengths on the level. Cuts keep NEAREST of the edge from its ends.
     """
     surface = level.surface
-    place = np.clip(cut.place, 0.1, 0.9)
+    place = np.clip(cut.place, NEAREST, 1 - NEAREST)
     a, b = surface.edges[cut.edge].T
     points = [surface.points, surface.points[a] + place[:, None] * (surface.points[b] - surface.points[a])]
     number = np.full(len(surface.edges), -1)

@@ -5,6 +5,9 @@ import shapely
 MITRE_LIMIT = 2.0
 """A corner of the cut line lies at most this many allowances from its corner of the stitch line; else bevelled."""
 
+LEDGE = 4.0
+"""mm: notches of the cut line narrower than twice this are filled: knives and scissors do not follow them."""
+
 
 def stitch_area(stitch):
     """The goods inside a stitch line (q, 2) in mm, as a shapely Polygon. Of a line that crosses itself, its largest part."""
@@ -23,7 +26,10 @@ def cut_area(stitch, allowance):
     area = stitch_area(stitch)
     if allowance <= 0:
         return area
-    grown = _largest(area.buffer(allowance, join_style="mitre", mitre_limit=MITRE_LIMIT))
+    even = min(LEDGE, 0.5 * allowance)
+    mitre = MITRE_LIMIT * allowance / (allowance + even)
+    wide = area.buffer(allowance + even, join_style="mitre", mitre_limit=mitre)
+    grown = _largest(wide.buffer(-even, join_style="mitre", mitre_limit=MITRE_LIMIT))
     openings = [ring for ring in grown.interiors if shapely.Polygon(ring).area > allowance**2]
     return shapely.Polygon(grown.exterior, openings)
 

@@ -7,7 +7,6 @@ from ..seams.fields import from_labels, smoothed
 from ..seams.seek import PIECE_PRICE, STEPS, enriched, flow, simplify
 from ..seams.starts import tidied
 from ..seams.study import network_cost
-from .tailor import Tailored
 
 TRIES = 6  # prices tried until length and distortion both fall
 FACTOR = 4.0  # by which the price changes at first
@@ -42,8 +41,7 @@ def improve(tailor, network, thrift, energy, pieces, tell):
             better = after.total + PIECE_PRICE * more <= before.total
         if better:
             return met, False
-    judged = [tailor.judge(network.piece_surface(k)[0], True) for k in range(network.pieces[0])]
-    return tailor.untangled(Tailored(network, judged)), True
+    return tailor.untangled(tailor.judges.all(network, fully=True)), True
 
 
 def _less_of_both(level, begin, energy, before):

@@ -3,7 +3,8 @@
 import numpy as np
 
 from ..errors import CoverError
-from .tailor import Tailored
+from .spare import with_images
+from .tailored import Tailored
 
 
 def joined(tailor, met, pieces):
@@ -24,7 +25,7 @@ def joined(tailor, met, pieces):
 def _without(tailor, met, chain):
     """Tailored without a chain, or where that leaves no disk without part of it (a dart is then left)."""
     for some in ([chain], _halves(chain)):
-        trials = [_trial(tailor, met, tailor.with_images(met.network, one)) for one in some]
+        trials = [_trial(tailor, met, with_images(met.network, one, tailor.planes)) for one in some]
         trials = [trial for trial in trials if trial is not None]
         if trials:
             return trials
@@ -48,7 +49,7 @@ def _trial(tailor, met, group):
         if part.euler != 1 or len(part.boundary_loops) != 1:
             return None
         try:
-            judged.append(met.judged[before[0]] if len(before) == 1 else tailor.judge(part, True))
+            judged.append(met.judged[before[0]] if len(before) == 1 else tailor.judges.piece(part, True))
         except CoverError:
             return None
     trial = Tailored(network, judged)

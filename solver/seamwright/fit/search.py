@@ -160,7 +160,8 @@ class Search:
     def split(self, rung, state, which, places=None):
         """The State with the regions `which` cut in two, as far as MOST_PIECES allows.
 
-        places: for each region the two points (2, 3), on the level's scale, that are to be parted; without, the new seam runs through the point that asks most.
+        places: for each region the two points (2, 3), on the level's scale, that are to be parted; without, the
+        new seam runs through the point that asks most.
         """
         level, labels = self.ladder.levels[rung], state.cut.labels
         which, places = self._with_twins(level, state, which, places)

@@ -45,52 +45,82 @@ def match(surfaces, flats, joints, goods, comfort=0.0, wanted=None):
     """Bring both sides of every joint to one length, stretch by stretch, as far as the goods' limits allow.
 
     surfaces and flats (n, 2), one a piece; joints: (piece, points (q,), piece, points (q,)), points along the seam within
-    the piece; a dart joins a piece to itself. A piece may use its limits fully, or FURTHER than it does already where that
-    is more. Springs pull the sides together; where that would ask more of a piece than it may use, they begin again softly
-    and grow only as far as they may. `wanted`, a direction (3,) on the form, holds each piece's grain along +y. No piece
-    comes to lie over itself. Returns Matched.
+    the piece; a dart joins a piece to itself. Springs pull the sides together while every piece stays within its limits at
+    the wished comfort; else within the hard limits, or FURTHER than it already is beyond them; else the springs begin again
+    softly and grow only as far as that. `wanted`, a direction (3,) on the form, holds each piece's grain along +y. No piece
+    comes to lie over itself. Returns Matched, its utilisation that of the wished comfort.
     """
-    stack = Stack([Rest(surface) for surface in surfaces])
-    points, now = np.concatenate([surface.points for surface in surfaces]), as_complex(np.concatenate(flats))
-    begin = stack.begin[:-1]
-    gaps = Gaps(points, [(begin[a] + at, begin[b] + bt) for a, at, b, bt in joints])
-    fence = Fence(points, [first + surface.boundary_loops[0] for first, surface in zip(begin, surfaces, strict=True)])
-    fence = fence.uncrossed(now)
-    held = [] if wanted is None else [HeldGrain(stack.rests, wanted)]
-    limits = GoodsEnergy(goods, comfort, 1, 1.0)
+    table = _Table(surfaces, flats, joints, wanted)
+    exponents, now, steps = exponents_for(goods), table.free, 0
+    for ease in dict.fromkeys((comfort, 0.0)):
+        limits, damping = _Limits(table, goods, ease), DAMPING
+        for exponent in exponents:
+            if limits.kept(now) and table.largest_gap(now) <= EXACT:
+                break
+            now, taken, damping = table.pulled(now, limits, exponent, 1.0, damping)
+            steps += taken
+        if limits.kept(now):
+            break
+    else:
+        now, trial, damping = table.free, table.free, DAMPING
+        for share in GROWTH:
+            trial, taken, damping = table.pulled(trial, limits, exponents[-1], share, damping)
+            now, steps = trial if limits.kept(trial) else now, steps + taken
+    mismatch = table.gaps.sizes(now)[0]
+    return Matched([as_points(part) for part in table.stack.split(now)], _Limits(table, goods, comfort).used(now).tolist(),
+                   np.split(mismatch, table.gaps.ends[:-1]), bool(np.abs(mismatch).max() <= goods.mismatch[0]), steps)
 
-    def each(flat):
-        return limits.used(*log_and_ratio(*stack.maps(flat)))
 
-    def used(flat):
-        parts = zip(stack.split_faces(each(flat)), stack.rests, strict=True)
+class _Table:
+    """All pieces on one table with the springs between them; free (n,) complex, as they were laid."""
+
+    def __init__(self, surfaces, flats, joints, wanted):
+        self.stack = Stack([Rest(surface) for surface in surfaces])
+        self.free = as_complex(np.concatenate(flats))
+        points, begin = np.concatenate([surface.points for surface in surfaces]), self.stack.begin[:-1]
+        self.gaps = Gaps(points, [(begin[a] + at, begin[b] + bt) for a, at, b, bt in joints])
+        outlines = [first + surface.boundary_loops[0] for first, surface in zip(begin, surfaces, strict=True)]
+        self.fence = Fence(points, outlines).uncrossed(self.free)
+        self.held = [] if wanted is None else [HeldGrain(self.stack.rests, wanted)]
+
+    def largest_gap(self, flat):
+        """Of all stretches."""
+        return np.abs(self.gaps.sizes(flat)[0]).max()
+
+    def pulled(self, flat, limits, exponent, share, damping):
+        """(flat, steps, damping) after some steps with springs of this share of their stiffness."""
+        energy = GoodsEnergy(limits.goods, limits.comfort, exponent, limits.levels(flat))
+        beside = [Springs(self.gaps, share * STIFFNESS * self.stack.total), *self.held]
+        if self.fence.outlines:
+            beside.append(Push(self.fence, self.stack.area @ energy.density(*self.stack.maps(flat))))
+        state = State(self.stack, energy, flat, beside)
+        steps, damping = settle(state, STEPS, damping)
+        return state.flat, steps, damping
+
+
+class _Limits:
+    """What every piece on a _Table may use of the goods' limits at a comfort."""
+
+    def __init__(self, table, goods, comfort):
+        self.stack, self.goods, self.comfort = table.stack, goods, comfort
+        self._energy = GoodsEnergy(goods, comfort, 1, 1.0)
+        free = self.used(table.free)
+        self.may = np.where(free > 1, FURTHER * free, 1.0)
+
+    def each(self, flat):
+        """(t,) utilisation."""
+        return self._energy.used(*log_and_ratio(*self.stack.maps(flat)))
+
+    def used(self, flat):
+        """(p,) utilisation of every piece on 99.5 % of its area."""
+        parts = zip(self.stack.split_faces(self.each(flat)), self.stack.rests, strict=True)
         return np.array([area_quantile(part, rest.area) for part, rest in parts])
 
-    free, may, steps = now, used(now), 0
-    may = np.where(may > 1, FURTHER * may, 1.0)
+    def kept(self, flat):
+        """True when no piece uses more than it may."""
+        return bool((self.used(flat) <= self.may).all())
 
-    def pulled(now, exponent, share, damping):
-        level = may * max(SPARE, (used(now) / may).max())
-        level = np.maximum(level[stack.owner], each(now))  # what is beyond already may stay so
-        energy = GoodsEnergy(goods, comfort, exponent, level)
-        beside = [Springs(gaps, share * STIFFNESS * stack.total), *held]
-        if fence.outlines:
-            beside.append(Push(fence, stack.area @ energy.density(*stack.maps(now))))
-        state = State(stack, energy, now, beside)
-        taken, damping = settle(state, STEPS, damping)
-        return state.flat, taken, damping, bool((used(state.flat) <= may).all())
-
-    damping = DAMPING
-    for exponent in exponents_for(goods):
-        now, taken, damping, kept = pulled(now, exponent, 1.0, damping)
-        steps += taken
-        if kept and np.abs(gaps.sizes(now)[0]).max() <= EXACT:
-            break
-    if not kept:
-        now, trial, damping = free, free, DAMPING
-        for share in GROWTH:
-            trial, taken, damping, kept = pulled(trial, exponents_for(goods)[-1], share, damping)
-            now, steps = trial if kept else now, steps + taken
-    mismatch = gaps.sizes(now)[0]
-    return Matched([as_points(part) for part in stack.split(now)], used(now).tolist(), np.split(mismatch, gaps.ends[:-1]),
-                   bool(np.abs(mismatch).max() <= goods.mismatch[0]), steps)
+    def levels(self, flat):
+        """(t,) where the energy is to be steep: alike for all pieces; what is beyond already may stay so."""
+        level = self.may * max(SPARE, (self.used(flat) / self.may).max())
+        return np.maximum(level[self.stack.owner], self.each(flat))

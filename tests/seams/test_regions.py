@@ -9,7 +9,16 @@ from scipy.sparse.csgraph import connected_components
 from seamwright.form.surface import Surface
 from seamwright.seams.cut import cut_by_fields
 from seamwright.seams.starts import SPECK, starts, tidied
-from seamwright.seams.topology import absorb, make_disks, merged, point_labels, regions, split_components, voronoi
+from seamwright.seams.topology import (
+    absorb,
+    make_disks,
+    merged,
+    nearer,
+    point_labels,
+    regions,
+    split_components,
+    voronoi,
+)
 
 FORMS = {
     "sphere": icosphere(3), "torus": torus(1.0, 0.4, 30, 16), "two holes": two_holes(26), "tube": cylinder(1.0, 2.0, 28),
@@ -159,3 +168,17 @@ def test_points_take_the_label_of_most_of_their_triangles():
     for point in range(0, len(surface.points), 11):
         votes = np.bincount(labels[(surface.triangles == point).any(axis=1)], minlength=3)
         assert got[point] == votes.argmax()
+
+
+def test_points_that_no_place_reaches_go_to_the_first():
+    """Two bands around a sphere, not connected: both places are on the upper one."""
+    level = level_of(FORMS["sphere"])
+    points = level.surface.points
+    height = points[:, 2] / np.abs(points[:, 2]).max()
+    inside = np.flatnonzero(np.abs(height) > 0.5)
+    places = np.array([[-1.0, 0.0, 1.2], [1.0, 0.0, 1.2]])
+    owner = nearer(level, inside, places)
+    upper = height[inside] > 0
+    assert (owner[~upper] == 0).all()
+    assert set(owner[upper].tolist()) == {0, 1}
+    assert (owner[upper & (points[inside, 0] > 0.4)] == 1).all()

@@ -169,10 +169,9 @@ def _graph(level, inside):
 def _distance(graph, seeds):
     """(distance, index of the nearest seed) along edges; points no seed reaches go to seed 0 at a large distance."""
     gap, _, source = dijkstra(graph, directed=False, indices=seeds, min_only=True, return_predecessors=True)
-    place = np.zeros(graph.shape[0] + 1, dtype=np.int64)
+    place = np.zeros(graph.shape[0], dtype=np.int64)
     place[seeds] = np.arange(len(seeds))
-    owner = place[source]  # a negative source (unreached) reads the last place, which is 0
-    return np.where(np.isfinite(gap), gap, 1e6), np.where(source >= 0, owner, 0)
+    return np.where(np.isfinite(gap), gap, 1e6), np.where(source >= 0, place[np.maximum(source, 0)], 0)
 
 
 def point_labels(surface, triangle_labels):

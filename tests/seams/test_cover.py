@@ -8,6 +8,7 @@ import seamwright as sw
 from forms import cap, cube, ellipsoid, frustum, icosphere, starfish, together, torus, wrapped_grid
 from seamwright.form.measure import areas
 from seamwright.form.surface import Surface
+from seamwright.seams.ladder import Ladder
 from seamwright.seams.study import seam_energy
 from shapely.geometry import Polygon
 
@@ -216,3 +217,9 @@ def test_progress_only_rises():
     shares = [share for share, _ in told]
     assert shares == sorted(shares) and 0 <= shares[0] and shares[-1] == 1.0
     assert all(words for _, words in told)
+
+
+def test_a_seed_decides_the_coarse_levels():
+    surface = sw.Form(*ellipsoid(1.0, 0.7, 0.5, 4)).surface
+    first, again, other = (Ladder(surface, seed=seed).levels[0].surface.points for seed in (0, 0, 1))
+    assert first.tobytes() == again.tobytes() != other.tobytes()

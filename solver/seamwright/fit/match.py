@@ -15,7 +15,7 @@ from .measure import area_quantile
 from .shape import DAMPING, exponents_for, settle
 from .springs import Gaps, Springs
 
-STEPS = 5
+STEPS = 12
 """Most Newton steps for each exponent."""
 STIFFNESS = 100.0
 """Of the springs along the seams, per area of the pieces; that of a piece's energy at its limits is under 1e-4."""

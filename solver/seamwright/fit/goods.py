@@ -1,5 +1,6 @@
 """The goods: sheet material and what it takes. Data from TOML, checked key by key; names may be shortened."""
 
+import json
 import re
 import tomllib
 from dataclasses import dataclass
@@ -108,6 +109,29 @@ def read_goods(path):
     if len(read) != 1:
         raise WishError(f"{path}: holds {len(read)} goods; give each its own file with one table, like [canvas].")
     return next(iter(read.values()))
+
+
+def to_toml(goods):
+    """The text of a file that `read_goods` reads these goods from."""
+    lines = [f"[{_quoted(goods.name)}]"]
+    for key, (field, factor) in _KEYS.items():
+        value = getattr(goods, field)
+        if value is None:
+            continue
+        if isinstance(value, tuple):
+            text = "[" + ", ".join(f"{part / factor:.10g}" for part in value) + "]"
+        elif isinstance(value, str):
+            text = _quoted(value)
+        elif isinstance(value, bool):
+            text = str(value).lower()
+        else:
+            text = f"{value / (factor or 1):.10g}"
+        lines.append(f"{key} = {text}")
+    return "\n".join(lines) + "\n"
+
+
+def _quoted(text):
+    return json.dumps(text, ensure_ascii=False)  # a JSON string is a TOML basic string
 
 
 _PERCENT, _DEGREES, _MM = 0.01, radians(1), 0.001

@@ -1,12 +1,14 @@
-"""Seams along edges that exist: every face goes whole to one region, and borders are shortened face by face."""
+"""Seams along edges that exist: every face goes whole to one region, the borders are shortened, then straightened."""
 
 import numpy as np
 
 from ..form.surface import Surface
 from .energy import seam_nodes
+from .fields import redistance
 from .level import triangle_stiffness
 from .network import Network
 from .opened import opened
+from .straighten import corridor, mirrored, straightened
 
 SWEEPS = 12
 
@@ -14,14 +16,21 @@ SWEEPS = 12
 def cut_along(level, cut, polygon, diagonal, metric):
     """Network on the level's own edges. polygon (m,) the maker's face of each triangle; diagonal (e,) bool: edges that only
     triangulation made and that are never seams. metric: metres over lengths on the level."""
-    surface = level.surface
-    labels = _face_labels(level, cut, polygon)
-    labels = _shortened(surface, labels, polygon, level.price)
+    surface = Surface(level.surface.points * metric, level.surface.triangles)
+    gap = np.abs(redistance(level, cut, int(cut.labels.max()) + 1)).min(axis=1) * metric
+    cost, near = corridor(surface, ~diagonal, level.price, gap)
+    labels = _shortened(surface, _face_labels(level, cut, polygon), polygon, cost)
     sides = surface.edge_triangles
-    inner = ~surface.open_edges
-    seam = inner & (labels[polygon[sides[:, 0]]] != labels[polygon[sides[:, 1]]])
-    network = Network(Surface(surface.points * metric, surface.triangles), seam, np.arange(len(surface.triangles)))
-    return opened(_without_specks(network, level), ~diagonal)
+    seam = ~surface.open_edges & (labels[polygon[sides[:, 0]]] != labels[polygon[sides[:, 1]]])
+    network = Network(surface, seam, np.arange(len(surface.triangles)))
+    network = opened(_without_specks(network, level), ~diagonal)
+    a, b = surface.edges[cut.edge].T
+    wished = surface.points[a] + cut.place[:, None] * (surface.points[b] - surface.points[a])
+    network = straightened(network, ~diagonal, cost, near, wished)
+    network = opened(_without_specks(network, level), ~diagonal)
+    for mirror in level.symmetry.mirrors if level.symmetry is not None else ():
+        network = mirrored(network, mirror)
+    return network
 
 
 def _face_labels(level, cut, polygon):
@@ -44,13 +53,12 @@ def _face_labels(level, cut, polygon):
     return share.argmax(axis=1)
 
 
-def _shortened(surface, labels, polygon, price):
-    """Labels after flips of single faces that shorten the priced border, until none does (at most SWEEPS sweeps)."""
+def _shortened(surface, labels, polygon, cost):
+    """Labels after flips of single faces that make the border cheaper, cost (e,); at most SWEEPS sweeps."""
     sides = polygon[surface.edge_triangles]
     inner = np.flatnonzero(~surface.open_edges & (sides[:, 0] != sides[:, 1]))
-    cost = surface.edge_lengths[inner] * price[surface.edges[inner]].mean(axis=1)
     around = {}
-    for (a, b), length in zip(sides[inner].tolist(), cost.tolist(), strict=True):
+    for (a, b), length in zip(sides[inner].tolist(), cost[inner].tolist(), strict=True):
         around.setdefault(a, []).append((b, length))
         around.setdefault(b, []).append((a, length))
     labels = labels.copy()

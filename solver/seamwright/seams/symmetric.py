@@ -18,8 +18,9 @@ SMALLEST = 0.005  # share of the form's area under which what lies on one side o
 class Mirror:
     """One mirror on one level: surface a Surface, plane a Plane on the same scale.
 
-    matrix (n, n) csr reflects fields; right (n,) bool: points on the side of the plane's normal, or on it; image (n,): a
-    point near each point's mirror image; twin (n,): the same among the points on the right, -1 where none is near.
+    matrix (n, n) csr reflects fields; height (n,) signed distance from the plane; right (n,) bool: points on the side of
+    the plane's normal, or on it; image (n,): a point near each point's mirror image; twin (n,): the same among the points
+    on the right, -1 where none is near.
     """
 
     def __init__(self, surface, plane):
@@ -27,8 +28,8 @@ class Mirror:
         self.plane = plane
         self.matrix = reflection(surface, plane)
         self.back = self.matrix.T.tocsr()
-        height = (surface.points - plane.point) @ plane.normal
-        self.right = height > -1e-9 * np.ptp(height)
+        self.height = (surface.points - plane.point) @ plane.normal
+        self.right = self.height > -1e-9 * np.ptp(self.height)
         corners, share = self.matrix.indices.reshape(n, 3), self.matrix.data.reshape(n, 3)
         rows = np.arange(n)
         self.image = corners[rows, share.argmax(axis=1)]

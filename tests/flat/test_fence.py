@@ -38,17 +38,17 @@ WOUND = {"a little over one turn": ring(1.1), "one turn and a half": ring(1.5), 
 def test_what_lies_over_itself_is_laid_apart_without_a_flip(name):
     surface = WOUND[name]
     assert overlaps(flatten(surface).flat, surface.boundary_loops[0])
-    flat = untangled(surface)
+    flat = untangled(surface, flatten(surface).flat)
     assert overlaps(flat, surface.boundary_loops[0]) == []
     u, v = (flat[surface.triangles[:, k]] - flat[surface.triangles[:, 0]] for k in (1, 2))
     assert (u[:, 0] * v[:, 1] - u[:, 1] * v[:, 0] > 0).all()
-    assert untangled(surface).tobytes() == flat.tobytes()
+    assert untangled(surface, flatten(surface).flat).tobytes() == flat.tobytes()
 
 
 def test_no_outside_library_finds_an_overlap():
     shapely = pytest.importorskip("shapely")
     for surface in WOUND.values():
-        outline = shapely.Polygon(untangled(surface)[surface.boundary_loops[0]])
+        outline = shapely.Polygon(untangled(surface, flatten(surface).flat)[surface.boundary_loops[0]])
         assert outline.is_valid
 
 
@@ -56,7 +56,7 @@ def test_a_fence_costs_nothing_where_nothing_is_close():
     surface = Surface(*cap(1.2, 8))
     rest = Rest(surface)
     free, fenced = (rest.area @ DIRICHLET.density(*rest.maps(as_complex(flat)))
-                    for flat in (flatten(surface).flat, untangled(surface)))
+                    for flat in (flatten(surface).flat, untangled(surface, flatten(surface).flat)))
     assert fenced == pytest.approx(free, rel=2e-3)
 
 
@@ -64,7 +64,7 @@ def test_a_ring_wound_too_far_gives_up_no_more_than_it_must():
     # a flat ring that keeps its width and closes at one turn: lengths along it shrink by the turns, at most
     surface = ring(1.1)
     rest = Rest(surface)
-    alpha, beta = rest.maps(as_complex(untangled(surface)))
+    alpha, beta = rest.maps(as_complex(untangled(surface, flatten(surface).flat)))
     worst = max(np.abs(np.log(np.abs(alpha) + np.abs(beta))).max(), np.abs(np.log(np.abs(alpha) - np.abs(beta))).max())
     assert worst < np.log(1.1) * 1.2
 
@@ -73,7 +73,7 @@ def close(seed=0):
     """A piece whose slit is nearly shut, and its fence."""
     surface = ruffle(0.3)
     fence = Fence(surface.points, surface.boundary_loops)
-    return surface, fence, as_complex(untangled(surface))
+    return surface, fence, as_complex(untangled(surface, flatten(surface).flat))
 
 
 def test_gaps_are_the_distances_an_outside_library_finds():
@@ -127,11 +127,11 @@ def test_outlines_that_cross_already_are_left_out():
     surface = ring(1.5)
     fence = Fence(surface.points, surface.boundary_loops)
     assert fence.uncrossed(as_complex(flatten(surface).flat)).outlines == []
-    assert len(fence.uncrossed(as_complex(untangled(surface))).outlines) == 1
+    assert len(fence.uncrossed(as_complex(untangled(surface, flatten(surface).flat))).outlines) == 1
 
 
 def test_crossing_is_never_worth_it():
     surface = ring(1.5)
     push = Push(Fence(surface.points, surface.boundary_loops), 1.0)
-    assert np.isfinite(push.worth(as_complex(untangled(surface))))
+    assert np.isfinite(push.worth(as_complex(untangled(surface, flatten(surface).flat))))
     assert push.worth(as_complex(flatten(surface).flat)) == np.inf

@@ -9,7 +9,7 @@ from ..flat.fence import Fence
 from .measure import area_quantile, areas, utilisation, warp_weft_shear
 from .shape import relax_for_goods
 
-SENSELESS = 2.0
+SENSELESS = 1.6
 """Use of the limits from which a piece needs a split anyway: then its crossings say where."""
 
 
@@ -44,6 +44,6 @@ def judge(surface, goods, comfort=0.0, grain=None, stages=1, start=None, done=0)
     free = judged(flatten(surface).flat if start is None else start, done)
     if not free.crossings or free.utilisation > SENSELESS:
         return free
-    apart = untangled(surface)
+    apart = untangled(surface, free.flat)
     fenced = free if apart is None else judged(apart, 0, Fence(surface.points, [outline]))
     return free if fenced.crossings or fenced.utilisation > SENSELESS else fenced

@@ -7,7 +7,7 @@ import numpy as np
 from ..flat.fence import Push
 from ..flat.flatten import as_complex, as_points
 from ..flat.rest import Rest
-from ..flat.state import State, dot
+from ..flat.state import State
 from .grain import HeldGrain, lay_on_grain, resize
 from .limits import GoodsEnergy, log_and_ratio
 from .measure import area_quantile
@@ -56,7 +56,7 @@ def relax_for_goods(surface, flat, goods, comfort=0.0, wanted=None, stages=None,
         state = State(rest, GoodsEnergy(goods, comfort, exponent, used(now)), now, held)
         if fence:
             state = State(rest, state.energy, now, [*held, Push(fence, state.value)])
-        taken, damping = settle(state, STEPS // len(exponents), damping)
+        taken, damping = state.settle(STEPS // len(exponents), damping, LEAST_GAIN)
         now, steps = resize(rest, state.flat, goods, comfort), steps + taken
         best = min(best, (used(now), now), key=lambda pair: pair[0])
     return Shaped(as_points(best[1]), best[0], steps)
@@ -65,22 +65,3 @@ def relax_for_goods(surface, flat, goods, comfort=0.0, wanted=None, stages=None,
 def exponents_for(goods):
     """The exponents of the energy, rising."""
     return EXPONENTS if goods.shear is None else EXPONENTS_WOVEN
-
-
-def settle(state, most, damping):
-    """At most so many Newton steps of a State while they pay. Returns (steps taken, damping).
-
-    The damping falls after full steps as good as foreseen and rises after shortened ones (Levenberg 1944, Marquardt 1963).
-    """
-    for step in range(most):
-        before, way = state.value, state.newton_direction(damping)
-        promise = -dot(state.gradient, way)
-        if promise <= 1e-3 * before:
-            return step, damping
-        if state.step(way) < 1:
-            damping = min(3 * damping, 1.0)
-        elif before - state.value > 0.35 * promise:
-            damping = max(damping / 2, 1e-5)
-        if before - state.value < LEAST_GAIN * before:
-            return step + 1, damping
-    return most, damping

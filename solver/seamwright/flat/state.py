@@ -74,6 +74,25 @@ class State:
             direction[own] -= (answer @ pulls[touched]).view(complex)
         return direction
 
+    def settle(self, most, damping, least_gain):
+        """At most so many Newton steps, while one lowers the energy by `least_gain` of it. Returns (steps taken, damping).
+
+        The damping falls after full steps as good as foreseen and rises after shortened ones (Levenberg 1944, Marquardt
+        1963).
+        """
+        for step in range(most):
+            before, way = self.value, self.newton_direction(damping)
+            promise = -dot(self.gradient, way)
+            if promise <= 1e-3 * before:
+                return step, damping
+            if self.step(way) < 1:
+                damping = min(3 * damping, 1.0)
+            elif before - self.value > 0.35 * promise:
+                damping = max(damping / 2, 1e-5)
+            if before - self.value < least_gain * before:
+                return step + 1, damping
+        return most, damping
+
     def _take(self, flat, maps):
         self.flat, self.maps = flat, maps
         self.value, self.gradient = self.worth(flat, maps), self.slope(flat, maps)

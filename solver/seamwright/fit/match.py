@@ -12,7 +12,7 @@ from ..flat.state import State
 from .grain import HeldGrain
 from .limits import GoodsEnergy, log_and_ratio
 from .measure import area_quantile
-from .shape import DAMPING, LEAST_GAIN, exponents_for
+from .shape import DAMPING, exponents_for, settle
 from .springs import Gaps, Springs
 
 STEPS = 12
@@ -94,7 +94,7 @@ class _Table:
         if self.fence.outlines:
             beside.append(Push(self.fence, self.stack.area @ energy.density(*self.stack.maps(flat))))
         state = State(self.stack, energy, flat, beside)
-        steps, damping = state.settle(STEPS, damping, LEAST_GAIN)
+        steps, damping = settle(state, STEPS, damping)
         return state.flat, steps, damping
 
 

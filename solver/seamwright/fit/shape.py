@@ -56,7 +56,7 @@ def relax_for_goods(surface, flat, goods, comfort=0.0, wanted=None, stages=None,
         state = State(rest, GoodsEnergy(goods, comfort, exponent, used(now)), now, held)
         if fence:
             state = State(rest, state.energy, now, [*held, Push(fence, state.value)])
-        taken, damping = state.settle(STEPS // len(exponents), damping, LEAST_GAIN)
+        taken, damping = settle(state, STEPS // len(exponents), damping)
         now, steps = resize(rest, state.flat, goods, comfort), steps + taken
         best = min(best, (used(now), now), key=lambda pair: pair[0])
     return Shaped(as_points(best[1]), best[0], steps)
@@ -65,3 +65,8 @@ def relax_for_goods(surface, flat, goods, comfort=0.0, wanted=None, stages=None,
 def exponents_for(goods):
     """The exponents of the energy, rising."""
     return EXPONENTS if goods.shear is None else EXPONENTS_WOVEN
+
+
+def settle(state, most, damping):
+    """At most so many Newton steps of a State while they pay; returns (steps taken, damping)."""
+    return state.settle(most, damping, LEAST_GAIN)

@@ -8,6 +8,7 @@ import numpy as np
 
 from ..seams.network import cut_through
 from ..seams.opened import edges_in, halves_border, opened
+from .darts import darted
 from .foresee import reach
 from .lessons import lobes, piece_of_region, spread, worst
 from .search import MOST_PIECES, Search
@@ -58,7 +59,7 @@ class Tailor:
         met = self.confirmed(top, state, spare)
         if len(met.network.chains) <= FEW_CHAINS:  # what the coarse rung thought needed, the form itself may not
             met = self.dropped(met, ENOUGH, fully=True, halves=False)[0]
-        return self.sewn(met)
+        return self.sewn(darted(self.judges, met))
 
     def sewn(self, met):
         """The Tailored with the two sides of its seams matched, where the goods allow it."""

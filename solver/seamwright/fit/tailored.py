@@ -3,6 +3,7 @@
 from dataclasses import dataclass, replace
 
 from .judge import judge
+from .resigned import resigned
 
 ENOUGH = 1.0  # real use of the limits that counts as fitting
 SHAPED, SHAPED_WOVEN = 0.93, 0.65  # full shaping brings the use down to about this share of what the first stage reaches
@@ -50,6 +51,8 @@ class Judges:
             one = judge(surface, self.goods, self.comfort, self.grain, stages=1)
             if fully and ENOUGH < one.utilisation < FAR:
                 one = judge(surface, self.goods, self.comfort, self.grain, stages=None)
+            if fully and one.utilisation > ENOUGH:
+                one = resigned(surface, one, self.goods, self.comfort, self.grain)
             share = 1.0 if fully else SHAPED if self.goods.shear is None else SHAPED_WOVEN
             self.known[key] = replace(one, utilisation=one.utilisation * share)
         return self.known[key]

@@ -52,22 +52,23 @@ def match(surfaces, flats, joints, goods, comfort=0.0, wanted=None):
     """
     table = _Table(surfaces, flats, joints, wanted)
     exponents, now, steps = exponents_for(goods), table.free, 0
-    for ease in dict.fromkeys((comfort, 0.0)):
-        limits, damping = _Limits(table, goods, ease), DAMPING
+    wished, hard = _Limits(table, goods, comfort), _Limits(table, goods, 0.0)
+    for limits in (wished, hard):
+        damping = DAMPING
         for exponent in exponents:
-            if limits.kept(now) and table.largest_gap(now) <= EXACT:
+            if limits.kept(now) and hard.kept(now) and table.largest_gap(now) <= EXACT:
                 break
             now, taken, damping = table.pulled(now, limits, exponent, 1.0, damping)
             steps += taken
-        if limits.kept(now):
+        if limits.kept(now) and hard.kept(now):
             break
     else:
         now, trial, damping = table.free, table.free, DAMPING
         for share in GROWTH:
-            trial, taken, damping = table.pulled(trial, limits, exponents[-1], share, damping)
-            now, steps = trial if limits.kept(trial) else now, steps + taken
+            trial, taken, damping = table.pulled(trial, hard, exponents[-1], share, damping)
+            now, steps = trial if hard.kept(trial) else now, steps + taken
     mismatch = table.gaps.sizes(now)[0]
-    return Matched([as_points(part) for part in table.stack.split(now)], _Limits(table, goods, comfort).used(now).tolist(),
+    return Matched([as_points(part) for part in table.stack.split(now)], wished.used(now).tolist(),
                    np.split(mismatch, table.gaps.ends[:-1]), bool(np.abs(mismatch).max() <= goods.mismatch[0]), steps)
 
 

@@ -20,7 +20,7 @@ class Pattern:
 
     def __init__(self, row, column, count, order=None):
         self.row, self.column, self.count = row, column, count
-        self.order = narrow_order(row, column, count) if order is None else order
+        self.order = _narrow_order(row, column, count) if order is None else order
         place = np.empty(count, dtype=np.int64)
         place[self.order] = np.arange(count)
         row, column = place[row], place[column]
@@ -50,10 +50,11 @@ class Pattern:
 def factor(matrix):
     """Factors of a sparse symmetric positive definite matrix (n, n), as by `Pattern.factor`."""
     lower = tril(matrix).tocoo()
-    return Pattern(lower.row, lower.col, matrix.shape[0]).factor(lower.data)
+    order = reverse_cuthill_mckee(matrix.tocsr(), symmetric_mode=True)
+    return Pattern(lower.row, lower.col, matrix.shape[0], order).factor(lower.data)
 
 
-def narrow_order(row, column, count):
+def _narrow_order(row, column, count):
     """(n,) an order of the unknowns in which pairs (e,) stand close together."""
     graph = coo_matrix((np.ones(2 * len(row)), (np.append(row, column), np.append(column, row))), shape=(count, count))
     return reverse_cuthill_mckee(graph.tocsr(), symmetric_mode=True)

@@ -13,9 +13,10 @@ ASIDE = 1.5
 
 def make(thing, pattern, scene, old=None):
     """(object, metres across its UVs): the covered copy of `thing`, new or, where `old` is one, in its place."""
-    mesh, across = mesh_of(pattern, scene.unit_settings.scale_length)
+    mesh = bpy.data.meshes.new(f"{pattern.form.name} covered")
     centre = np.array(thing.matrix_world.translation)
-    mesh.vertices.foreach_set("co", (positions(mesh) - centre).astype(np.float32).ravel())
+    across = fill(mesh, pattern, lambda points: points / scene.unit_settings.scale_length - centre)
+    _colour(mesh)
     if any(face.use_smooth for face in thing.data.polygons):
         mesh.shade_smooth()
     mesh.update()
@@ -35,16 +36,18 @@ def make(thing, pattern, scene, old=None):
     return copy, across
 
 
-def mesh_of(pattern, scale_length):
-    """(mesh, metres across its UVs) of the pieces, welded where they are sewn; in world coordinates, in scene units."""
+def fill(mesh, pattern, place):
+    """Make the empty `mesh` that of the pieces, marked and welded where they are sewn; returns metres across its UVs.
+
+    place: gives the mesh's own (n, 3) coordinates of points in the world, metres.
+    """
     stacked = np.concatenate([piece.points for piece in pattern.pieces])
     starts = np.cumsum([0, *(len(piece.points) for piece in pattern.pieces)])[:-1]
     points, weld = np.unique(stacked, axis=0, return_inverse=True)  # pieces agree to the last bit along seams
     weld = weld.ravel()
     stacked_triangles = [piece.triangles + start for piece, start in zip(pattern.pieces, starts, strict=True)]
     triangles = weld[np.concatenate(stacked_triangles)]
-    mesh = bpy.data.meshes.new(f"{pattern.form.name} covered")
-    mesh.from_pydata((points / scale_length).astype(np.float32), (), triangles)
+    mesh.from_pydata(place(points).astype(np.float32), (), triangles)
     places, across = lay(pattern)
     uvs = [((piece.flat + place) / across)[piece.triangles].reshape(-1, 2)
            for piece, place in zip(pattern.pieces, places, strict=True)]
@@ -53,8 +56,7 @@ def mesh_of(pattern, scale_length):
     marks.set_attribute(mesh, names.PIECE, "INT", piece_of)
     marks.set_attribute(mesh, names.STRETCH, "FLOAT", np.concatenate([marks.worst_of(p.stretch) for p in pattern.pieces]))
     marks.set_seams(mesh, _sewn(mesh, pattern, weld, starts))
-    _colour(mesh, piece_of)
-    return mesh, across
+    return across
 
 
 def _sewn(mesh, pattern, weld, starts):
@@ -66,17 +68,19 @@ def _sewn(mesh, pattern, weld, starts):
     return np.isin(np.sort(edges(mesh), axis=1) @ (count, 1), keys[uses > 1])
 
 
-def _colour(mesh, piece_of):
+def _colour(mesh):
     """Give every piece its colour, by materials; the first pieces' colours, then again from the start."""
     from seamwright.sheets.colours import PIECES
 
+    piece_of = np.empty(len(mesh.polygons), np.int32)
+    mesh.attributes[names.PIECE].data.foreach_get("value", piece_of)
     for number, colour in enumerate(PIECES[:piece_of.max() + 1], 1):
         name = f"{names.MATERIAL} {number}"
         material = bpy.data.materials.get(name) or bpy.data.materials.new(name)
         material.diffuse_color = [_linear(int(colour[k:k + 2], 16) / 255) for k in (1, 3, 5)] + [1.0]
         mesh.materials.append(material)
     mesh.attributes.new("material_index", "INT", "FACE")
-    mesh.attributes["material_index"].data.foreach_set("value", (piece_of % len(PIECES)).astype(np.int32))
+    mesh.attributes["material_index"].data.foreach_set("value", piece_of % len(PIECES))
 
 
 def _linear(value):

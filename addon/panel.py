@@ -65,13 +65,15 @@ class SEAMWRIGHT_PT_wishes(_Tab, bpy.types.Panel):
         layout.prop(wishes, "comfort")
         layout.prop(wishes, "grain")
         layout.prop(wishes, "route", expand=True)
+        if wishes.route == "through":
+            layout.prop(wishes, "cut_itself")
+        layout.prop(wishes, "symmetry")
         layout.prop_search(wishes, "keep_clear", context.object, "vertex_groups")
         self._chosen(layout, wishes, "choose_pieces", "pieces")
         self._chosen(layout, wishes, "choose_thrift", "thrift")
         row = layout.row()
         row.scale_y = 1.4
         row.operator(names.COVER, icon="MOD_CLOTH")
-
 
     @staticmethod
     def _chosen(layout, wishes, choice, value):
@@ -94,7 +96,7 @@ class SEAMWRIGHT_UL_pieces(bpy.types.UIList):
 
 
 def _columns(layout, name, fit, stretch, icon="NONE"):
-    left = layout.split(factor=0.25)
+    left = layout.split(factor=0.34)
     left.label(text=name)
     right = left.split(factor=0.58)
     right.label(text=fit, icon=icon)

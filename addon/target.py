@@ -3,7 +3,7 @@
 import bpy
 import numpy as np
 
-from . import covered, marks, names, read, result
+from . import covered, cut, marks, names, read, result
 from .wishes import OWN
 
 
@@ -35,8 +35,37 @@ def check(thing, asked, depsgraph):
         raise Refused(f"{thing.name}: it has no vertex group {painted!r} to keep clear; choose another, or none.")
     if asked["goods"] == OWN and not asked["own_goods"]:
         raise Refused(f"{thing.name}: choose the file of your own goods.")
-    if asked["route"] != "edges":
-        return
+    if asked["cut_itself"] and asked["route"] == "through":
+        _check_cut(thing)
+    if asked["route"] == "edges":
+        _check_edges(thing, depsgraph)
+
+
+def _check_cut(thing):
+    """Raise Refused where the mesh cannot be cut itself without harm to something else."""
+    mesh, copy = thing.data, "or leave it as it is and have a covered copy made (Cut the Mesh Itself off)."
+    if mesh.library is not None or mesh.override_library is not None:
+        raise Refused(f"{thing.name}: its mesh is linked from another file, so it cannot be cut. "
+                      f"Make it local (Object > Relations > Make Local), {copy}")
+    if thing.mode != "OBJECT":
+        raise Refused(f"{thing.name}: go back to Object Mode first, so that its mesh can be cut.")
+    users = mesh.users - mesh.use_fake_user
+    if users > 1:
+        raise Refused(f"{thing.name}: its mesh has {users} users, and the cuts would be in all of them. "
+                      f"Make it single-user first (Object > Relations > Make Single User), {copy}")
+    if mesh.shape_keys is not None:
+        raise Refused(f"{thing.name}: its shape keys would be lost with the points they move. "
+                      f"Apply them first (Object Data > Shape Keys > Apply All Shape Keys), {copy}")
+    if len(thing.modifiers):
+        raise Refused(f"{thing.name}: its modifiers would work on the cut mesh once more. "
+                      f"Apply them first (Object > Apply > Visual Geometry to Mesh), {copy}")
+    if thing.matrix_world.determinant() == 0.0:
+        raise Refused(f"{thing.name}: it is scaled to nothing along an axis, so its mesh cannot be cut in its place. "
+                      f"Apply the scale first (Object > Apply > Scale), {copy}")
+
+
+def _check_edges(thing, depsgraph):
+    """Raise Refused where seams cannot be marked on the edges of the mesh."""
     if thing.data.library is not None or thing.data.override_library is not None:
         raise Refused(f"{thing.name}: its mesh is linked from another file, so no seams can be marked on it. "
                       "Make it local (Object > Relations > Make Local), or choose route through.")
@@ -77,6 +106,11 @@ def lay_in(thing, pattern, path, asked, scene):
         kept.copy, kept.across = None, marks.mark(thing.data, pattern)
         if thing.data.users > 1:
             summary["notes"].append(f"The mesh is shared by {thing.data.users} objects; all of them show these seams.")
+    elif asked["cut_itself"]:
+        lost = cut.would_be_lost(thing.data)
+        kept.copy, kept.across = None, cut.cut(thing, pattern, scene)
+        if lost:
+            summary["notes"].append(f"The mesh was cut itself; gone with its old faces: {', '.join(lost)}.")
     else:
         old = kept.copy if kept.copy is not None and kept.copy.name in scene.objects else None
         kept.copy, kept.across = covered.make(thing, pattern, scene, old)

@@ -52,6 +52,12 @@ class WishesGroup(bpy.types.PropertyGroup):
             ("through", "Through", "Seams run through faces; a covered copy with the seams cut in is made beside the form"),
             ("edges", "Edges", "Seams run along edges that exist; they are marked on this mesh, whose shape stays as it is"),
         ))
+    cut_itself: bpy.props.BoolProperty(
+        name="Cut the Mesh Itself", description="Cut the seams into this mesh, instead of making a covered copy beside it: "
+        "its faces become triangles, and only what the pattern, its materials and vertex groups need is kept on it")
+    symmetry: bpy.props.BoolProperty(
+        name="Keep Symmetry", description="Where the form is its own mirror image the seams are too; otherwise they lie "
+        "as is best for every part", default=True)
     grain: bpy.props.EnumProperty(
         name="Grain", description="The way the warp runs on the form, from foot to head", default="best", items=(
             ("best", "Best for Each Piece", "Every piece lies on the goods as it stretches least"),
@@ -72,7 +78,8 @@ class WishesGroup(bpy.types.PropertyGroup):
         "more gives fewer seams and more stretch", default=0.1, min=1e-6, soft_max=10.0, max=1e6, precision=4)
 
     def asked(self):
-        """The wishes as plain data, ready for JSON: keyword arguments of the solver's Wishes, and `own_goods`, a path.
+        """The wishes as plain data, ready for JSON: keyword arguments of the solver's Wishes, and of our own
+        `own_goods`, a path, and `cut_itself`.
 
         Only the weights to keep clear are not among them: they come with the Reading.
         """
@@ -82,6 +89,8 @@ class WishesGroup(bpy.types.PropertyGroup):
             "own_goods": bpy.path.abspath(self.own_goods) if self.goods == OWN else None,
             "comfort": round(self.comfort, 6),
             "route": self.route,
+            "cut_itself": self.cut_itself,
+            "symmetry": "auto" if self.symmetry else "none",
             "grain": None if axis is None else list(self.id_data.matrix_world.col[axis].xyz.normalized()),
             "thrift": float(f"{self.thrift:.6g}") if self.choose_thrift else None,
             "pieces": self.pieces if self.choose_pieces else None,

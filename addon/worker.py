@@ -21,6 +21,7 @@ def wishes_of(asked, keep_clear=()):
 
     plain = dict(asked)
     own = plain.pop("own_goods", None)
+    plain.pop("cut_itself", None)  # where the answer goes is the host's affair
     if own:
         plain["goods"] = sw.read_goods(own)
     return sw.Wishes(**plain, keep_clear=keep_clear if len(keep_clear) else None)

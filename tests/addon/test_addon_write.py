@@ -7,6 +7,7 @@ import numpy as np
 import pytest
 
 from addon import names, overlay
+from addon.job import load
 
 
 def faces_of(mesh):
@@ -203,3 +204,22 @@ def test_the_view_shows_the_seams(ball, route):
     expected = np.array([list(covered.matrix_world @ covered.data.vertices[k].co) for edge in seams for k in edge.vertices])
     apart = np.linalg.norm(ends - expected, axis=1)
     assert (apart < 0.005 * 0.4).all() and (apart > 0).all()  # just above the form, which is 0.4 m across
+
+
+@pytest.mark.parametrize("keep", [True, False])
+def test_symmetry_is_kept_where_it_is_wished(keep):
+    bpy.ops.mesh.primitive_uv_sphere_add(segments=12, ring_count=8, radius=0.2)
+    egg = bpy.context.object
+    egg.scale = (1, 1.3, 1.7)
+    bpy.context.view_layer.update()
+    wishes = egg.seamwright.wishes
+    wishes.goods, wishes.choose_pieces, wishes.pieces, wishes.symmetry = "spandex", True, 4, keep
+    bpy.ops.seamwright.cover()
+    result = egg.seamwright.result
+    pattern, rows = load(result.path), [row.name for row in result.pieces]
+    assert bool(pattern.details["planes"]) == keep == ({"A left", "A right"} <= set(rows))
+    assert rows == [piece.name for piece in pattern.pieces]
+    if keep:  # the copy numbers the pieces as the table does: what is called right lies at the larger x
+        points, number = faces_of(result.copy.data)[0], attribute(result.copy.data, names.PIECE)
+        left, right = (places(result.copy.data)[points[number == rows.index(name)], 0] for name in ("A left", "A right"))
+        assert right.mean() > 0 > left.mean() and np.ptp(right) == pytest.approx(np.ptp(left), rel=0.02)

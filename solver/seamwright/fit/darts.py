@@ -34,10 +34,11 @@ def _with_dart(judges, met, piece):
     """(edges of the network that become the dart, Judged with it), or None where it does not help."""
     network, old = met.network, met.judged[piece]
     part, _, triangles = network.piece_surface(piece)
-    way = _way_to_edge(part, _worst_point(part, old.each))
+    edge_of = edges_in(network, part, triangles)
+    way = _way_to_edge(part, _worst_point(part, old.each), network.allowed[edge_of])
     if len(way) < NARROWEST:
         return None
-    edges = edges_in(network, part, triangles)[part.edge_index(np.column_stack([way[:-1], way[1:]]))]
+    edges = edge_of[part.edge_index(np.column_stack([way[:-1], way[1:]]))]
     cut = network.with_seams(edges).part_surface(triangles)[0]
     if cut.euler != 1 or len(cut.boundary_loops) != 1:
         return None
@@ -56,10 +57,10 @@ def _worst_point(part, each):
     return int(np.argmax(np.where(open_points(part), -1.0, mean)))
 
 
-def _way_to_edge(part, point):
-    """(q,) points of the shortest way along edges from the piece's edge to a point."""
+def _way_to_edge(part, point, allowed):
+    """(q,) points of the shortest way along the allowed edges (e,) from the piece's edge to a point."""
     n = len(part.points)
-    graph = coo_matrix((part.edge_lengths, tuple(part.edges.T)), shape=(n, n)).tocsr()
+    graph = coo_matrix((part.edge_lengths[allowed], tuple(part.edges[allowed].T)), shape=(n, n)).tocsr()
     gap, before = dijkstra(graph, directed=False, indices=point, return_predecessors=True)
     rim = np.flatnonzero(open_points(part))
     way = [int(rim[np.argmin(gap[rim])])]

@@ -5,29 +5,34 @@ from dataclasses import replace
 import numpy as np
 
 from ..flat import overlaps
+from ..form.measure import total_area
 from ..pattern import STRAINED
 from ..seams.sides import joints
 from .match import match
-from .measure import measure, utilisation, warp_weft_shear
+from .measure import SLACK, measure, utilisation, warp_weft_shear
 
 
 def sewn(network, judged, goods, comfort, grain=None):
-    """List of Judged, one a piece, with both sides of every seam matched; as they were where that would strain a piece
-    beyond the goods' hard limits (or further beyond) or lay one over itself. Comfort gives way to seams that go together."""
+    """List of Judged, one a piece, with both sides of every seam matched.
+
+    As they were where that would strain a piece that was not, put more than SLACK of the form further beyond the hard
+    limits, or lay a piece over itself. Comfort gives way to seams that go together.
+    """
     seams = [(joint.left.piece, joint.left.points, joint.right.piece, joint.right.points)
              for joint in joints(network) if joint.right is not None]
     if not seams:
         return judged
     surfaces = [network.piece_surface(piece)[0] for piece in range(network.pieces[0])]
     matched = match(surfaces, [one.flat for one in judged], seams, goods, comfort, grain)
-    new = []
+    new, worse = [], 0.0
     for surface, flat, use, old in zip(surfaces, matched.flats, matched.utilisation, judged, strict=True):
         crossings = overlaps(flat, surface.boundary_loops[0])
         if not np.isfinite(flat).all() or (crossings and not old.crossings):
             return judged
         now, before = (measure(surface.points, surface.triangles, one, goods, comfort) for one in (flat, old.flat))
-        if now.fit == STRAINED and now.beyond > before.beyond:
+        if now.fit == STRAINED and before.fit != STRAINED:
             return judged
+        worse += (now.beyond - before.beyond) * total_area(surface)
         each = utilisation(warp_weft_shear(surface.points, surface.triangles, flat), goods, comfort)
         new.append(replace(old, utilisation=use, each=each, flat=flat, crossings=crossings))
-    return new
+    return new if worse <= SLACK * network.surface_area else judged

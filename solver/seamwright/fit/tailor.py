@@ -133,7 +133,8 @@ class Tailor:
             network = met.network
             triangles = np.flatnonzero(network.pieces[1] == crossed[0])
             part = network.part_surface(triangles)[0]
-            border = halves_border(part, lobes(part, met.judged[crossed[0]]))
+            face = None if network.face is None else network.face[triangles]
+            border = halves_border(part, lobes(part, met.judged[crossed[0]]), face)
             trial = opened(network.with_seams(edges_in(network, part, triangles)[border]))
             judged = []
             for piece in range(trial.pieces[0]):

@@ -3,7 +3,7 @@
 This is the state that ends up on the cutting table: slits, darts and seams that close one piece are all just seam edges.
 """
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cached_property
 
 import numpy as np
@@ -18,11 +18,19 @@ NEAREST = 0.05  # share of an edge that a cut keeps from its ends: less makes ne
 
 @dataclass
 class Network:
-    """surface: the form with the seams as edges; seam (e,) bool; source (m,) the form's triangle each triangle lies in."""
+    """surface: the form with the seams as edges; seam (e,) bool; source (m,) the form's triangle each triangle lies in;
+    face (m,): the maker's face of each triangle where faces must stay whole, None where seams may run through them."""
 
     surface: Surface
     seam: np.ndarray
     source: np.ndarray
+    face: np.ndarray | None = None
+
+    @cached_property
+    def allowed(self):
+        """(e,) bool: edges that may be seams."""
+        sides = self.surface.edge_triangles
+        return self.surface.open_edges | (True if self.face is None else self.face[sides[:, 0]] != self.face[sides[:, 1]])
 
     @cached_property
     def pieces(self):
@@ -70,13 +78,13 @@ class Network:
         """The network with one chain's edges no longer seams."""
         seam = self.seam.copy()
         seam[self.surface.edge_index(np.column_stack([chain[:-1], chain[1:]]))] = False
-        return Network(self.surface, seam, self.source)
+        return replace(self, seam=seam)
 
     def with_seams(self, edges):
         """The network with more edges (k,) as seams."""
         seam = self.seam.copy()
         seam[edges] = True
-        return Network(self.surface, seam, self.source)
+        return replace(self, seam=seam)
 
     @cached_property
     def surface_area(self):

@@ -10,8 +10,9 @@ from scipy.sparse.csgraph import dijkstra, minimum_spanning_tree
 
 
 def opened(network, allowed=None):
-    """The Network with seams added so that every piece is a disk. allowed (e,) bool: edges that may become seams."""
-    allowed = np.ones(len(network.seam), dtype=bool) if allowed is None else allowed
+    """The Network with seams added so that every piece is a disk. allowed (e,) bool: edges that may become seams, by
+    default those that the network allows."""
+    allowed = network.allowed if allowed is None else allowed
     extra = []
     for piece in range(network.pieces[0]):
         part, points, triangles = network.piece_surface(piece)
@@ -84,14 +85,18 @@ def _way_back(part, before, point):
 
 
 
-def halves_border(part, pair):
+def halves_border(part, pair, face=None):
     """Edges (k,) of a connected surface that part its triangles by which of a pair of its points they are nearer to.
 
-    Distance is along edges. Empty where one half would have no triangle.
+    Distance is along edges. Triangles of one face (t,), where that is given, go together. Empty where one half would have
+    no triangle.
     """
     n = len(part.points)
     graph = coo_matrix((part.edge_lengths, tuple(part.edges.T)), shape=(n, n)).tocsr()
     gaps = dijkstra(graph, directed=False, indices=pair)
-    near = (gaps[0] - gaps[1])[part.triangles].mean(axis=1) > 0
+    ahead = (gaps[0] - gaps[1])[part.triangles].mean(axis=1)
+    if face is not None:
+        ahead = np.bincount(face, ahead)[face]
+    near = ahead > 0
     sides = part.edge_triangles
     return np.flatnonzero(~part.open_edges & (near[sides[:, 0]] != near[sides[:, 1]]))

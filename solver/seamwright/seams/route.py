@@ -1,5 +1,7 @@
 """Seams along edges that exist: every face goes whole to one region, the borders are shortened, then straightened."""
 
+from dataclasses import replace
+
 import numpy as np
 
 from ..form.surface import Surface
@@ -30,7 +32,7 @@ def cut_along(level, cut, polygon, diagonal, metric):
     network = opened(_without_specks(network, level), ~diagonal)
     for mirror in level.symmetry.mirrors if level.symmetry is not None else ():
         network = mirrored(network, mirror)
-    return network
+    return replace(network, face=polygon)
 
 
 def _face_labels(level, cut, polygon):

@@ -27,12 +27,12 @@ class Judged:
     crossings: list
 
 
-def judge(surface, goods, comfort=0.0, grain=None, stages=1, start=None, done=0):
+def judge(surface, goods, comfort=0.0, grain=None, stages=1, start=None, done=0, senseless=SENSELESS):
     """Flatten a disk, shape it for the goods with the first `stages` exponents (None: all), and measure the outcome.
 
     A piece that fits by this fits: more shaping only helps. Stops as soon as it does. Begins from `start`, a flip-free flat
     (n, 2) that has been through the first `done` exponents, where that is known. A piece that then lies over itself is
-    shaped again within a fence, and left as it was only where that asks more than SENSELESS of the limits.
+    shaped again within a fence, and left as it was only where that asks more than `senseless` of the limits.
     """
     outline = surface.boundary_loops[0]
 
@@ -42,8 +42,8 @@ def judge(surface, goods, comfort=0.0, grain=None, stages=1, start=None, done=0)
         return Judged(area_quantile(each, areas(surface.points, surface.triangles)), each, flat, overlaps(flat, outline))
 
     free = judged(flatten(surface).flat if start is None else start, done)
-    if not free.crossings or free.utilisation > SENSELESS:
+    if not free.crossings or free.utilisation > senseless:
         return free
     apart = untangled(surface, free.flat)
     fenced = free if apart is None else judged(apart, 0, Fence(surface.points, [outline]))
-    return free if fenced.crossings or fenced.utilisation > SENSELESS else fenced
+    return free if fenced.crossings or fenced.utilisation > senseless else fenced

@@ -73,7 +73,7 @@ def _without(judges, met, group, limit, fully, most):
         if piece_use(part, most) > 1:
             return None, np.inf
         try:
-            judged[new] = judges.piece(part, fully)
+            judged[new] = judges.piece(part, fully, senseless=limit)
         except CoverError:
             return None, np.inf
         worst = max(worst, judged[new].utilisation)

@@ -2,7 +2,7 @@
 
 from dataclasses import dataclass, replace
 
-from .judge import judge
+from .judge import SENSELESS, judge
 from .resigned import resigned
 
 ENOUGH = 1.0  # real use of the limits that counts as fitting
@@ -41,19 +41,21 @@ class Judges:
         self.goods, self.comfort, self.grain = goods, comfort, grain
         self.known = {}
 
-    def piece(self, surface, fully):
+    def piece(self, surface, fully, senseless=SENSELESS):
         """Judged for one piece: shaped for the goods fully, or so far that the rest can be foreseen. Remembered.
 
-        What fits, or is far from fitting, after the first stage of shaping is not shaped further.
+        What fits, or is far from fitting, after the first stage of shaping is not shaped further. What lies over itself is
+        laid apart only where it asks no more than `senseless` of the limits.
         """
-        key = (fully, surface.points.tobytes(), surface.triangles.tobytes())
+        key = (fully, senseless, surface.points.tobytes(), surface.triangles.tobytes())
         if key not in self.known:
-            one = judge(surface, self.goods, self.comfort, self.grain, stages=1)
-            if fully and ENOUGH < one.utilisation < FAR:
-                one = judge(surface, self.goods, self.comfort, self.grain, stages=None)
+            share = 1.0 if fully else SHAPED if self.goods.shear is None else SHAPED_WOVEN
+            common = surface, self.goods, self.comfort, self.grain
+            one = judge(*common, stages=1, senseless=ENOUGH if fully else min(SENSELESS, senseless / share))
+            if fully and (one.crossings or one.utilisation > ENOUGH) and one.utilisation < FAR:
+                one = judge(*common, stages=None, senseless=senseless)
             if fully and one.utilisation > ENOUGH:
                 one = resigned(surface, one, self.goods, self.comfort, self.grain)
-            share = 1.0 if fully else SHAPED if self.goods.shear is None else SHAPED_WOVEN
             self.known[key] = replace(one, utilisation=one.utilisation * share)
         return self.known[key]
 

@@ -83,7 +83,8 @@ def _piece(name, network, index, judged, goods, wishes):
     measured = measure(surface.points, surface.triangles, flat, goods, wishes.comfort)
     return pt.Piece(
         name, surface.points, flat, surface.triangles, network.source[triangles], surface.boundary_loops[0],
-        measured.stretch, measured.warp_weft_shear, measured.utilisation, measured.fit, measured.beyond, goods.grain_free,
+        measured.stretch, measured.warp_weft_shear, measured.utilisation,
+        pt.STRAINED if judged.crossings else measured.fit, measured.beyond, goods.grain_free,
     )
 
 

@@ -13,7 +13,7 @@ from scipy.sparse.csgraph import connected_components
 from ..form.measure import total_area
 from ..form.surface import Surface, components_through
 
-NEAREST = 0.05  # share of an edge that a cut keeps from its ends: less makes needles, more makes the seam zigzag
+NEAREST = 0.1  # share of an edge that a cut keeps from its ends: less makes needles, more makes the seam zigzag
 
 
 @dataclass

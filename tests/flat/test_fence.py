@@ -2,6 +2,7 @@
 
 import numpy as np
 import pytest
+import shapely
 from forms import cap, split_quads
 from seamwright.flat import flatten, overlaps, untangled
 from seamwright.flat.fence import Fence, Push
@@ -46,7 +47,6 @@ def test_what_lies_over_itself_is_laid_apart_without_a_flip(name):
 
 
 def test_no_outside_library_finds_an_overlap():
-    shapely = pytest.importorskip("shapely")
     for surface in WOUND.values():
         outline = shapely.Polygon(untangled(surface, flatten(surface).flat)[surface.boundary_loops[0]])
         assert outline.is_valid
@@ -77,7 +77,6 @@ def close(seed=0):
 
 
 def test_gaps_are_the_distances_an_outside_library_finds():
-    shapely = pytest.importorskip("shapely")
     surface, fence, flat = close()
     gap, ends, _ = fence.gaps(flat)
     assert len(gap) > 4

@@ -2,6 +2,7 @@
 
 import numpy as np
 import pytest
+import shapely
 from forms import cap, cylinder, disk, icosphere, noisy, torus
 from seamwright.errors import CoverError
 from seamwright.flat import flatten, overlaps
@@ -124,7 +125,6 @@ def test_a_strip_wound_twice_overlaps_and_wound_once_it_does_not():
 
 def test_crossings_agree_with_the_plain_pairwise_test():
     # every pair, by an outside library
-    shapely = pytest.importorskip("shapely")
     corners = np.random.default_rng(0).standard_normal((80, 2))
     sides = [shapely.LineString([a, b]) for a, b in zip(corners, np.roll(corners, -1, axis=0), strict=True)]
     expected = {(i, j) for i in range(80) for j in range(i + 2, 80) if (i, j) != (0, 79) and sides[i].crosses(sides[j])}

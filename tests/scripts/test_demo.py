@@ -13,9 +13,7 @@ from sheets import samples
 
 ROOT = Path(__file__).resolve().parents[2]
 sys.path.insert(0, str(ROOT / "scripts"))
-covering = pytest.importorskip("harbour.covering", reason="the host's module is not installed")
-page = pytest.importorskip("harbour.page")
-pictures = pytest.importorskip("harbour.pictures")
+from harbour import covering, page, pictures  # noqa: E402
 
 NAME = "Tube <b>&amp;\"'"
 

@@ -2,7 +2,8 @@
 
 from .cover import cover
 from .errors import CoverError, FormError, SeamwrightError, WishError
-from .fit.goods import Goods, goods, read_goods
+from .fit.goods import Goods, goods, read_goods, write_goods
+from .fit.swatch import goods_from_swatch
 from .form.form import Form
 from .pattern import Pattern, Piece, Seam
 from .seams import crease_weights, log_scale, seam_energy, seen_weights
@@ -12,5 +13,6 @@ __version__ = "0.1.0"
 
 __all__ = [
     "CoverError", "Form", "FormError", "Goods", "Pattern", "Piece", "Seam", "SeamwrightError", "WishError", "Wishes",
-    "cover", "crease_weights", "goods", "log_scale", "read_goods", "seam_energy", "seen_weights",
+    "cover", "crease_weights", "goods", "goods_from_swatch", "log_scale", "read_goods", "seam_energy", "seen_weights",
+    "write_goods",
 ]

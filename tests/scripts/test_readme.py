@@ -34,6 +34,13 @@ def test_the_python_runs(tmp_path, monkeypatch, capsys):
     assert {path.name for path in (tmp_path / "out" / "fender").iterdir()} >= {"pattern.pdf", "pattern.svg", "pattern.json"}
 
 
+def test_the_goods_of_a_swatch_are_written(tmp_path, monkeypatch):
+    monkeypatch.chdir(tmp_path)
+    exec(block("sw.goods_from_swatch("), {"sw": sw})
+    sail = sw.read_goods("sail.toml")
+    assert sail.name == "sail cloth" and sail.stretch_warp[1] == pytest.approx(0.01)
+
+
 def test_every_command_line_is_understood():
     cli = pytest.importorskip("addon.cli", reason="the host's module is not installed")
     lines = [line for line in block("seamwright cover props.blend").splitlines() if ".venv/bin/seamwright" in line]

@@ -111,8 +111,15 @@ def read_goods(path):
     return next(iter(read.values()))
 
 
-def to_toml(goods):
-    """The text of a file that `read_goods` reads these goods from."""
+def write_goods(goods, path):
+    """Write Goods as a file that `read_goods` reads. Raises WishError where that cannot be."""
+    try:
+        Path(path).write_text(_to_toml(goods), encoding="utf-8")
+    except OSError as error:
+        raise WishError(f"{path}: cannot be written ({error.strerror}). Choose another place.") from error
+
+
+def _to_toml(goods):
     lines = [f"[{_quoted(goods.name)}]"]
     for key, (field, factor) in _KEYS.items():
         value = getattr(goods, field)

@@ -12,7 +12,7 @@ COMFORTABLE_SHEAR = 1 / 2
 """Share of the hand's pull that is comfortable where only one pull was measured; common practice."""
 
 
-def from_swatch(name, like, *, warp=None, weft=None, bias=None, eased=None, marked=0.1):
+def goods_from_swatch(name, like, *, warp=None, weft=None, bias=None, eased=None, marked=0.1):
     """Goods by measurement: draw a line of length `marked` along the warp, one along the weft, one at 45 degrees; pull.
 
     name of the new goods; like, a name or Goods, from which everything is taken that was not measured. warp, weft, bias:

@@ -1,11 +1,18 @@
-"""Pictures of covered forms without a drawing library: triangles and seams as dots, the nearest dot on a pixel wins."""
+"""Pictures of covered forms without a drawing library: triangles and seams as dots, the nearest dot on a pixel wins.
+
+Every form is seen from the front and from the back, its pieces in colours and its log scale u, blue where the goods would
+have to ease in, orange-brown where they would have to stretch.
+"""
 
 import html
 import struct
 import zlib
 
 import numpy as np
-from seamwright.sheets.colours import piece_colour
+from seamwright.seams.begun import network_of_pattern
+from seamwright.seams.ladder import Ladder
+from seamwright.seams.study import network_cost
+from seamwright.sheets.colours import piece_colour, stretch_colour
 
 SIDE = 380  # pixels of a picture
 FRONT = np.array([0.45, -1.0, 0.55])
@@ -16,21 +23,45 @@ def page(folder, shown):
     folder.mkdir(parents=True, exist_ok=True)
     parts = []
     for number, (words, pattern) in enumerate(shown):
+        scales = log_scales(pattern)
+        most = max(float(np.abs(u).max()) for u in scales) or 1.0
+        hues = [rgb(stretch_colour(u[piece.triangles].mean(axis=1) / most))
+                for u, piece in zip(scales, pattern.pieces, strict=True)]
         names = []
-        for view, direction in (("front", FRONT), ("back", -FRONT)):
-            name = f"{number:02d}-{pattern.form.name.replace(' ', '-')}-{view}.png"
-            (folder / name).write_bytes(png(portrait(pattern, direction)))
-            names.append(name)
-        pictures = "".join(f'<img src="{name}" alt="{html.escape(pattern.form.name)}">' for name in names)
-        parts.append(f"<figure><figcaption><pre>{html.escape(words)}</pre></figcaption>{pictures}</figure>")
+        for what, colours in (("seams", None), ("u", hues)):
+            for view, direction in (("front", FRONT), ("back", -FRONT)):
+                name = f"{number:02d}-{pattern.form.name.replace(' ', '-')}-{what}-{view}.png"
+                (folder / name).write_bytes(png(portrait(pattern, direction, colours)))
+                names.append(name)
+        pictures = "".join(f'<img src="{name}" alt="{html.escape(name[3:-4])}">' for name in names)
+        words = html.escape(f"{words}\nu from {-most:.3f} to {most:.3f}")
+        parts.append(f"<figure><figcaption><pre>{words}</pre></figcaption>{pictures}</figure>")
     path = folder / "index.html"
     path.write_text("<!doctype html><meta charset=utf-8><title>Bench</title><style>figure{display:inline-block;margin:8px}"
                     "img{border:1px solid #ddd}</style>" + "\n".join(parts) + "\n", encoding="utf-8")
     return path
 
 
-def portrait(pattern, direction):
-    """(SIDE, SIDE, 3) picture, 0 to 1, of a Pattern seen from `direction`, pieces in colours, seams black, hems grey."""
+def log_scales(pattern):
+    """The log scale u (k,) at the points of each piece of a Pattern whose form is one part."""
+    form, pieces = pattern.form, pattern.pieces
+    network = network_of_pattern(pieces, np.arange(len(form.triangles)))
+    u = network_cost(Ladder(form.surface, rungs=()), network, 0.0).u
+    every = np.concatenate([piece.points for piece in pieces])
+    at = np.unique(every, axis=0, return_inverse=True)[1].ravel()  # as the network numbers them
+    return np.split(u[at], np.cumsum([len(piece.points) for piece in pieces])[:-1])
+
+
+def rgb(words):
+    """(k, 3) shares of red, green and blue of hex colours."""
+    return np.array([list(bytes.fromhex(word[1:])) for word in words]) / 255
+
+
+def portrait(pattern, direction, hues=None):
+    """(SIDE, SIDE, 3) picture, 0 to 1, of a Pattern seen from `direction`, seams black, hems grey.
+
+    hues: for each piece the colours (t, 3) of its triangles; by default each piece has one.
+    """
     toward = direction / np.linalg.norm(direction)
     right = np.cross([0.0, 0.0, 1.0], toward)
     right /= np.linalg.norm(right)
@@ -48,7 +79,7 @@ def portrait(pattern, direction):
         light = 0.5 + 0.5 * np.abs(normals[:, 2]) / np.maximum(np.linalg.norm(normals, axis=1), 1e-12)
         dots, owner = _dots(corners)
         places.append(dots)
-        colours.append((np.array(list(bytes.fromhex(piece_colour(number)[1:]))) / 255 * light[:, None])[owner])
+        colours.append(((rgb([piece_colour(number)]) if hues is None else hues[number]) * light[:, None])[owner])
     for seam in pattern.seams:
         line = _dense(placed(seam.path)) + [0, 0, 3.0]  # a little in front of the surface it lies on
         for shift in ((0, 0), (1, 0), (0, 1), (1, 1)):

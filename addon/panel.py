@@ -64,6 +64,7 @@ class SEAMWRIGHT_PT_wishes(_Tab, bpy.types.Panel):
             layout.prop(wishes, "own_goods")
         layout.prop(wishes, "comfort")
         layout.prop(wishes, "grain")
+        layout.prop(wishes, "thickness_side")
         layout.prop(wishes, "route", expand=True)
         if wishes.route == "through":
             layout.prop(wishes, "cut_itself")

@@ -65,6 +65,13 @@ class WishesGroup(bpy.types.PropertyGroup):
             ("y", "Along Y", "Along the object's Y axis"),
             ("z", "Along Z", "Along the object's Z axis"),
         ))
+    thickness_side: bpy.props.EnumProperty(
+        name="Thickness", description="Where thick goods lie; their pieces are measured in the middle of their thickness",
+        default="none", items=(
+            ("none", "Does Not Count", "Pieces are measured on the form's own surface, as for thin goods"),
+            ("outside", "Outside the Form", "The goods lie on the outside of the form"),
+            ("inside", "Inside the Form", "The goods lie within the form, their outer face its surface"),
+        ))
     keep_clear: bpy.props.StringProperty(
         name="Keep Clear", description="Vertex group painted where seams are unwelcome: a seam costs twice at weight 0.5, "
         "ten times at 0.9, and is never laid at 1")
@@ -92,6 +99,7 @@ class WishesGroup(bpy.types.PropertyGroup):
             "cut_itself": self.cut_itself,
             "symmetry": "auto" if self.symmetry else "none",
             "grain": None if axis is None else list(self.id_data.matrix_world.col[axis].xyz.normalized()),
+            "thickness_side": self.thickness_side,
             "thrift": float(f"{self.thrift:.6g}") if self.choose_thrift else None,
             "pieces": self.pieces if self.choose_pieces else None,
         }

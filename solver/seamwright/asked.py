@@ -18,8 +18,6 @@ def check(form, wishes):
     for name, value in later.items():
         if value is not None:
             raise WishError(f"{name}: not offered yet. Leave it out; keep_clear, pieces, thrift and start are there.")
-    if wishes.thickness_side != "none":
-        raise WishError("thickness_side: not offered yet. Offset the form by half the goods' thickness in the application.")
     _check_start(form, wishes.start)
     if not isinstance(wishes.symmetry, str):
         size = np.sqrt(total_area(form.surface))

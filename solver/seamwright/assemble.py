@@ -6,24 +6,26 @@ import numpy as np
 
 from . import pattern as pt
 from .fit.measure import measure
+from .form.offset import carried
 from .naming import named
 from .seams.sides import joints
 from .sheets.order import sewing_order
 
 
-def assemble(form, goods, wishes, parts, notes):
-    """Pattern from (Tailored, planes of symmetry) of every part of the form."""
+def assemble(form, neutral, goods, wishes, parts, notes):
+    """Pattern from (Tailored, planes of symmetry) of every part of the form; neutral: the Surface their networks lie on."""
     names, order, alike = named([part.network for part, _ in parts], [planes for _, planes in parts])
     pieces, seams = [], []
     for part, _ in parts:
         network = part.network
+        on_form = carried(network.surface, network.source, neutral, form.surface)
         own = names[len(pieces) : len(pieces) + network.pieces[0]]
         for k, name in enumerate(own):
-            pieces.append(_piece(name, network, k, part.judged[k], goods, wishes))
+            pieces.append(_piece(name, network, k, on_form, part.judged[k], goods, wishes))
             if part.judged[k].crossings:
                 notes.append(f"Piece {name} lies over itself in the flat; split it with a seam.")
         by_name = dict(zip(own, pieces[-len(own):], strict=True))
-        seams += [_seam(joint, network, own, by_name) for joint in joints(network)]
+        seams += [_seam(joint, on_form, own, by_name) for joint in joints(network)]
     pieces = [pieces[k] for k in order]
     _number(seams)
     notes += _strain(pieces, goods) + _ease(seams, goods)
@@ -41,6 +43,7 @@ def _details(wishes, planes, alike):
         "energy": wishes.energy if isinstance(wishes.energy, str) else "own",
         "route": wishes.route,
         "pieces": None if wishes.pieces is None else int(wishes.pieces),
+        "thickness_side": wishes.thickness_side,
         "seed": int(wishes.seed),
         "planes": [{"point": plane.point.tolist(), "normal": plane.normal.tolist(), "error": float(plane.error)}
                    for plane in planes],
@@ -77,19 +80,20 @@ def _ease(seams, goods):
     ]
 
 
-def _piece(name, network, index, judged, goods, wishes):
-    surface, _, triangles = network.piece_surface(index)
+def _piece(name, network, index, on_form, judged, goods, wishes):
+    surface, points, triangles = network.piece_surface(index)
     flat = judged.flat - judged.flat.min(axis=0)
     measured = measure(surface.points, surface.triangles, flat, goods, wishes.comfort)
     return pt.Piece(
-        name, surface.points, flat, surface.triangles, network.source[triangles], surface.boundary_loops[0],
+        name, on_form[points], flat, surface.triangles, network.source[triangles], surface.boundary_loops[0],
         measured.stretch, measured.warp_weft_shear, measured.utilisation,
         pt.STRAINED if judged.crossings else measured.fit, measured.beyond, goods.grain_free,
+        surface.points,
     )
 
 
-def _seam(joint, network, names, by_name):
-    path = network.surface.points[joint.chain]
+def _seam(joint, on_form, names, by_name):
+    path = on_form[joint.chain]
     left = (names[joint.left.piece], joint.left.points)
     right = (None, joint.left.points) if joint.right is None else (names[joint.right.piece], joint.right.points)
     lengths = tuple(0.0 if name is None else _flat_length(by_name[name], along) for name, along in (left, right))

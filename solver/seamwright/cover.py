@@ -11,6 +11,7 @@ from .fit.goods import get
 from .fit.improve import improve
 from .fit.join import joined
 from .fit.tailor import Tailor
+from .form.offset import carried, offset
 from .form.surface import Surface
 from .pattern import Pattern
 from .seams.begun import network_of_labels, network_of_pattern
@@ -34,9 +35,10 @@ def cover(form, wishes=None, progress=None):
     goods = get(wishes.goods)
     check(form, wishes)
     prices = seam_prices(form, wishes)
-    parts = list(_parts(form))
+    neutral, said = _neutral(form, goods, wishes)
+    parts = list(_parts(form, neutral))
     wanted = shared_out(form, parts, wishes.pieces)
-    covered, notes = [], list(form.mended)
+    covered, notes = [], list(form.mended) + said
     for number, (part, pieces) in enumerate(zip(parts, wanted, strict=True)):
         def tell(share, words, number=number):
             if progress:
@@ -47,30 +49,48 @@ def cover(form, wishes=None, progress=None):
         except CoverError as error:
             where = f"{form.name}, part {number + 1} of {len(parts)}" if len(parts) > 1 else form.name
             raise CoverError(f"{where}: {error}") from error
-    pattern = assemble(form, goods, wishes, covered, notes)
+    pattern = assemble(form, neutral, goods, wishes, covered, notes)
     pattern.notes += _unmet(pattern, wishes, prices)
     if progress:
         progress(1.0, "done")
     return pattern
 
 
-class _Part:
-    """One connected part of a form: its Surface and where its points and triangles are in the form."""
+def _neutral(form, goods, wishes):
+    """(Surface in the middle of the goods' thickness, the form's own where that is not wished for; list of sentences)."""
+    if wishes.thickness_side == "none" or goods.thickness == 0:
+        return form.surface, []
+    found = offset(form.surface, goods.thickness / 2 * (1 if wishes.thickness_side == "outside" else -1))
+    if found.capped == 0:
+        return found.surface, []
+    x, y, z = 1000 * found.worst
+    return found.surface, [
+        f"Thickness: on {100 * found.capped:.1f} % of the form, most near ({x:.0f}, {y:.0f}, {z:.0f}) mm, it is too finely "
+        f"curved for goods {1000 * goods.thickness:g} mm thick to lie {wishes.thickness_side} it; there the pieces are "
+        "measured nearer to its surface. Thinner goods would help, or a smoother form."
+    ]
 
-    def __init__(self, form, triangles):
+
+class _Part:
+    """One connected part of a form: its Surface, in the middle of the goods, the same on the form itself, and where its
+    points and triangles are in the form."""
+
+    def __init__(self, form, neutral, triangles):
         self.triangles = triangles
         self.points, local = np.unique(form.triangles[triangles], return_inverse=True)
-        self.surface = Surface(form.points[self.points], local.reshape(-1, 3))
+        self.surface = self.on_form = Surface(neutral.points[self.points], local.reshape(-1, 3))
+        if neutral is not form.surface:
+            self.on_form = Surface(form.points[self.points], self.surface.triangles)
         self.polygon = np.unique(form.polygon[triangles], return_inverse=True)[1].ravel()
         whole = form.surface.triangle_edges[triangles]
         self.diagonal = np.zeros(len(self.surface.edges), dtype=bool)
         self.diagonal[self.surface.triangle_edges] = form.diagonal[whole]
 
 
-def _parts(form):
+def _parts(form, neutral):
     count, component = form.surface.triangle_components
     for index in range(count):
-        yield _Part(form, np.flatnonzero(component == index))
+        yield _Part(form, neutral, np.flatnonzero(component == index))
 
 
 def _cover_part(form, part, price, wishes, goods, pieces, tell, notes):
@@ -114,7 +134,9 @@ def _begun(form, part, wishes):
     if wishes.start is None:
         return None
     if isinstance(wishes.start, Pattern):
-        return network_of_pattern(wishes.start.pieces, part.triangles)
+        begun = network_of_pattern(wishes.start.pieces, part.triangles)
+        points = carried(begun.surface, begun.source, part.on_form, part.surface)
+        return replace(begun, surface=Surface(points, begun.surface.triangles))
     labels = np.unique(wishes.start, return_inverse=True)[1].ravel()[form.polygon][part.triangles]
     return network_of_labels(part.surface, labels, ~part.diagonal)
 

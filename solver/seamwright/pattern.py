@@ -16,6 +16,8 @@ class Piece:
     triangles (t, 3); source (t,) the form's triangle each came from; outline (q,) indices in order, counter-clockwise,
     not repeated at the end. stretch (t, 2) principal, largest first (length on the form over length in the flat goods,
     minus one); warp_weft_shear (t, 3), shear in radians; utilisation (t,) share of the hard limit that is used.
+    neutral (k, 3): the points in the middle of the goods' thickness, against which the flat ones are measured; the same as
+    `points` where the wishes name no side for the thickness.
     """
 
     name: str
@@ -30,11 +32,16 @@ class Piece:
     fit: str
     beyond: float
     grain_free: bool = True
+    neutral: np.ndarray | None = None
+
+    def __post_init__(self):
+        if self.neutral is None:
+            self.neutral = self.points
 
     @property
     def areas(self):
-        """(t,) square metres on the form."""
-        a, b, c = (self.points[self.triangles[:, k]] for k in range(3))
+        """(t,) square metres that are covered, in the middle of the goods."""
+        a, b, c = (self.neutral[self.triangles[:, k]] for k in range(3))
         return 0.5 * np.linalg.norm(np.cross(b - a, c - a), axis=1)
 
     @property

@@ -26,7 +26,9 @@ class Wishes:
     free, 1 twice the price, inf never. held, shut: (k, 2) point pairs that are, or may not be, seams. start: a Pattern of
     the form or (m,) face labels, improved: with thrift the total never rises, without it neither length nor distortion does.
     only: (m,) bool. pieces: a wished number. route: "through" faces or along "edges". grain: a direction on the form.
-    thickness_side: which side of thick goods the form's surface is. seed: another one tries other coarse levels.
+    thickness_side: "outside" where the goods lie on the outside of the form, "inside" where its surface is to be their
+    outer face: pieces are then measured in the middle of the goods' thickness; "none" on the form itself. seed: another one
+    tries other coarse levels.
     """
 
     goods: object = "canvas"

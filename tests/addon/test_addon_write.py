@@ -152,6 +152,20 @@ def test_through_makes_a_covered_copy_beside_the_form(ball):
     assert set(edges.values()) == {2}  # welded along the seams: closed, as the form is
 
 
+def test_thick_goods_get_larger_pieces_but_the_copy_is_as_large_as_the_form(ball):
+    ball.seamwright.wishes.goods = "eva foam"
+    areas = []
+    for side in ("none", "outside"):
+        ball.seamwright.wishes.thickness_side = side
+        bpy.ops.seamwright.cover()
+        mesh = ball.seamwright.result.copy.data
+        a, b, c = np.array([list(corner.uv) for corner in mesh.uv_layers.active.data]).reshape(-1, 3, 2).transpose(1, 0, 2)
+        areas.append(np.abs(np.linalg.det(np.stack([b - a, c - a], axis=1))).sum() / 2 * ball.seamwright.result.across**2)
+        points = places(mesh)
+        assert np.ptp(points, axis=0) == pytest.approx([0.4, 0.4, 0.4], rel=0.05)
+    assert areas[1] / areas[0] == pytest.approx((1 + 0.0025 / 0.2) ** 2, abs=0.01)  # half of 5 mm on a radius of 200
+
+
 def test_covering_through_again_replaces_the_copy(ball):
     bpy.ops.seamwright.cover()
     first = ball.seamwright.result.copy

@@ -49,7 +49,7 @@ def add_legend(pdf, pattern, sheets, summary, grid):
 
 
 def _facts(pdf, summary, grid):
-    goods, pieces = summary["goods"], len(summary["pieces"])
+    goods, pieces, side = summary["goods"], len(summary["pieces"]), summary["thickness_side"]
     sheets = summary["lay"]["sheets"]
     metres = f"{sum(sheet['length_mm'] for sheet in sheets) / 1000:.2f} m of goods"
     used = metres if goods["length_mm"] is None else f"{len(sheets)} x {goods['width_mm']:g} x {goods['length_mm']:g} mm"
@@ -57,7 +57,8 @@ def _facts(pdf, summary, grid):
     facts = [
         f"{pieces} piece{'s' * (pieces != 1)}, {joined} seam{'s' * (joined != 1)}, {summary['seam_metres']:.2f} m of seam"
         + (f", {summary['hem_metres']:.2f} m of hem." if summary["hem_metres"] else "."),
-        f"Goods: {goods['name']}, {goods['width_mm']:g} mm wide, {goods['thickness_mm']:g} mm thick.",
+        f"Goods: {goods['name']}, {goods['width_mm']:g} mm wide, {goods['thickness_mm']:g} mm thick"
+        + (", whose thickness does not count." if side == "none" else f", lying {side} the form."),
         f"Allowance: {goods['allowance_mm']:g} mm, already added.",
         f"Laid in rows: {used}, yield {summary['lay']['yield']:.0%}.",
         "Fit: " + ("no piece is strained." if summary["fits"] else "STRAINED: " + ", ".join(

@@ -13,7 +13,8 @@ def summary(pattern):
     """Plain JSON data about a Pattern; the same pattern gives the same data.
 
     form, version, fits, goods (name and figures), pieces, seams, order, seam_metres (joined seams, on the form),
-    hem_metres, area_m2 (form) and flat_area_m2, lay (sheets of goods with width and length used in mm, yield), notes.
+    hem_metres, thickness_side (as in Wishes), area_m2 (covered, in the middle of the goods) and flat_area_m2, lay (sheets of
+    goods with width and length used in mm, yield), notes.
     Each piece: name, number, fit, beyond (share of its area beyond the hard limits), area_m2 and flat_area_m2, stretch
     {p5, p95, worst} (shares; over the form's area, the smaller and the larger principal one; worst is the one farthest
     from 0), warp and weft {p5, p95, worst} and shear_degrees {p95, worst} where the goods have a grain, utilisation
@@ -39,6 +40,7 @@ def summary_of(pattern, drafts, sheets):
             "ease_in": goods.ease_in,
             "shear_degrees": None if goods.shear is None else [degrees(value) for value in goods.shear],
         },
+        "thickness_side": pattern.details.get("thickness_side", "none"),
         "area_m2": sum(piece.areas.sum() for piece in pattern.pieces),
         "flat_area_m2": sum(piece.flat_areas.sum() for piece in pattern.pieces),
         "seam_metres": sum(length for length, open_ in on_form if not open_),

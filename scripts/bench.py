@@ -2,6 +2,8 @@
 
     python3 scripts/bench.py                                            # the seam stage, each form once
     python3 scripts/bench.py --points 5000,20000,80000,320000           # ... and how it grows; about an hour
+    python3 scripts/bench.py --seeds 64                                 # scores against the best of many; hours
+    python3 scripts/bench.py --rivals                                   # against partitions and trees of equal length
     python3 scripts/bench.py --goods felt,canvas --comfort 0 --picture  # the whole cover; `--goods all` for every goods
 
 What is asked for is measured and nothing else. The unit of time is one factorisation of the form's own cotangent Laplacian,
@@ -17,6 +19,7 @@ from dataclasses import asdict
 import setup
 
 OUT = setup.ROOT / "out" / "bench"
+THRIFTS = [0.03, 0.1, 0.3]  # from many pieces to few, where several are compared
 
 
 def several(kind):
@@ -35,7 +38,10 @@ def parser():
     options.add_argument("--forms", default=list(gallery.FORMS), type=several(str), help="names, comma between")
     options.add_argument("--points", default=[5000], type=several(int), help="about how many points; several, comma between")
     options.add_argument("--thrift", default=[], type=several(float),
-                         help="prices of seam for the seam stage, comma between (0.1 where nothing else is asked for)")
+                         help="prices of seam, comma between; the seam stage is measured at each (plain: at 0.1)")
+    options.add_argument("--seeds", type=int, help="score of the seam stage over the best of so many seeds, at --thrift "
+                         "or three of them")
+    options.add_argument("--rivals", action="store_true", help="distortion at equal seam length against other ways to seam")
     options.add_argument("--symmetry", default="auto", choices=("auto", "none"))
     options.add_argument("--goods", default=[], type=several(str), help="goods to cover in, comma between, or all")
     options.add_argument("--comfort", default=0.5, type=float)
@@ -47,11 +53,16 @@ def parser():
 def wanted(options):
     """List of (table, its rows) for what the options ask for; rows yield (Row, Pattern or None)."""
     import seamwright as sw
-    from tables import fits, stage
+    from tables import against, best, fits, stage
 
     goods = list(sw.goods()) if options.goods == ["all"] else options.goods
     asked = []
-    if options.thrift or not goods:
+    compared = options.seeds or options.rivals
+    if options.rivals:
+        asked.append((against, against.rows(options.forms, options.points, options.thrift or THRIFTS)))
+    if options.seeds:
+        asked.append((best, best.rows(options.forms, options.points, options.thrift or THRIFTS, options.seeds)))
+    if not compared and (options.thrift or not goods):
         asked.append((stage, stage.rows(options.forms, options.points, options.thrift or [0.1], options.symmetry)))
     if goods:
         asked.append((fits, fits.rows(options.forms, options.points, goods, options.comfort, options.route)))

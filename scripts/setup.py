@@ -23,6 +23,7 @@ HOST_PINS = {
 PINS = [
     "fpdf2==2.8.9", "shapely==2.2.0", "fonttools==4.68.0", "defusedxml==0.7.1",  # what the solver writes sheets with
     "pytest==9.2.0", "ruff==0.17.6", "pdfplumber==0.11.10", "svgelements==1.9.6",  # what the tests need
+    "libigl==2.6.3",  # what the bench compares with
 ]
 SYSTEM_LIBRARIES = "libx11-6 libxi6 libxxf86vm1 libxfixes3 libxrender1 libxkbcommon0 libsm6 libgl1"
 

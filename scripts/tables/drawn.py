@@ -21,4 +21,4 @@ def drawn(form, network, planes=()):
     """The Pattern of a Network on a Form of one part; planes: those of symmetry that the network keeps."""
     flats = [flatten(network.piece_surface(k)[0]).flat for k in range(network.pieces[0])]
     judged = [Judged(1.0, None, flat, []) for flat in flats]
-    return assemble(form, get(GOODS), Wishes(goods=GOODS), [(Tailored(network, judged), list(planes))], [])
+    return assemble(form, form.surface, get(GOODS), Wishes(goods=GOODS), [(Tailored(network, judged), list(planes))], [])

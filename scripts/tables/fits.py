@@ -5,7 +5,6 @@ from dataclasses import dataclass
 
 import numpy as np
 import seamwright as sw
-from seamwright.form.mirror import Plane
 from seamwright.seams.refuse import measured
 from seamwright.sheets.report import quantiles
 
@@ -44,7 +43,7 @@ def measured_row(name, count, goods, comfort, route="through"):
     seconds = time.process_time() - begin
     sewn = [seam for seam in pattern.seams if not seam.open]
     area = np.array([piece.areas.sum() for piece in pattern.pieces])
-    refused, values = refusals(measured(pattern, kept_planes(pattern)))
+    refused, values = refusals(measured(pattern))
     row = Row(
         name, len(form.points), pattern.goods.name, comfort, seconds, seconds / unit, len(pattern.pieces),
         float(sum(np.linalg.norm(np.diff(seam.path, axis=0), axis=1).sum() for seam in sewn) / np.sqrt(area.sum())),
@@ -52,11 +51,6 @@ def measured_row(name, count, goods, comfort, route="through"):
         float(area @ [piece.beyond for piece in pattern.pieces] / area.sum()),
         float(max((abs(seam.ease) for seam in sewn), default=0.0)), pattern.fits, refused, values)
     return row, pattern
-
-
-def kept_planes(pattern):
-    """List of the Planes of symmetry that a Pattern was asked to keep."""
-    return [Plane(np.array(kept["point"]), np.array(kept["normal"]), kept["error"]) for kept in pattern.details["planes"]]
 
 
 def rows(names, counts, goods, comfort, route="through"):

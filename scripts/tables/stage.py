@@ -69,7 +69,7 @@ def measured_row(name, count, thrift, symmetry):
     peak = resource.getrusage(resource.RUSAGE_SELF).ru_maxrss * MAXRSS
     pattern = drawn(form, network_of(ladder, found.cut), planes)
     pattern.details["thrift"] = thrift
-    refused, values = refusals(measured(pattern, planes))
+    refused, values = refusals(measured(pattern))
     row = Row(name, count, len(form.points), thrift, bool(planes), seconds, wall, seconds / unit, peak, found.score,
               found.fields.shape[1], found.cost.length / ladder.factor, found.converged, refused, values)
     return row, pattern

@@ -1,12 +1,16 @@
 """What a patternmaker would refuse, on networks made by hand: good ones pass, each bad one is refused for its own reason."""
 
+from dataclasses import replace
+
 import numpy as np
 import pytest
 from forms import ellipsoid, icosphere, split_quads
+from seamwright.fit.goods import get
 from seamwright.flat import flatten
 from seamwright.form.form import Form
 from seamwright.form.mirror import Plane
 from seamwright.pattern import Pattern, Piece, Seam
+from seamwright.seams.bulges import bending
 from seamwright.seams.cut import cut_by_fields
 from seamwright.seams.level import Level
 from seamwright.seams.network import Network, cut_through
@@ -62,13 +66,15 @@ SHEETS = {
     "halves": (sheet([(20, 0), (20, 40)]), set()),
     "one dart": (sheet([(20, 0), (20, 15)]), set()),
     "four quarters": (sheet([(20, 0), (20, 40)], [(0, 20), (40, 20)]), set()),
-    "a speck": (sheet([(0, 3), (3, 3), (3, 0)]), {"smallest piece"}),
+    "a speck": (sheet([(0, 3), (3, 3), (3, 0)]), {"smallest piece", "sharp bend"}),
     "a strip": (sheet([(20, 0), (20, 40)], [(21, 0), (21, 40)]), {"narrow share"}),
     "two darts": (sheet([(20, 0), (20, 15)], [(20, 40), (20, 25)]), {"dart ends"}),
     "a slit": (sheet([(20, 10), (20, 30)]), {"pieces that are no disks", "loose bits of seam", "dart ends"}),
     "a ring": (sheet([(10, 10), (30, 10), (30, 30), (10, 30), (10, 10)]),
-               {"pieces that are no disks", "loose bits of seam"}),
-    "stairs": (sheet([(10, 0), *STAIRS, (30, 40)]), {"jag"}),
+               {"pieces that are no disks", "loose bits of seam", "sharp bend"}),
+    "a bend": (sheet([(10, 0), (10, 10), (30, 30), (30, 40)]), set()),
+    "a jog": (sheet([(10, 0), (10, 20), (30, 20), (30, 40)]), {"sharp bend"}),
+    "stairs": (sheet([(10, 0), *STAIRS, (30, 40)]), {"jag", "sharp bend"}),
     "a sharp junction": (sheet([(20, 0), (20, 40)], [(20, 20), (40, 40)]), {"junction angle"}),
     "a sharp corner": (sheet([(20, 0), (20, 40)], lean=2.5), {"tip angle"}),
     "a short link": (sheet([(20, 0), (20, 40)], [(0, 20), (20, 20)], [(20, 21), (40, 21)]), {"link between junctions"}),
@@ -99,6 +105,61 @@ def test_values_by_hand():
     assert value(SHEETS["a sharp corner"][0], "tip angle") == pytest.approx(np.degrees(np.arctan(1 / 2.5)), abs=1e-9)
     assert value(SHEETS["a short link"][0], "link between junctions") == pytest.approx(1 / N)
     assert value(SHEETS["two darts"][0], "dart ends") == 2
+    assert value(SHEETS["a bend"][0], "sharp bend") == pytest.approx(45, abs=1e-9)
+    assert value(SHEETS["a jog"][0], "sharp bend") == pytest.approx(90, abs=1e-9)
+    assert value(SHEETS["a jog"][0], "seam on a bulge") == 0
+
+
+def test_goods_say_how_narrow():
+    """Three allowances, at least 40 mm: a strip of 50 mm will do with 10 mm allowance and not with 20 mm."""
+    pattern = sheet([(20, 0), (20, 40)], [(22, 0), (22, 40)])
+    assert value(pattern, "narrow share") < 0.1
+    for allowance, share in ((0.01, 0.02), (0.02, 1.0)):
+        pattern.goods = replace(get("canvas"), allowance=allowance)
+        assert value(pattern, "narrow share") == pytest.approx(share, abs=0.02)
+
+
+def cone(total, sides, seams):
+    """Pattern of a cone of one metre with `total` degrees around its apex, as many seams down its side, evenly."""
+    turn = np.arange(sides) * 2 * np.pi / sides
+    radius = np.sin(np.radians(total) / sides / 2) / np.sin(np.pi / sides)
+    rim = np.column_stack([radius * np.cos(turn), radius * np.sin(turn), np.full(sides, -np.sqrt(1 - radius**2))])
+    form = Form(np.concatenate([[[0, 0, 0]], rim]), [[0, 1 + k, 1 + (k + 1) % sides] for k in range(sides)])
+    down = 1 + np.arange(seams) * sides // seams
+    seam = np.zeros(len(form.surface.edges), dtype=bool)
+    seam[form.surface.edge_index(np.column_stack([0 * down, down]))] = True
+    return pattern_of(form, Network(form.surface, seam, np.arange(sides)))
+
+
+def test_a_pointed_form_may_have_pointed_pieces():
+    """Twelve corners at a blunt apex are too sharp, fewer seams would do; at an apex of 80 degrees nothing else can be."""
+    blunt, pointed = cone(324, 12, 12), cone(80, 12, 4)
+    assert value(blunt, "tip angle") == pytest.approx(27, abs=1e-6)
+    assert value(pointed, "tip angle") > 30  # what is left are the corners at the rim
+    assert value(pointed, "junction angle") == pytest.approx(20, abs=1e-6)
+
+
+def test_mean_curvature_of_a_ball():
+    form = Form(*icosphere(4))
+    np.testing.assert_allclose(bending(form.surface), np.sqrt(4 * np.pi), rtol=0.02)
+    np.testing.assert_allclose(bending(Form(3 * form.points, form.triangles).surface), np.sqrt(4 * np.pi), rtol=0.02)
+
+
+@pytest.mark.parametrize(("at", "where"), [(40, "crest"), (45, "valley")])
+def test_a_seam_belongs_in_the_valley(at, where):
+    """A sheet in waves, an eighth from crest to crest: along a crest there is a valley beside, along a valley none."""
+    n = 80
+    i, j = (a.ravel() for a in np.meshgrid(np.arange(n + 1), np.arange(n + 1), indexing="ij"))
+    cell = (np.arange(n)[:, None] * (n + 1) + np.arange(n)).ravel()
+    quads = np.column_stack([cell, cell + n + 1, cell + n + 2, cell + 1])
+    form = Form(np.column_stack([i / n, j / n, 0.012 * np.cos(2 * np.pi * i / 10)]), split_quads(quads))
+    steps, still = np.arange(n + 1), np.full(n + 1, at)
+    for number, wrong in ((still * (n + 1) + steps, where == "crest"), (steps * (n + 1) + still, False)):
+        seam = np.zeros(len(form.surface.edges), dtype=bool)
+        seam[form.surface.edge_index(np.column_stack([number[:-1], number[1:]]))] = True
+        pattern = pattern_of(form, Network(form.surface, seam, np.arange(len(form.triangles))))
+        share = value(pattern, "seam on a bulge")
+        assert share > 0.9 if wrong else share < 0.02, share
 
 
 def needle(direction, height, level=3):

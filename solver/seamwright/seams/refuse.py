@@ -10,10 +10,15 @@ import numpy as np
 from scipy.spatial import cKDTree
 from shapely.geometry import Polygon
 
+from ..form.mirror import Plane
+from .bends import sharpest_bends
+from .bulges import metres_on_bulges
 from .seen import Seen
 
 STEP = 0.02  # resampling of a seam, and the reach over which its direction is taken, as a share of the size
 STRIP = 0.035  # width under which a piece counts as narrow, as a share of the size
+NARROWEST, ALLOWANCES = 0.04, 3  # metres, and allowances: narrower strips are not sewn (common practice)
+SMALL_FORM = 0.1  # share of the size that a strip's width never counts as more than: on small forms pieces are small
 DETAILED = 8  # more tips than this make a detailed form, whose seams may wind more
 SMOOTH_JAG, DETAILED_JAG, EDGES_JAG = 1.012, 1.035, 1.10
 
@@ -29,14 +34,18 @@ class Measure:
     sentence: str
 
 
-def refused(pattern, planes=()):
+def refused(pattern, planes=None):
     """List of sentences, one for each thing that a patternmaker would refuse; empty for a good pattern."""
     return [measure.sentence for measure in measured(pattern, planes) if measure.refused]
 
 
-def measured(pattern, planes=()):
-    """List of Measures of a Pattern, always the same ones in the same order. planes: mirror Planes it should keep to."""
+def measured(pattern, planes=None):
+    """List of Measures of a Pattern, always the same ones in the same order. planes: mirror Planes it should keep to, by
+    default those that it was made to keep."""
     seen = Seen(pattern)
+    if planes is None:
+        kept = pattern.details.get("planes", [])
+        planes = [Plane(np.array(one["point"]), np.array(one["normal"]), one["error"]) for one in kept]
     found = [predicate(seen) for predicate in PREDICATES]
     return [*found, *(mirror_error(seen, plane) for plane in planes)]
 
@@ -96,8 +105,33 @@ def junction_angle(seen, limit=60.0):
 
 
 def tip_angle(seen, limit=30.0):
-    """The least angle at a corner of a piece, degrees."""
-    return _sharpest("tip angle", seen.corners(STEP), limit)
+    """The least angle at a corner of a piece, degrees, of those that other seams would avoid: where all corners at the place
+    together leave so much to each of two or three."""
+    corners, room = seen.corners(STEP), {}
+    for corner in corners:
+        room.setdefault(corner.node, []).append(corner.degrees)
+    avoidable = [corner for corner in corners if sum(room[corner.node]) >= limit * min(3, len(room[corner.node]))]
+    return _sharpest("tip angle", avoidable, limit)
+
+
+def sharp_bend(seen, limit=60.0):
+    """The sharpest turn of a seam within a short way, degrees: a hook or a jog, not the turn of a tip."""
+    bends = sharpest_bends(seen)
+    if not bends:
+        return _most("sharp bend", 0.0, limit, "")
+    worst = int(np.argmax([degrees for degrees, _ in bends]))
+    degrees, way = bends[worst]
+    return _most("sharp bend", degrees, limit, f"Seam {seen.seams[worst].name} turns by {degrees:.0f} degrees at once, "
+                 f"{_mm(way)} from its start. Lead it straight.")
+
+
+def on_bulges(seen, limit=0.02):
+    """The share of all seams that runs over a bulge although a valley is right beside."""
+    metres = metres_on_bulges(seen)
+    share = metres.sum() / max(sum(seen.lengths), 1e-30)
+    name = seen.seams[int(metres.argmax())].name if len(metres) else ""
+    return _most("seam on a bulge", share, limit, f"{_mm(metres.sum())} of seam run over a bulge with a valley beside, most "
+                 f"of it in {name}. Lead them through the valley.")
 
 
 def shortest_link(seen, limit=0.04):
@@ -118,12 +152,11 @@ def dart_ends(seen, share=0.25):
 
 
 def narrow_share(seen, limit=0.1):
-    """The largest share of a piece that a strip's width does not fit into."""
+    """The largest share of a piece that a strip's width does not fit into: what the eye or the goods ask, the wider one."""
     share = np.array([_narrow(seen, k) for k in range(len(seen.names))])
     worst = int(share.argmax())
-    width = _mm(STRIP * seen.size[seen.piece_part[worst]])
     return _most("narrow share", share[worst], limit, f"{100 * share[worst]:.0f} % of piece {seen.names[worst]} is narrower "
-                 f"than {width}. Move its seams apart or let a neighbour take it in.")
+                 f"than {_mm(_strip(seen, worst))}. Move its seams apart or let a neighbour take it in.")
 
 
 def mirror_error(seen, plane, limit=0.005):
@@ -138,8 +171,8 @@ def mirror_error(seen, plane, limit=0.005):
                  "its mirror image. Make both sides alike.")
 
 
-PREDICATES = (smallest_piece, broken_pieces, loose_seams, capped_tips, farthest_tip, jag, junction_angle, tip_angle,
-              shortest_link, dart_ends, narrow_share)
+PREDICATES = (smallest_piece, broken_pieces, loose_seams, capped_tips, farthest_tip, jag, sharp_bend, on_bulges,
+              junction_angle, tip_angle, shortest_link, dart_ends, narrow_share)
 
 
 def _sharpest(name, corners, limit):
@@ -151,13 +184,21 @@ def _sharpest(name, corners, limit):
 
 
 def _narrow(seen, k):
-    """Share of a piece's flat area that no disk of the strip's width inside it reaches."""
+    """Share of piece k's flat area that no disk of the strip's width inside it reaches."""
     piece, size = seen.pieces[k], seen.size[seen.piece_part[k]]
     outline = Polygon(piece.flat[piece.outline]).simplify(0.002 * size)
     if not outline.is_valid or not outline.area > 0:
         outline = outline.buffer(0)
-    reached = outline.buffer(-STRIP * size / 2).buffer(STRIP * size / 2).intersection(outline)
+    half = _strip(seen, k) / 2
+    reached = outline.buffer(-half).buffer(half).intersection(outline)
     return 1 - reached.area / outline.area if outline.area > 0 else 1.0
+
+
+def _strip(seen, k):
+    """Metres under which piece k counts as narrow."""
+    size, goods = seen.size[seen.piece_part[k]], seen.goods
+    wanted = 0.0 if goods is None else max(NARROWEST, ALLOWANCES * goods.allowance)
+    return max(STRIP * size, min(wanted, SMALL_FORM * size))
 
 
 def _most(name, value, limit, sentence):

@@ -15,10 +15,11 @@ from .tips import tips
 
 @dataclass
 class Corner:
-    """A corner of a piece, where runs of its outline meet: point (3,), degrees inside, whether it is at a junction of three
-    seams or more."""
+    """A corner of a piece, where runs of its outline meet: number of the node, point (3,), degrees inside, whether it is at
+    a junction of three seams or more."""
 
     piece: str
+    node: int
     point: np.ndarray
     degrees: float
     junction: bool
@@ -31,7 +32,7 @@ class Seen:
     """
 
     def __init__(self, pattern):
-        self.form, self.pieces = pattern.form, pattern.pieces
+        self.form, self.pieces, self.goods = pattern.form, pattern.pieces, pattern.goods
         self.seams = [seam for seam in pattern.seams if not seam.open]
         self.hems = [seam for seam in pattern.seams if seam.open]
         self.names = [piece.name for piece in self.pieces]
@@ -169,7 +170,7 @@ class Seen:
             out = _toward(piece.flat[points], reach)
             back = _toward(piece.flat[before[::-1]], reach)
             turn = np.arctan2(out[0] * back[1] - out[1] * back[0], out @ back) % (2 * np.pi)
-            found.append(Corner(name, piece.points[point], float(np.degrees(turn)), self._seams_at[node] > 2))
+            found.append(Corner(name, node, piece.points[point], float(np.degrees(turn)), self._seams_at[node] > 2))
         return found
 
     @cached_property

@@ -114,3 +114,19 @@ def test_faulty_cells_are_found():
     assert judge(ball, (ball.points[:, 2] > 0.01).astype(int), 2)[0].tolist() == [0, 1]
     thirds = (np.arctan2(ball.points[:, 1], ball.points[:, 0]) // (2 * np.pi / 3) + 2).astype(int)
     assert judge(ball, np.unique(thirds, return_inverse=True)[1].ravel(), len(np.unique(thirds)))[0].size
+
+
+def test_interpolation_is_linear_and_stays_on_its_own_sheet(surface):
+    coarse = coarsen(surface, 150)
+    carry = coarse.interpolation(surface.points)
+    weights = carry.toarray()
+    assert weights.min() >= 0 and np.abs(weights.sum(axis=1) - 1).max() < 1e-12
+    np.testing.assert_allclose(weights[coarse.seeds], np.eye(len(coarse.seeds)), atol=1e-9)  # coarse points keep their value
+    landed = carry @ coarse.surface.points
+    for point in range(0, len(surface.points), max(1, len(surface.points) // 60)):  # slow twin, one triangle at a time
+        around = coarse.surface.triangles[(coarse.surface.triangles == coarse.owner[point]).any(axis=1)]
+        off = np.linalg.norm(landed[point] - surface.points[point])
+        for corners in coarse.surface.points[around]:
+            share = np.linalg.lstsq((corners[1:] - corners[0]).T, surface.points[point] - corners[0], rcond=None)[0]
+            if share.min() >= 0 and share.sum() <= 1:  # its foot lies inside: no nearer one was left
+                assert off <= np.linalg.norm(corners[0] + share @ (corners[1:] - corners[0]) - surface.points[point]) + 1e-9

@@ -109,3 +109,15 @@ def test_smoothing_calms_noise():
     rough = np.std(angle_defects(surface) / share)
     calm = np.std(smoothed_defects(surface, 0.1) / share)
     assert rough > 5 and calm < rough / 15 and calm < 0.35
+
+
+def test_an_order_of_elimination_serves_again():
+    surface = Form(*starfish(40)).surface
+    matrix = cotangent_laplacian(surface) + diags_array(vertex_areas(surface))
+    load = np.random.default_rng(4).normal(size=(len(surface.points), 2))
+    first = Factor(matrix)
+    order = first.order
+    assert sorted(order.tolist()) == list(range(len(order)))
+    again = Factor(matrix.tocsr()[order][:, order].tocsc(), ordered=True)
+    np.testing.assert_allclose(again.solve(load[order]), first.solve(load)[order], rtol=1e-10, atol=1e-12)
+    assert (again.order == np.arange(len(order))).all()  # it is taken as it comes

@@ -23,7 +23,7 @@ def test_downhill(name, energy):
     fields = fields_of_cells(level, 4)
     end = descend(level, fields, 0.2, energy, steps=10)
     begin = evaluate(level, cut_by_fields(level.surface, fields), 0.2, energy).total
-    assert end.history[0] == pytest.approx(begin, rel=1e-12)
+    assert end.history[0] == pytest.approx(begin, rel=0.02)  # redistancing moves the cut by a little, and comes first
     assert end.cost.total < 0.97 * begin
     assert end.cost.total == pytest.approx(min(end.history), rel=0.01)  # only the redistancing may cost a little
     assert end.steps <= 10
@@ -91,7 +91,7 @@ def test_a_network_climbs_the_ladder():
     coarse, fine = ladder.levels
     fields = descend(coarse, fields_of_cells(coarse, 2), 0.2, steps=30).fields
     low = evaluate(coarse, cut_by_fields(coarse.surface, fields), 0.2, "square")
-    lifted = ladder.lift(fields, 0, 1)
+    lifted = ladder.lift(fields, 0)
     high = evaluate(fine, cut_by_fields(fine.surface, lifted), 0.2, "square")
     assert high.length == pytest.approx(low.length, rel=0.05)
     assert high.total == pytest.approx(low.total, rel=0.1)

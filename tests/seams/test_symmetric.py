@@ -8,8 +8,9 @@ from seamwright.form.mirror import Plane
 from seamwright.seams.cut import cut_by_fields
 from seamwright.seams.energy import evaluate, field_gradient
 from seamwright.seams.fields import from_labels
+from seamwright.seams.merging import joined
 from seamwright.seams.network import cut_through
-from seamwright.seams.symmetric import Symmetry, merged_alike, symmetrised
+from seamwright.seams.symmetric import Symmetry, alike, symmetrised
 from seamwright.seams.topology import make_disks, regions, voronoi
 from seamwright.seams.twins import twin_pieces, twin_stretch
 
@@ -147,13 +148,12 @@ def test_merges_are_made_on_both_sides():
     x, y, z = level.surface.points.T
     symmetry = Symmetry(level.surface, [X])
     quarters = 2 * (x > 0) + (z > 0)
-    both = merged_alike(level, symmetry, quarters, 0, 1)  # and with it 2 and 3
+    both = joined(quarters, alike(level, symmetry, quarters, 0, 1))  # and with it 2 and 3
     assert both.max() == 1 and (both == (x > 0)).all()
-    across = merged_alike(level, symmetry, quarters, 0, 2)
-    assert across.max() == 2
+    assert joined(quarters, alike(level, symmetry, quarters, 0, 2)).max() == 2
     belt = np.where(np.abs(z) > 0.6, np.where(z > 0, 0, 3), np.where(x > 0, 1, 2))
-    assert merged_alike(level, symmetry, belt, 1, 2) is None  # the halves of a belt would make a ring
-    assert merged_alike(level, symmetry, belt, 0, 1).max() == 1  # a cap takes both halves
+    assert alike(level, symmetry, belt, 1, 2) is None  # the halves of a belt would make a ring
+    assert joined(belt, alike(level, symmetry, belt, 0, 1)).max() == 1  # a cap takes both halves
 
 
 def test_twins_are_named_by_their_side():

@@ -74,7 +74,7 @@ def _less_in_all(ladder, begin, thrift, energy, pieces):
     richer = enriched(level, coarse, thrift, energy, pieces)
     if richer is not coarse:
         for higher in range(rung + 1, top + 1):
-            fields = ladder.lift(richer.fields, higher - 1, higher)
+            fields = ladder.lift(richer.fields, higher - 1)
             richer = flow(levels[higher], fields, thrift, energy, steps=STEPS[-1])
         pool.append(simplify(levels[top], richer, thrift, energy, pieces))
-    return min(pool, key=lambda one: (0 if pieces is None else abs(one.fields.shape[1] - pieces), one.score))
+    return min(pool, key=lambda one: (0 if pieces is None else abs(one.count - pieces), one.score))

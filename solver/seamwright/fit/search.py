@@ -76,7 +76,7 @@ class Search:
 
     def lifted(self, rung, state):
         """The State one rung up."""
-        fields = self.ladder.lift(state.fields, rung - 1, rung)
+        fields = self.ladder.lift(state.fields, rung - 1)
         for _ in range(REPAIRS):
             cut = self._flow(rung, fields, state, SETTLE).cut
             state = self._after(rung, state, cut)

@@ -31,6 +31,33 @@ class Coarse:
             return np.bincount(self.owner, values, len(self.seeds))
         return np.column_stack([self.gather(column) for column in values.T])
 
+    def interpolation(self, points):
+        """(n, N) csr that carries values at the coarse points to the fine points (n, 3): linear on the nearest of the
+        triangles around each point's own coarse point, so never from another sheet of the form."""
+        triangles, count = self.surface.triangles, len(self.seeds)
+        corner = np.argsort(triangles.ravel(), kind="stable")
+        around = np.bincount(triangles.ravel(), minlength=count)
+        many = around[self.owner]
+        first = np.cumsum(many) - many
+        row = np.repeat(np.arange(len(points)), many)
+        at = (np.cumsum(around) - around)[self.owner[row]] + np.arange(len(row)) - first[row]
+        chosen = triangles[corner[at] // 3]
+        share = _shares(points[row], self.surface.points[chosen])
+        off = np.linalg.norm(points[row] - np.einsum("rk,rkx->rx", share, self.surface.points[chosen]), axis=1)
+        best = np.lexsort((off, row))[first]
+        ends = np.arange(0, share[best].size + 1, 3)
+        return csr_matrix((share[best].ravel(), chosen[best].ravel(), ends), shape=(len(points), count))
+
+
+def _shares(points, corners):
+    """(r, 3) barycentric coordinates of points (r, 3) over triangles (r, 3, 3), those outside brought to their edge."""
+    b, c, p = corners[:, 1] - corners[:, 0], corners[:, 2] - corners[:, 0], points - corners[:, 0]
+    bb, bc, cc, pb, pc = ((x * y).sum(axis=1) for x, y in ((b, b), (b, c), (c, c), (p, b), (p, c)))
+    area = np.maximum(bb * cc - bc * bc, 1e-12 * bb * cc + 1e-300)
+    share = np.column_stack([cc * pb - bc * pc, bb * pc - bc * pb]) / area[:, None]
+    share = np.maximum(np.column_stack([1 - share.sum(axis=1), share]), 0.0)
+    return share / share.sum(axis=1, keepdims=True)
+
 
 def coarsen(surface, count, seed=0):
     """Coarse with about `count` points for a connected surface, or None where that takes half its points or more.

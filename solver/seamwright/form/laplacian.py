@@ -42,27 +42,41 @@ def edge_laplacian(surface, weights):
 class Factor:
     """Factors of a symmetric positive definite sparse matrix (n, n), for many solves.
 
-    The unknowns are first put in reverse Cuthill-McKee order: minimum degree fills three times as much from the order in
-    which repeated subdivision numbers points, and loses nothing elsewhere.
+    order (n,): the unknowns as they were eliminated, which serves as well for any other matrix with entries in the same
+    places or fewer. ordered: the matrix comes in such an order. Without one the unknowns are first put in reverse
+    Cuthill-McKee order: minimum degree fills three times as much from the order in which repeated subdivision numbers
+    points, and loses nothing elsewhere.
     """
 
-    def __init__(self, matrix):
+    def __init__(self, matrix, ordered=False):
         matrix = matrix.tocsc()
         if not np.isfinite(matrix.data).all():
             raise CoverError("The form's equations hold numbers that are not finite; look for points that lie on top of "
                              "each other or immensely far away, merge or delete them, and try again.")
         try:
-            self._order = reverse_cuthill_mckee(matrix, symmetric_mode=True)
-            matrix = matrix[self._order][:, self._order].tocsc()
-            self._lu = splu(matrix, permc_spec="MMD_AT_PLUS_A", diag_pivot_thresh=0, options=dict(SymmetricMode=True))
+            self._place = None
+            if not ordered:
+                self._place = reverse_cuthill_mckee(matrix, symmetric_mode=True)
+                matrix = matrix[self._place][:, self._place].tocsc()
+            self._lu = splu(matrix, permc_spec="NATURAL" if ordered else "MMD_AT_PLUS_A", diag_pivot_thresh=0,
+                            options=dict(SymmetricMode=True))
         except RuntimeError as fault:
             raise CoverError("The form's equations have no single answer (their matrix is singular); look for loose points "
                              "or faces without area, delete them, and try again.") from fault
 
+    @property
+    def order(self):
+        """(n,) the unknown that is eliminated first, second and so on."""
+        eliminated = np.argsort(self._lu.perm_c)
+        return eliminated if self._place is None else self._place[eliminated]
+
     def solve(self, load):
         """Solution for a load (n,) or several, (n, k)."""
-        answer = np.empty(np.shape(load))
-        answer[self._order] = self._lu.solve(np.ascontiguousarray(np.asarray(load, dtype=float)[self._order]))
+        load = np.ascontiguousarray(load, dtype=float)
+        if self._place is None:
+            return self._lu.solve(load)
+        answer = np.empty(load.shape)
+        answer[self._place] = self._lu.solve(load[self._place])
         return answer
 
 

@@ -33,12 +33,12 @@ def descend(level, fields, thrift, energy="square", weights=None, steps=30, tole
     """
     count = fields.shape[1]
     cut = cut_by_fields(level.surface, fields)
-    cost = evaluate(level, cut, thrift, energy, weights, emphasis=emphasis)
-    history, taken, small, stuck = [cost.total], 0, 0, 0
+    history, taken, small, stuck = [], 0, 0, 0
     while taken < steps and small < 2 and stuck < 2:
         fields, twins = _fields(level, cut, count)
         cut = cut_by_fields(level.surface, fields)
         cost = evaluate(level, cut, thrift, energy, weights, emphasis=emphasis)
+        history.append(cost.total)
         gradient = _gradient(level, cut, fields, cost, twins)
         pairs = deque(maxlen=MEMORY)
         for _ in range(min(ROUND, steps - taken)):

@@ -11,7 +11,6 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from ..form.laplacian import Factor
 from .cut import rises
 from .level import triangle_stiffness
 
@@ -43,19 +42,21 @@ def density(energy):
 
 @dataclass
 class Cost:
-    """distortion, length (priced), total; u (n,) log scale; slope (c,) of the total by each cut's place."""
+    """distortion, length (priced), total; u (n,) log scale; each (K,) distortion of every region; slope (c,) of the total by
+    each cut's place."""
 
     distortion: float
     length: float
     total: float
     u: np.ndarray
+    each: np.ndarray | None = None
     slope: np.ndarray | None = None
 
 
 def evaluate(level, cut, thrift, energy, weights=None, gradient=True, emphasis=None):
     """Cost of a Cut on a Level. weights (K,) factor on each region's distortion, default 1;
     emphasis (n,) the same at each point."""
-    free, labels = level.free, cut.labels
+    labels = cut.labels
     kinds = [Pieces.of(level, cut, kind) for kind in (cut.two, cut.three) if len(kind.face)]
     mass = level.mass.copy()
     changed, change = [], []
@@ -69,33 +70,49 @@ def evaluate(level, cut, thrift, energy, weights=None, gradient=True, emphasis=N
         change.append(local - level.stiffness[face])
     changed = np.concatenate(changed) if changed else np.zeros(0, dtype=np.int64)
     change = np.concatenate(change) if change else np.zeros((0, 3, 3))
-    solve = Factor(level.matrix(changed, change)).solve if free.any() else np.copy  # a strip of faces has no inner point
-    u = np.zeros(len(free))
-    u[free] = solve((level.density * mass)[free])
-    weight = np.ones(len(free)) if weights is None else np.asarray(weights, dtype=float)[labels]
+    unknown = level.unknown
+    solve = level.factor(changed, change).solve if len(unknown) else np.copy  # a strip of faces has no inner point
+    u = np.zeros(len(mass))
+    u[unknown] = solve((level.density * mass)[unknown])
+    weight = np.ones(len(mass)) if weights is None else np.asarray(weights, dtype=float)[labels]
     weight = weight if emphasis is None else weight * emphasis
     pair = density(energy)
-    p = np.zeros(len(free))
+    p = np.zeros(len(mass))
     if pair is None:
         per_point = 0.5 * weight * level.density * u
-        distortion = float((per_point * mass).sum())
         share, p = 0.5, weight * u
         per_mass = weight * level.density * u
     else:
         value, rise = pair
         per_point = weight * value(u)
-        distortion = float((per_point * mass).sum())
         share = 1.0
         if gradient:
-            p[free] = solve((weight * mass * rise(u))[free])
+            p[unknown] = solve((weight * mass * rise(u))[unknown])
         per_mass = per_point + p * level.density
     length, slope = 0.0, np.zeros(len(level.surface.edges)) if gradient else None
     for pieces in kinds:
         length += _lengths(level, cut, pieces.kind, pieces.nodes, thrift, slope)
         if gradient:
             _slopes(level, pieces, u, p, per_mass, share, slope)
-    total = distortion + thrift * length
-    return Cost(distortion, length, total, u, None if slope is None else slope[cut.edge])
+    each = np.bincount(labels, per_point * mass)
+    distortion = float(each.sum())
+    return Cost(distortion, length, distortion + thrift * length, u, each, None if slope is None else slope[cut.edge])
+
+
+def borders(level, cut):
+    """(K, K) priced length of the seam between every two regions."""
+    count = int(cut.labels.max()) + 1
+    found = np.zeros(count * count)
+    for kind in (cut.two, cut.three):
+        nodes, whole = seam_nodes(level, cut, kind)
+        price = _prices(level, cut, kind)[0]
+        around = cut.labels[whole]
+        for a, b in kind.seams:
+            i, j = (0, 1) if len(kind.seams) == 1 else (a - 3, (a - 2) % 3)
+            length = np.linalg.norm(nodes[:, b] - nodes[:, a], axis=1) * 0.5 * (price[:, a - 3] + price[:, b - 3])
+            found += np.bincount(around[:, i] * count + around[:, j], length, minlength=count * count)
+    found = found.reshape(count, count)
+    return found + found.T
 
 
 def _place_of(level, cut):
@@ -193,14 +210,19 @@ def _slopes(level, pieces, u, p, per_mass, share, slope):
     _pull(level, pieces.kind, pieces.nodes, pieces.gather(pull), slope)
 
 
-def _lengths(level, cut, kind, nodes, thrift, slope):
-    """Priced seam length of a kind; adds thrift times its gradient into slope (e,) unless that is None."""
+def _prices(level, cut, kind):
+    """(price (k, c or c + 1) at the cuts of a kind and at its middle, (k, c) its rise along the cut edges)."""
     low, high = level.surface.edges[kind.edges, 0], level.surface.edges[kind.edges, 1]
-    place = _place_of(level, cut)[kind.edges]
     gain = level.price[high] - level.price[low]
-    price = level.price[low] + place * gain
+    price = level.price[low] + _place_of(level, cut)[kind.edges] * gain
     if len(kind.seams) == 3:
         price = np.concatenate([price, price.mean(axis=1, keepdims=True)], axis=1)
+    return price, gain
+
+
+def _lengths(level, cut, kind, nodes, thrift, slope):
+    """Priced seam length of a kind; adds thrift times its gradient into slope (e,) unless that is None."""
+    price, gain = _prices(level, cut, kind)
     total, pull, pull_price = 0.0, np.zeros_like(nodes), np.zeros_like(price)
     for a, b in kind.seams:
         along = nodes[:, b] - nodes[:, a]

@@ -5,16 +5,17 @@ import numpy as np
 from ..form.coarsen import coarsen
 from ..form.laplacian import smoothed_defects
 from ..form.measure import total_area
-from .fields import smoothed
 from .level import Level, scaled
 from .symmetric import Symmetry
 
 RUNGS = (500, 1500, 6000)
+SWEEPS = 2  # of averaging with the neighbours after a lift, which leaves the seams as angular as the rung below
 GROWTH = 1.7  # a rung is worth building only where the next has this many times its points
 
 
 class Ladder:
-    """levels: coarse to fine, the last is the form; owners: for each level (n,) its point for every point of the form.
+    """levels: coarse to fine, the last is the form; owners: for each level (n,) its point for every point of the form;
+    carriers: for each level but the last the csr that carries values to the next.
 
     surface: one connected Surface. price (n,) factor on seam length. planes: list of Planes of symmetry that networks are to
     keep, at right angles. seed: of the coarse levels. `factor`: lengths on the levels over lengths in metres.
@@ -25,28 +26,29 @@ class Ladder:
         n = len(fine.points)
         price = np.ones(n) if price is None else price
         load = smoothed_defects(fine)
-        self.levels, self.owners = [], []
-        for count in rungs:
-            rung = coarsen(fine, count, seed) if count * GROWTH < n else None
-            if rung is not None:
-                size = np.bincount(rung.owner, minlength=len(rung.surface.points))
-                coarse, more = scaled(rung.surface, total_area(rung.surface))
-                symmetry = _symmetry(coarse, planes, self.factor * more)
-                self.levels.append(Level(coarse, rung.gather(load), rung.gather(price) / size, symmetry))
-                self.owners.append(rung.owner)
+        self.levels, self.owners, self.carriers = [], [], []
         self.levels.append(Level(fine, load, price, _symmetry(fine, planes, self.factor)))
         self.owners.append(np.arange(n))
+        surface, owner, scale = fine, np.arange(n), 1.0
+        for count in sorted(rungs, reverse=True):  # each rung is made of the one above it
+            rung = coarsen(surface, count, seed) if count * GROWTH < len(surface.points) else None
+            if rung is not None:
+                self.carriers.insert(0, rung.interpolation(surface.points))
+                owner = rung.owner[owner]
+                size = np.bincount(owner)
+                surface, more = scaled(rung.surface, total_area(rung.surface))
+                scale *= more
+                self.levels.insert(0, Level(surface, np.bincount(owner, load), np.bincount(owner, price) / size,
+                                            _symmetry(surface, planes, self.factor * scale)))
+                self.owners.insert(0, owner)
 
-    def lift(self, fields, source, target):
-        """(N, K) fields on level `target` from those on level `source`: carried by clusters, then their borders rounded."""
-        spread = fields[self.owners[source]]
-        owner = self.owners[target]
-        count = len(self.levels[target].surface.points)
-        size = np.bincount(owner, minlength=count)
-        carried = np.column_stack([np.bincount(owner, column, minlength=count) for column in spread.T]) / size[:, None]
-        level = self.levels[target]
-        smooth = 0.7 * self.levels[source].edge_length / level.edge_length
-        return smoothed(level, carried, smooth)
+    def lift(self, fields, source):
+        """(N, K) fields on the level after `source` from those on it."""
+        carried = self.carriers[source] @ fields
+        level = self.levels[source + 1]
+        for _ in range(SWEEPS):
+            carried = level.averaging @ carried
+        return carried
 
 
 def _symmetry(surface, planes, factor):

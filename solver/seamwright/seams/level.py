@@ -6,7 +6,7 @@ Lengths on a level are scaled so that the form's area is 4 pi (the scale on whic
 from functools import cached_property
 
 import numpy as np
-from scipy.sparse import csc_matrix
+from scipy.sparse import csc_matrix, csr_matrix
 
 from ..form.laplacian import Factor, cotangent_laplacian
 from ..form.measure import areas, vertex_areas
@@ -53,12 +53,17 @@ class Level:
         return free
 
     @cached_property
+    def unknown(self):
+        """(k,) the free points in the order of elimination: u is unknown there."""
+        order = self.smoother.order
+        return order[self.free[order]]
+
+    @cached_property
     def _pattern(self):
-        """Sparsity of the Laplacian over the free points, with the slot of every triangle's nine entries in its data."""
-        triangles, free = self.surface.triangles, self.free
-        count = int(free.sum())
-        number = np.full(len(free), -1)
-        number[free] = np.arange(count)
+        """Sparsity of the Laplacian over the unknowns, with the slot of every triangle's nine entries in its data."""
+        triangles, count = self.surface.triangles, len(self.unknown)
+        number = np.full(len(self.free), -1)
+        number[self.unknown] = np.arange(count)
         rows = number[np.repeat(triangles, 3, axis=1)].ravel()
         columns = number[np.tile(triangles, (1, 3))].ravel()
         inside = (rows >= 0) & (columns >= 0)
@@ -79,26 +84,38 @@ class Level:
         slots, rows, _, _ = self._pattern
         return np.bincount(slots.ravel(), self.stiffness.ravel(), minlength=len(rows) + 1)
 
-    def matrix(self, changed, change):
-        """Laplacian over the free points after adding change (k, 3, 3) to the triangles `changed` (k,)."""
+    def factor(self, changed, change):
+        """Factor of the Laplacian over the unknowns after adding change (k, 3, 3) to the triangles `changed` (k,)."""
         slots, rows, pointers, count = self._pattern
-        data = self._base + np.bincount(slots[changed].ravel(), change.ravel(), minlength=len(rows) + 1)
-        matrix = csc_matrix((data[:-1], rows, pointers), shape=(count, count))
-        matrix.data[np.abs(matrix.data) < 1e-12] = 0.0
-        matrix = matrix.copy()
-        matrix.eliminate_zeros()  # what lies across a seam is exactly zero: the blocks fall apart
-        return matrix
+        data = (self._base + np.bincount(slots[changed].ravel(), change.ravel(), minlength=len(rows) + 1))[:-1]
+        kept = np.abs(data) > 1e-12  # what lies across a seam is exactly zero: the blocks fall apart
+        before = np.concatenate([[0], np.cumsum(kept)])
+        return Factor(csc_matrix((data[kept], rows[kept], before[pointers]), shape=(count, count)), ordered=True)
 
     @cached_property
     def smoother(self):
         """Factor of M + l^2 L, l three edge lengths: the metric in which seams move."""
         return self.diffusion(3 * self.edge_length)
 
+    @cached_property
+    def averaging(self):
+        """(n, n) csr: half a point's own value, half its neighbours' mean."""
+        a, b = self.surface.edges.T
+        rows, columns = np.concatenate([a, b]), np.concatenate([b, a])
+        half = 0.5 / np.bincount(rows, minlength=len(self.mass))
+        own = np.arange(len(self.mass))
+        values = np.concatenate([half[rows], np.full(len(own), 0.5)])
+        return csr_matrix((values, (np.append(rows, own), np.append(columns, own))), shape=(len(own), len(own)))
+
+    @cached_property
+    def laplacian(self):
+        """(n, n) csc cotangent Laplacian over all points."""
+        return cotangent_laplacian(self.surface)
+
     def diffusion(self, length):
         """Factor of M + length^2 L over all points."""
-        laplacian = cotangent_laplacian(self.surface)
-        mass = csc_matrix((self.mass, (np.arange(len(self.mass)),) * 2), shape=laplacian.shape)
-        return Factor((mass + length**2 * laplacian).tocsc())
+        mass = csc_matrix((self.mass, (np.arange(len(self.mass)),) * 2), shape=self.laplacian.shape)
+        return Factor((mass + length**2 * self.laplacian).tocsc())
 
 
 def triangle_stiffness(corners):

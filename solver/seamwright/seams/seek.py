@@ -1,76 +1,100 @@
 """The network for a given thrift: several coarse starts, each flowed and simplified, the best carried up the ladder."""
 
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 
-from .cut import recut
+from .cut import cut_by_fields, recut
 from .descend import descend
 from .energy import evaluate
 from .fields import from_labels, redistance
-from .merging import merges
+from .merging import Merging, joined, unions
 from .starts import starts, tidied
 from .topology import through
 
 REPAIRS = 3  # flows, as long as regions had to be put right after the last
 PIECE_PRICE = 0.02  # fixed price of a piece, or specks pay
-KEPT = (3, 2, 1)  # networks carried on from the first rungs; one after that
+TRIALS = ((0, 7), (4, 5), (8, 3))  # on the first rung: steps of flow for every network, then how many of the best go on
 MOST_PIECES = 40
 SPLIT_STEPS = 12  # of flow after a split
-STEPS = (24, 16, 10, 8)  # steps by rung, coarse to fine; the form itself takes the last
+STEPS = (24, 12, 6, 2)  # steps by rung, coarse to fine; the form itself takes the last
 
 
 @dataclass
 class Found:
-    """fields (n, K), cut and cost on a level; score = total + the price of the pieces; converged: the flow came to rest."""
+    """cut and cost on a level; score = total + the price of the pieces; converged: the flow came to rest."""
 
-    fields: np.ndarray
+    level: object
     cut: object
     cost: object
-    score: float
     converged: bool = True
+
+    @property
+    def count(self):
+        """Number of regions."""
+        return int(self.cut.labels.max()) + 1
+
+    @property
+    def score(self):
+        """Total and the price of the pieces."""
+        return self.cost.total + PIECE_PRICE * self.count
+
+    @cached_property
+    def fields(self):
+        """(n, K) signed distances from the regions' borders."""
+        return redistance(self.level, self.cut, self.count)
 
 
 def flow(level, fields, thrift, energy="square", weights=None, steps=20):
-    """Flow, then put the topology right (disks, no specks). Returns Found, its fields matching its cut."""
-    for _ in range(REPAIRS):
+    """Flow, then put the topology right (disks, no specks), and flow again as long as that changed it. Returns Found."""
+    cut = cut_by_fields(level.surface, fields)
+    labels = tidied(level, cut.labels)
+    for turn in range(REPAIRS):
+        if turn or not np.array_equal(labels, cut.labels):
+            cut = recut(level.surface, cut, labels)
+            fields = redistance(level, cut, int(labels.max()) + 1)
+        if weights is not None and len(weights) != fields.shape[1]:
+            weights = None
         end = descend(level, fields, thrift, energy, weights, steps)
-        labels = tidied(level, end.cut.labels)
-        same = labels.max() + 1 == fields.shape[1]
-        found = settle(level, end.cut, labels, thrift, energy, weights if same else None, end.converged)
-        if np.array_equal(labels, end.cut.labels):
-            break
-        fields, weights = found.fields, None
-    return found
+        cut, labels = end.cut, tidied(level, end.cut.labels)
+        if np.array_equal(labels, cut.labels):
+            return Found(level, cut, end.cost, end.converged)
+    return settle(level, cut, labels, thrift, energy, converged=end.converged)
 
 
 def settle(level, cut, labels, thrift, energy="square", weights=None, converged=True):
     """Found for labels (n,) that differ from a cut's own in places."""
     cut = recut(level.surface, cut, labels)
-    cost = evaluate(level, cut, thrift, energy, weights, gradient=False)
-    fields = redistance(level, cut, int(labels.max()) + 1)
-    return Found(fields, cut, cost, cost.total + PIECE_PRICE * fields.shape[1], converged)
+    return Found(level, cut, evaluate(level, cut, thrift, energy, weights, gradient=False), converged)
 
 
 def simplify(level, found, thrift, energy="square", pieces=None):
     """Merge neighbours while that lowers the score (or while there are more than the wished pieces)."""
     least = max(2 if level.free.all() else 1, pieces or 1)
-    while True:
+    merging = Merging(level, thrift, energy)
+    merging.begin(found.count)
+    while found.count > least:
         labels = found.cut.labels
-        count = int(labels.max()) + 1
-        few = [trial for trial in merges(level, labels) if trial.max() + 1 >= least] if count > least else []
-        trials = [settle(level, found.cut, trial, thrift, energy) for trial in few]
-        best = min(trials, key=lambda trial: trial.score, default=None)
-        if best is None or (best.score >= found.score and (pieces is None or count <= pieces)):
+        roots = [root for root in unions(level, labels) if len(np.unique(root)) >= least]
+        if not roots:
             return found
-        found = best
+        gains = merging.gains(found.cut, found.cost, roots)
+        rise = [gain + PIECE_PRICE * len(np.unique(root)) for gain, root in zip(gains, roots, strict=True)]
+        best = roots[int(np.argmin(rise))]
+        trial = settle(level, found.cut, joined(labels, best), thrift, energy, converged=found.converged)
+        if trial.score >= found.score and (pieces is None or found.count <= pieces):
+            return found
+        found = trial
+        merging.merge(best)
+    return found
 
 
 def enriched(level, found, thrift, energy="square", pieces=None):
     """Split regions through the point of most stretch, one at a time, the best first, while that lowers the score (or while
     there are fewer than the wished pieces). Returns the flowed Found."""
     while True:
-        count = found.fields.shape[1]
+        count = found.count
         if count >= (pieces or MOST_PIECES):
             return found
         fields = [from_labels(level, labels) for labels in _splits(level, found)]
@@ -79,7 +103,7 @@ def enriched(level, found, thrift, energy="square", pieces=None):
             trials = [simplify(level, trial, thrift, energy) for trial in trials]
             trials = [trial for trial in trials if trial.score < found.score]
         else:
-            trials = [trial for trial in trials if count < trial.fields.shape[1] <= pieces]
+            trials = [trial for trial in trials if count < trial.count <= pieces]
         if not trials:
             return found
         found = min(trials, key=lambda trial: trial.score)
@@ -105,24 +129,28 @@ def seek(ladder, thrift, energy="square", pieces=None, progress=None):
     levels = ladder.levels
     level = levels[0]
     cells = sorted({*(2, 3, 4, 5, 7, 10), *((pieces, pieces + 2) if pieces else ())})
-    pool = []
-    for labels in starts(level, cells):
-        found = flow(level, from_labels(level, labels), thrift, energy, steps=STEPS[0])
-        pool.append(simplify(level, found, thrift, energy, pieces))
-    if pieces is not None and all(found.fields.shape[1] < pieces for found in pool):
-        pool = [enriched(level, min(pool, key=lambda found: _rank(found, pieces)), thrift, energy, pieces)]
+    pool = [settle(level, cut_by_fields(level.surface, from_labels(level, labels)), labels, thrift, energy)
+            for labels in starts(level, cells)]
+    for steps, kept in TRIALS:
+        if steps:
+            pool = [simplify(level, flow(level, found.fields, thrift, energy, steps=steps), thrift, energy, pieces)
+                    for found in pool]
+        pool = _best(pool, pieces)[:kept]
+    if pieces is not None and all(found.count < pieces for found in pool):
+        pool = [enriched(level, pool[0], thrift, energy, pieces)]
     for rung in range(1, len(levels)):
-        pool = sorted(pool, key=lambda found: _rank(found, pieces))[: KEPT[min(rung - 1, 2)]]
-        level, steps = levels[rung], STEPS[-1] if rung == len(levels) - 1 else STEPS[min(rung, 3)]
-        pool = [
-            simplify(level, flow(level, ladder.lift(found.fields, rung - 1, rung), thrift, energy, steps=steps),
-                     thrift, energy, pieces)
-            for found in pool
-        ]
+        level, top = levels[rung], rung == len(levels) - 1
+        steps = STEPS[-1] if top else STEPS[min(rung, 2)]
+        pool = [flow(level, ladder.lift(found.fields, rung - 1), thrift, energy, steps=steps) for found in pool]
+        if not top or pieces is not None:
+            pool = [simplify(level, found, thrift, energy, pieces) for found in pool]
+        pool = _best(pool, pieces)[:1]
         if progress:
             progress((rung + 1) / len(levels), "seams")
-    return min(pool, key=lambda found: _rank(found, pieces))
+    return pool[0]
 
 
-def _rank(found, pieces):
-    return (0 if pieces is None else abs(found.fields.shape[1] - pieces), found.score)
+def _best(pool, pieces):
+    """The networks, the best first, of those alike only one."""
+    ranked = sorted(pool, key=lambda found: (0 if pieces is None else abs(found.count - pieces), found.score))
+    return list({found.cut.labels.tobytes(): found for found in reversed(ranked)}.values())[::-1]

@@ -3,7 +3,7 @@
 import numpy as np
 
 from .symmetric import symmetrised
-from .topology import absorb, make_disks, voronoi
+from .topology import absorb, make_disks, regions, split_components, voronoi
 
 CELLS = (2, 3, 4, 5, 7, 10)
 SPECK = 0.01  # share of the form's area under which a region is no piece
@@ -25,6 +25,9 @@ def starts(level, cells=CELLS):
 
 def tidied(level, labels):
     """Labels whose regions are connected disks of a sensible size, symmetric where the level is to be."""
-    labels = make_disks(level, labels)
-    labels = make_disks(level, absorb(level, labels, SPECK * level.mass.sum()))
+    labels = split_components(level.surface, labels)
+    tables, speck = regions(level, labels), SPECK * level.mass.sum()
+    if (tables.euler != 1).any() or tables.area.min() < speck:
+        labels = make_disks(level, labels)
+        labels = make_disks(level, absorb(level, labels, speck))
     return labels if level.symmetry is None else symmetrised(level, level.symmetry, labels)

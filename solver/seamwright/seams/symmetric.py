@@ -122,8 +122,9 @@ def _filled(surface, labels, known, within):
     return np.where(lost & (source >= 0), labels[np.maximum(source, 0)], labels)
 
 
-def merged_alike(level, symmetry, labels, i, j):
-    """(n,) labels with neighbours i and j merged, and their partners too; None when that leaves what is no disk."""
+def alike(level, symmetry, labels, i, j):
+    """(K,) region that each becomes part of when neighbours i and j merge, and their partners too; None when that leaves
+    what is no disk."""
     count = int(labels.max()) + 1
     together = [(i, j)]
     for partner in symmetry.partners(labels, count):
@@ -132,4 +133,4 @@ def merged_alike(level, symmetry, labels, i, j):
     for a, b in together:
         root[root == root[b]] = root[a]
     trial = np.unique(root, return_inverse=True)[1].ravel()[labels]
-    return trial if (regions(level, trial).euler == 1).all() else None
+    return root if (regions(level, trial).euler == 1).all() else None

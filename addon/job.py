@@ -34,7 +34,7 @@ class Job:
         request = {"path": sys.path, "name": reading.name, "wishes": asked, "save": save}
         (folder / "request.json").write_text(json.dumps(request), encoding="utf-8")
         np.savez(folder / "form.npz", points=reading.points, corners=reading.corners, sizes=reading.sizes,
-                 keep_clear=reading.keep_clear)
+                 keep_clear=reading.keep_clear, held=reading.held)
         # one thread: small systems gain nothing from more, and sums must not depend on the machine
         env = {**os.environ, "OPENBLAS_NUM_THREADS": "1", "OMP_NUM_THREADS": "1"}
         command = [sys.executable, *bpy.app.python_args, worker.__file__, str(folder)]

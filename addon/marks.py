@@ -4,7 +4,7 @@ import numpy as np
 
 from . import names
 from .lay import lay
-from .read import edges, faces
+from .read import edges, faces, held
 
 
 def mark(mesh, pattern):
@@ -59,9 +59,18 @@ def set_seams(mesh, flags):
     mesh.update()
 
 
+def set_held(mesh, flags):
+    """Make (e,) bool the edges' attribute of held seams; None takes it off."""
+    old = mesh.attributes.get(names.HELD)
+    if old is not None:
+        mesh.attributes.remove(old)
+    if flags is not None:
+        mesh.attributes.new(names.HELD, "BOOLEAN", "EDGE").data.foreach_set("value", flags)
+
+
 def clear(mesh):
-    """Take off everything `mark` puts on."""
-    set_seams(mesh, np.zeros(len(mesh.edges), bool))
+    """Take off everything `mark` puts on; held seams stay marked."""
+    set_seams(mesh, held(mesh))
     if layer := mesh.uv_layers.get(names.UV_MAP):
         mesh.uv_layers.remove(layer)
     for name in (names.PIECE, names.STRETCH):

@@ -10,6 +10,7 @@ PROPERTY = "seamwright"
 UV_MAP = "Seamwright"
 PIECE = "seamwright_piece"
 STRETCH = "seamwright_stretch"
+HELD = "seamwright_held"
 
 # materials of the covered copy, followed by a number
 MATERIAL = "Seamwright"
@@ -20,6 +21,8 @@ STOP = "seamwright.stop"
 CHECK = "seamwright.check"
 SAVE = "seamwright.save_sheets"
 CLEAR = "seamwright.clear"
+HOLD = "seamwright.hold_seams"
+LET_GO = "seamwright.let_go_seams"
 
 # panels and lists
 FORM_PANEL = "SEAMWRIGHT_PT_form"

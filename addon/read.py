@@ -4,13 +4,15 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from . import names
+
 
 @dataclass(frozen=True)
 class Reading:
     """One object's surface as the solver wants it.
 
     points (n, 3) metres; corners (c,) point indices of all faces, face after face; sizes (f,) corners of each face;
-    keep_clear (n,) the wish of that name, empty where nothing is painted.
+    keep_clear (n,) and held (k, 2) the wishes of these names, empty where nothing is painted or held.
     """
 
     name: str
@@ -18,6 +20,7 @@ class Reading:
     corners: np.ndarray
     sizes: np.ndarray
     keep_clear: np.ndarray
+    held: np.ndarray
 
     @property
     def faces(self):
@@ -43,13 +46,14 @@ def read(thing, scene, depsgraph, keep_clear=""):
         points = positions(mesh).astype(float)
         corners, sizes = faces(mesh)
         clear = _keep_clear(mesh, evaluated.vertex_groups.get(keep_clear))
+        kept = edges(mesh)[held(mesh)]
     finally:
         evaluated.to_mesh_clear()
     matrix = np.array(evaluated.matrix_world)
     points = (points @ matrix[:3, :3].T + matrix[:3, 3]) * scene.unit_settings.scale_length
     if thing.matrix_world.is_negative:
         corners = _turned(corners, sizes)
-    return Reading(thing.name, points, corners, sizes, clear)
+    return Reading(thing.name, points, corners, sizes, clear, kept)
 
 
 def positions(mesh):
@@ -66,6 +70,21 @@ def edges(mesh):
     if len(ends):
         mesh.attributes[".edge_verts"].data.foreach_get("value", ends.ravel())
     return ends
+
+
+def seams(mesh):
+    """(e,) bool: edges that are marked as seams."""
+    flags = np.empty(len(mesh.edges), bool)
+    mesh.edges.foreach_get("use_seam", flags)
+    return flags
+
+
+def held(mesh):
+    """(e,) bool: edges that are held seams."""
+    flags, attribute = np.zeros(len(mesh.edges), bool), mesh.attributes.get(names.HELD)
+    if attribute is not None and (attribute.domain, attribute.data_type) == ("EDGE", "BOOLEAN"):
+        attribute.data.foreach_get("value", flags)
+    return flags
 
 
 def faces(mesh):

@@ -15,8 +15,8 @@ import threading
 from pathlib import Path
 
 
-def wishes_of(asked, keep_clear=()):
-    """The solver's Wishes from plain data as `WishesGroup.asked` gives it, and from weights. Raises WishError."""
+def wishes_of(asked, keep_clear=(), held=()):
+    """The solver's Wishes from plain data as `WishesGroup.asked` gives it, weights and edges. Raises WishError."""
     import seamwright as sw
 
     plain = dict(asked)
@@ -24,7 +24,7 @@ def wishes_of(asked, keep_clear=()):
     plain.pop("cut_itself", None)  # where the answer goes is the host's affair
     if own:
         plain["goods"] = sw.read_goods(own)
-    return sw.Wishes(**plain, keep_clear=keep_clear if len(keep_clear) else None)
+    return sw.Wishes(**plain, keep_clear=keep_clear if len(keep_clear) else None, held=held if len(held) else None)
 
 
 def say(**message):
@@ -41,10 +41,11 @@ def work(folder):
 
     try:
         with np.load(folder / "form.npz") as arrays:
-            points, corners, sizes, keep_clear = (arrays[key] for key in ("points", "corners", "sizes", "keep_clear"))
+            points, corners, sizes = (arrays[key] for key in ("points", "corners", "sizes"))
+            wished = arrays["keep_clear"], arrays["held"]
         faces = corners.reshape(-1, 3) if (sizes == 3).all() else np.split(corners, np.cumsum(sizes)[:-1])
         form = sw.Form(points, faces, name=request["name"])
-        wishes = wishes_of(request["wishes"], keep_clear)
+        wishes = wishes_of(request["wishes"], *wished)
         pattern = sw.cover(form, wishes, lambda share, words: say(share=float(share), words=words))
         if request["save"]:
             pattern.save(**request["save"])

@@ -35,6 +35,20 @@ def ellipsoid(a, b, c, level):
     return points * (a, b, c), faces
 
 
+def globe(around, bands, axes=(1.0, 1.0, 1.0)):
+    """Sphere of latitude bands, or ellipsoid with half axes: quads, triangles at the poles; point 1 + i around + j is on
+    the i-th ring from the north, the first and last point are the poles."""
+    angle, turn = np.meshgrid(np.arange(1, bands) * np.pi / bands, np.arange(around) * 2 * np.pi / around, indexing="ij")
+    rings = np.stack([np.sin(angle) * np.cos(turn), np.sin(angle) * np.sin(turn), np.cos(angle)], axis=-1).reshape(-1, 3)
+    j, south = np.arange(around), len(rings) + 1
+    k = (j + 1) % around
+    first = 1 + around * np.arange(bands - 2)[:, None]
+    quads = np.stack([first + j, first + around + j, first + around + k, first + k], axis=-1).reshape(-1, 4).tolist()
+    faces = [[0, 1 + a, 1 + b] for a, b in zip(j.tolist(), k.tolist(), strict=True)] + quads
+    faces += [[south, south - around + b, south - around + a] for a, b in zip(j.tolist(), k.tolist(), strict=True)]
+    return np.concatenate([[(0, 0, 1.0)], rings, [(0, 0, -1.0)]]) * axes, faces
+
+
 def torus(R, r, nu, nv):
     """Torus about z in nu x nv quads, split: R to the middle of the tube, r the tube."""
     u, v = np.meshgrid(np.arange(nu) * 2 * np.pi / nu, np.arange(nv) * 2 * np.pi / nv, indexing="ij")

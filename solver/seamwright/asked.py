@@ -4,9 +4,11 @@ import numpy as np
 from scipy.spatial import cKDTree
 
 from .errors import WishError
-from .form.measure import total_area
+from .form.measure import open_points, total_area
 from .form.mirror import NEAR, measured, planes, reflection
+from .form.surface import Surface
 from .pattern import Pattern
+from .seams.network import Network
 
 KEPT = 0.01  # of the form's size: a network that is this near to its mirror image is symmetric
 LOPSIDED = 0.1  # difference of seam prices on the two sides of a plane from which they count as unlike
@@ -14,10 +16,10 @@ LOPSIDED = 0.1  # difference of seam prices on the two sides of a plane from whi
 
 def check(form, wishes):
     """Refuse wishes that this form cannot be given, and those that this version cannot do, rather than leave them undone."""
-    later = {"held": wishes.held, "shut": wishes.shut, "only": wishes.only}
+    later = {"shut": wishes.shut, "only": wishes.only}
     for name, value in later.items():
         if value is not None:
-            raise WishError(f"{name}: not offered yet. Leave it out; keep_clear, pieces, thrift and start are there.")
+            raise WishError(f"{name}: not offered yet. Leave it out; keep_clear, held, pieces, thrift and start are there.")
     _check_start(form, wishes.start)
     if not isinstance(wishes.symmetry, str):
         size = np.sqrt(total_area(form.surface))
@@ -46,23 +48,81 @@ def _check_start(form, start):
         raise WishError("start: labels must be numbers. Give every face the number of its piece.")
 
 
+def edges_asked(form, name, pairs):
+    """(k,) edges of the form's surface that pairs (k, 2) of the caller's points are, each once. Raises WishError."""
+    pairs = np.asarray(pairs).reshape(-1, 2).astype(np.int64)
+    outside = (pairs < 0) | (pairs >= len(form.point_of))
+    if outside.any():
+        raise WishError(f"{name}: point {pairs[outside][0]} is none of this form, whose points run from 0 to "
+                        f"{len(form.point_of) - 1}. Give the ends of edges of this form.")
+    ends = form.point_of[pairs]
+    edges = np.where((ends >= 0).all(axis=1), form.surface.edge_index(ends), -1)
+    wrong = np.flatnonzero((edges < 0) | form.diagonal[edges])
+    if len(wrong):
+        a, b = pairs[wrong[0]]
+        more = f", and {len(wrong) - 1} more pairs are none either" if len(wrong) > 1 else ""
+        raise WishError(f"{name}: points {a} and {b} are not the ends of an edge of '{form.name}'{more}. Give the ends of "
+                        "edges that are there; a line across a face is none.")
+    return np.unique(edges)
+
+
+def held_edges(form, wishes, never):
+    """(e,) bool: edges of the form's surface that are held seams. never (n,) bool: points where no seam may be."""
+    surface = form.surface
+    held = np.zeros(len(surface.edges), dtype=bool)
+    if wishes.held is None:
+        return held
+    held[edges_asked(form, "held", wishes.held)] = True
+    held &= ~surface.open_edges  # there the goods end anyway
+    ends = surface.edges[held]
+    barred = ends[never[ends].all(axis=1)]
+    if len(barred):
+        raise WishError(f"held and keep_clear: the edge from {_given(form, barred[0])} is a held seam where there may never "
+                        "be one. Leave it out of held, or take the paint off it.")
+    loose = (np.bincount(ends.ravel(), minlength=len(never)) == 1) & ~open_points(surface)
+    alone = ends[loose[ends].all(axis=1)]
+    if len(alone):
+        raise WishError(f"held: the edge from {_given(form, alone[0])} is alone, and one edge within a piece opens nothing. "
+                        "Hold an edge beside it too.")
+    return held
+
+
+def _given(form, pair):
+    """'point a to point b', a pair of the form's points by the caller's numbers."""
+    return " to ".join(_point(form, point) for point in pair)
+
+
+def _point(form, point):
+    """'point 7', one of the form's points by the caller's number."""
+    return f"point {np.flatnonzero(form.point_of == point)[0]}"
+
+
 def prices_allow(form, part, price, never):
     """Refuse a part that needs seams and may have none. price (n,) at its points, never: what counts as no seam there."""
-    surface = part.surface
-    if (price >= never).all() and (surface.euler != 1 or len(surface.boundary_loops) != 1):
-        raise WishError(f"keep_clear: seams may never be anywhere on '{form.name}', and without a seam it cannot lie flat. "
-                        "Leave a place for seams.")
+    count, component = part.surface.triangle_components  # opened along held seams it may be several
+    for index in range(count):
+        points, local = np.unique(part.surface.triangles[component == index], return_inverse=True)
+        alone = Surface(part.surface.points[points], local.reshape(-1, 3))
+        inner = price[points][~open_points(alone)]
+        if not len(inner) or (inner < never).any() or (alone.euler == 1 and len(alone.boundary_loops) == 1):
+            continue
+        if count == 1 and not part.held.edges.any():
+            raise WishError(f"keep_clear: seams may never be anywhere on '{form.name}', and without a seam it cannot lie "
+                            "flat. Leave a place for seams.")
+        raise WishError(f"held and keep_clear: seams may never be anywhere around {_point(form, part.points[points[0]])}, "
+                        "and the held seams leave there what cannot lie flat without another. Leave a place for seams.")
 
 
 def planes_of(part, price, wishes, network=None):
     """List of Planes of symmetry that a part's network is to keep.
 
-    The maker's own where they hold for the part; else those found, unless the seam prices (n,) or the network to start from
-    are lopsided themselves.
+    The maker's own where they hold for the part; else those found, unless the seam prices (n,), the held seams or the
+    network to start from are lopsided themselves.
     """
+    held = Network(part.held.surface, part.held.edges, None)
     if isinstance(wishes.symmetry, str):
-        found = [] if wishes.symmetry == "none" else planes(part.surface)
-        return [plane for plane in found if _unlike(part.surface, plane, price) < LOPSIDED
+        found = [] if wishes.symmetry == "none" else planes(part.held.surface)
+        return [plane for plane in found if _unlike(part.surface, plane, price) < LOPSIDED and _keeps(held, plane)
                 and (network is None or _keeps(network, plane))]
     size = np.sqrt(total_area(part.surface))
     own = [measured(part.surface, point, normal) for point, normal in wishes.symmetry]
@@ -71,6 +131,9 @@ def planes_of(part, price, wishes, network=None):
         if _unlike(part.surface, plane, price) >= LOPSIDED:
             raise WishError("keep_clear and symmetry: the weights are not alike on the two sides of a plane. Paint them "
                             "alike, or leave symmetry at \"auto\".")
+        if not _keeps(held, plane):
+            raise WishError("held and symmetry: the held seams are not alike on the two sides of a plane. Hold them alike, "
+                            "or leave symmetry at \"auto\".")
     return own
 
 
@@ -81,9 +144,9 @@ def _unlike(surface, plane, price):
 def _keeps(network, plane):
     """Whether a network's seams lie on their own mirror image, within an edge or so."""
     edges = network.surface.edges[network.seam]
-    middles = network.surface.points[edges].mean(axis=1)
-    if not len(middles):
+    if not len(edges):
         return True
+    middles = network.surface.points[edges].mean(axis=1)
     reach = max(KEPT * np.sqrt(network.surface_area), 2 * network.surface.edge_lengths.mean())
     return cKDTree(middles).query(plane.mirrored(middles))[0].max() < reach
 
@@ -95,11 +158,17 @@ def shared_out(form, parts, pieces):
     """
     if pieces is None:
         return [None] * len(parts)
+    least = [part.surface.triangle_components[0] for part in parts]
     if pieces < len(parts):
         raise WishError(f"pieces: {pieces} for a form of {len(parts)} parts that are not joined. Wish for {len(parts)} or "
                         "more.")
+    if pieces < sum(least):
+        raise WishError(f"pieces and held: {pieces} pieces, and the held seams alone part '{form.name}' into {sum(least)}. "
+                        f"Wish for {sum(least)} or more, or hold less.")
     if pieces > form.face_count:
         raise WishError(f"pieces: {pieces} for a form of {form.face_count} faces. Wish for fewer.")
-    each, more = divmod(int(pieces), len(parts))
-    larger = np.argsort([-total_area(part.surface) for part in parts], kind="stable")[:more]
-    return [each + (number in larger) for number in range(len(parts))]
+    areas = [total_area(part.surface) for part in parts]
+    wanted = list(least)
+    for _ in range(int(pieces) - sum(least)):
+        wanted[min(range(len(parts)), key=lambda number: (wanted[number], -areas[number]))] += 1
+    return wanted

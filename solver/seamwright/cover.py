@@ -4,15 +4,17 @@ from dataclasses import replace
 
 import numpy as np
 
-from .asked import check, planes_of, prices_allow, shared_out
+from .asked import check, held_edges, planes_of, prices_allow, shared_out
 from .assemble import assemble
 from .errors import CoverError
 from .fit.goods import get
 from .fit.improve import improve
 from .fit.join import joined
+from .fit.sewn import closed
 from .fit.tailor import Tailor
 from .form.offset import carried, offset
 from .form.surface import Surface
+from .parts import parts_of
 from .pattern import Pattern
 from .seams.begun import network_of_labels, network_of_pattern
 from .seams.ladder import Ladder
@@ -36,7 +38,7 @@ def cover(form, wishes=None, progress=None):
     check(form, wishes)
     prices = seam_prices(form, wishes)
     neutral, said = _neutral(form, goods, wishes)
-    parts = list(_parts(form, neutral))
+    parts = parts_of(form, neutral, held_edges(form, wishes, prices >= NEVER))
     wanted = shared_out(form, parts, wishes.pieces)
     covered, notes = [], list(form.mended) + said
     for number, (part, pieces) in enumerate(zip(parts, wanted, strict=True)):
@@ -71,28 +73,6 @@ def _neutral(form, goods, wishes):
     ]
 
 
-class _Part:
-    """One connected part of a form: its Surface, in the middle of the goods, the same on the form itself, and where its
-    points and triangles are in the form."""
-
-    def __init__(self, form, neutral, triangles):
-        self.triangles = triangles
-        self.points, local = np.unique(form.triangles[triangles], return_inverse=True)
-        self.surface = self.on_form = Surface(neutral.points[self.points], local.reshape(-1, 3))
-        if neutral is not form.surface:
-            self.on_form = Surface(form.points[self.points], self.surface.triangles)
-        self.polygon = np.unique(form.polygon[triangles], return_inverse=True)[1].ravel()
-        whole = form.surface.triangle_edges[triangles]
-        self.diagonal = np.zeros(len(self.surface.edges), dtype=bool)
-        self.diagonal[self.surface.triangle_edges] = form.diagonal[whole]
-
-
-def _parts(form, neutral):
-    count, component = form.surface.triangle_components
-    for index in range(count):
-        yield _Part(form, neutral, np.flatnonzero(component == index))
-
-
 def _cover_part(form, part, price, wishes, goods, pieces, tell, notes):
     """(Tailored, planes of symmetry it keeps) of one part; what the maker should know goes to notes."""
     prices_allow(form, part, price, NEVER)
@@ -105,7 +85,7 @@ def _cover_part(form, part, price, wishes, goods, pieces, tell, notes):
         level = ladder.levels[-1]
         if wishes.route == "edges":
             return cut_along(level, cut, part.polygon, part.diagonal, metric)
-        return opened(cut_through(level, cut, metric))
+        return opened(cut_through(level, part.held.evened(cut), metric))
 
     tailor = Tailor(ladder, explicit, goods, wishes.comfort, wishes.grain)
     if begun is not None:
@@ -114,13 +94,12 @@ def _cover_part(form, part, price, wishes, goods, pieces, tell, notes):
             notes.append("Start: no better seams were found from there, so they are as they were.")
     elif wishes.thrift is None and pieces is None:
         result = tailor.run(tell)
-        return _placed(result, part), planes
     else:
         found = seek(ladder, wishes.thrift or PLAIN_THRIFT, wishes.energy, pieces, tell)
         result = tailor.untangled(tailor.real(len(ladder.levels) - 1, found.cut, fully=True))
     if pieces is not None:
         result = joined(tailor, result, pieces)
-    return _placed(tailor.sewn(result), part), planes
+    return _placed(tailor.sewn(closed(part.held, result)), part), planes
 
 
 def _placed(result, part):
@@ -134,9 +113,10 @@ def _begun(form, part, wishes):
     if wishes.start is None:
         return None
     if isinstance(wishes.start, Pattern):
-        begun = network_of_pattern(wishes.start.pieces, part.triangles)
-        points = carried(begun.surface, begun.source, part.on_form, part.surface)
-        return replace(begun, surface=Surface(points, begun.surface.triangles))
+        network = network_of_pattern(wishes.start.pieces, part.triangles)
+        points = carried(network.surface, network.source, part.on_form, part.held.surface)
+        network = replace(network, surface=Surface(points, network.surface.triangles))
+        return opened(part.held.opened_network(network)) if part.held.edges.any() else network
     labels = np.unique(wishes.start, return_inverse=True)[1].ravel()[form.polygon][part.triangles]
     return network_of_labels(part.surface, labels, ~part.diagonal)
 

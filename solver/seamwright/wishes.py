@@ -73,6 +73,9 @@ class Wishes:
             if not (weights >= 0).all():
                 bad = np.flatnonzero(~(weights >= 0))[:5]
                 raise WishError(f"keep_clear: weights must be 0 or more; points {bad.tolist()} are not. Paint them again.")
+        for name in ("held", "shut"):
+            if getattr(self, name) is not None:
+                _check_pairs(name, getattr(self, name))
 
 
 def _number(name, value, low, high):
@@ -91,6 +94,14 @@ def _numbers(name, value, wanted):
         return np.asarray(value, dtype=float)
     except (TypeError, ValueError) as error:
         raise WishError(f"{name}: {value!r:.60} is not {wanted}.") from error
+
+
+def _check_pairs(name, value):
+    """Refuse what is no (k, 2) array of point numbers."""
+    wanted = "pairs of point numbers, such as [(0, 1), (1, 2)]"
+    pairs = _numbers(name, value, wanted)
+    if pairs.size and (pairs.ndim != 2 or pairs.shape[1] != 2 or not (pairs == np.floor(pairs)).all()):
+        raise WishError(f"{name}: {value!r:.60} is not {wanted}.")
 
 
 def _choice(name, value, allowed):

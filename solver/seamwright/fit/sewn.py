@@ -10,6 +10,7 @@ from ..pattern import STRAINED
 from ..seams.sides import joints
 from .match import match
 from .measure import SLACK, measure, utilisation, warp_weft_shear
+from .tailored import Tailored
 
 
 def sewn(network, judged, goods, comfort, grain=None):
@@ -36,3 +37,27 @@ def sewn(network, judged, goods, comfort, grain=None):
         each = utilisation(warp_weft_shear(surface.points, surface.triangles, flat), goods, comfort)
         new.append(replace(old, utilisation=use, each=each, flat=flat, crossings=crossings))
     return new if worse <= SLACK * network.surface_area else judged
+
+
+def closed(held, met):
+    """The Tailored on the whole of a surface, from one on the same opened along a Held's seams: pieces stay as they are."""
+    if not held.edges.any():
+        return met
+    corners = np.empty((*met.network.surface.triangles.shape, 2))
+    for piece, one in enumerate(met.judged):
+        part, _, triangles = met.network.piece_surface(piece)
+        corners[triangles] = one.flat[part.triangles]
+    network, came, corners = held.sewn_together(met.network, corners)
+    own = met.network.pieces[1]
+    rank = np.empty(len(own), dtype=np.int64)  # of each triangle within its piece
+    for piece in range(met.network.pieces[0]):
+        rank[own == piece] = np.arange((own == piece).sum())
+    judged = []
+    for piece in range(network.pieces[0]):
+        part, _, triangles = network.piece_surface(piece)
+        old = met.judged[own[came[triangles[0]]]]
+        flat = np.empty((len(part.points), 2))
+        flat[part.triangles] = corners[triangles]
+        crossings = overlaps(flat, part.boundary_loops[0]) if old.crossings else []
+        judged.append(replace(old, each=old.each[rank[came[triangles]]], flat=flat, crossings=crossings))
+    return Tailored(network, judged)

@@ -59,7 +59,7 @@ class Tailor:
         met = self.confirmed(top, state, spare)
         if len(met.network.chains) <= FEW_CHAINS:  # what the coarse rung thought needed, the form itself may not
             met = self.dropped(met, ENOUGH, fully=True, halves=False)[0]
-        return self.sewn(darted(self.judges, met))
+        return darted(self.judges, met)
 
     def sewn(self, met):
         """The Tailored with the two sides of its seams matched, where the goods allow it."""

@@ -4,7 +4,7 @@ from dataclasses import dataclass
 
 import numpy as np
 from scipy.sparse import csr_matrix
-from scipy.sparse.csgraph import dijkstra
+from scipy.sparse.csgraph import connected_components, dijkstra
 
 from .measure import open_points, total_area, vertex_areas, vertex_normals
 from .surface import Surface
@@ -60,7 +60,7 @@ def _shares(points, corners):
 
 
 def coarsen(surface, count, seed=0):
-    """Coarse with about `count` points for a connected surface, or None where that takes half its points or more.
+    """Coarse with about `count` points for a surface, or None where that takes half its points or more.
 
     Cells grow along the edges from seeds spread evenly in place and direction; three cells that meet in a triangle make a
     coarse triangle. Where a cell is no disk, or two cells meet other than in one stretch (the closed ball property of
@@ -72,7 +72,7 @@ def coarsen(surface, count, seed=0):
         return None
     width = np.sqrt(total_area(surface) / count)
     graph = distances_along_edges(surface, CREASE * width)
-    seeds = spread_seeds(surface, count, width, seed)
+    seeds = one_a_part(graph, spread_seeds(surface, count, width, seed))
     mass, rim = vertex_areas(surface), open_points(surface)
     for _ in range(SWEEPS):
         owner, _ = grow(graph, seeds)
@@ -116,6 +116,13 @@ def spread_seeds(surface, count, width, seed):
         if abs(len(first) - count) < 0.04 * count:
             break
     return first
+
+
+def one_a_part(graph, seeds):
+    """The seeds, ascending, with the first point of every part that has none."""
+    part = connected_components(graph, directed=False)[1]
+    first = np.unique(part, return_index=True)[1]
+    return np.union1d(seeds, first[~np.isin(part[first], part[seeds])])
 
 
 def first_in_boxes(place, size):
@@ -175,7 +182,7 @@ def judge(surface, owner, count):
     differ = labels != np.roll(labels, -1, axis=1)
     kinds = differ.sum(axis=1)
     junctions = labels[kinds == 3]
-    faulty = np.zeros(count, dtype=bool)
+    faulty = np.bincount(junctions.ravel(), minlength=count) == 0  # a part of few cells has no coarse triangle there
 
     # a cell is a disk when its own points, edges and triangles count to 1 (it is connected by growth)
     ends = owner[surface.edges]

@@ -11,7 +11,7 @@ import numpy as np
 from scipy.sparse import csr_matrix
 from scipy.spatial import cKDTree
 
-from .measure import areas, total_area, triangle_normals, vertex_areas, vertex_normals
+from .measure import areas, open_points, total_area, triangle_normals, vertex_areas, vertex_normals
 from .nearest import Nearest
 
 NEAR = 0.003
@@ -34,6 +34,8 @@ SQUARE = 0.1
 """Largest cosine between planes that count as at right angles."""
 UPRIGHT, SIDEWAYS = 0.3, 0.1
 """What a level plane costs against an upright one, and one across y against one across x, in units of the tolerance."""
+DRAWN = 0.5
+"""How far points on open edges are drawn toward the middle of their triangles before they are looked for in the mirror."""
 EVEN = 0.3
 """Misfits under this share of the tolerance are taken as equal."""
 
@@ -92,8 +94,22 @@ def measured(surface, point, normal):
 
 def mirrored_points(surface, plane):
     """(triangle (n,), barycentric (n, 3)): where on the Surface each point's mirror image lies."""
-    points, normals = plane.mirrored(surface.points), plane.turned(vertex_normals(surface))
-    return Nearest(surface).places(points, normals)[:2]
+    nearest, normals = Nearest(surface), plane.turned(vertex_normals(surface))
+    triangle, share, _ = nearest.places(plane.mirrored(drawn_in(surface)), normals)
+    rim = np.flatnonzero(open_points(surface))
+    triangle[rim], share[rim] = nearest.around(plane.mirrored(surface.points[rim]), normals[rim], triangle[rim])
+    return triangle, share
+
+
+def drawn_in(surface):
+    """(n, 3) the points, those on open edges moved a little inward: so the two sides of a slit can be told apart."""
+    points, rim = surface.points.copy(), open_points(surface)
+    middles = points[surface.triangles].mean(axis=1)
+    count = np.bincount(surface.triangles.ravel(), minlength=len(points))
+    inward = np.column_stack([np.bincount(surface.triangles.ravel(), np.repeat(axis, 3), minlength=len(points))
+                              for axis in middles.T]) / np.maximum(count, 1)[:, None]
+    points[rim] += DRAWN * (inward - points)[rim]
+    return points
 
 
 def reflection(surface, plane):

@@ -50,6 +50,10 @@ class Nearest:
         found = np.einsum("kc,kcx->kx", share, self.surface.points[self.surface.triangles[best]])
         return best, share, np.linalg.norm(points - found, axis=1)
 
+    def around(self, points, normals, triangles):
+        """(triangle (k,), barycentric (k, 3)) nearest to points (k, 3) among those that touch the triangles (k,)."""
+        return self._best(points, normals, self.surface.triangles[triangles])[:2]
+
     def _best(self, points, normals, around):
         """(triangle, barycentric, rank) of the best of all triangles around the tree's points `around` (k, c)."""
         count = self._count[around.ravel()]

@@ -9,7 +9,7 @@ import numpy as np
 from scipy.sparse import coo_matrix
 from scipy.sparse.csgraph import dijkstra
 
-from ..form.mirror import reflection
+from ..form.mirror import drawn_in, reflection
 from .topology import make_disks, regions, split_components
 
 SMALLEST = 0.005  # share of the form's area under which what lies on one side of a plane is no region
@@ -28,8 +28,9 @@ class Mirror:
         self.plane = plane
         self.matrix = reflection(surface, plane)
         self.back = self.matrix.T.tocsr()
-        self.height = (surface.points - plane.point) @ plane.normal
-        self.right = self.height > -1e-9 * np.ptp(self.height)
+        self.height, inward = ((points - plane.point) @ plane.normal for points in (surface.points, drawn_in(surface)))
+        tiny = 1e-9 * np.ptp(self.height)
+        self.right = np.where(np.abs(self.height) <= tiny, inward, self.height) > -tiny  # a slit in the plane has two sides
         corners, share = self.matrix.indices.reshape(n, 3), self.matrix.data.reshape(n, 3)
         rows = np.arange(n)
         self.image = corners[rows, share.argmax(axis=1)]

@@ -1,0 +1,42 @@
+"""The parts of a form that are covered one by one, each opened along the seams that the maker holds."""
+
+import numpy as np
+
+from .form.surface import Surface
+from .seams.held import Held
+
+
+class Part:
+    """One connected part of a Form.
+
+    triangles (t,): the form's triangles in it, ascending; held: a Held of its Surface in the middle of the goods; on_form:
+    the same triangles on the form itself; surface: that of `held` opened along the held seams, on which everything runs;
+    points (n,): the form's point of each of its points; polygon (t,): the maker's face of each triangle, numbered from 0;
+    diagonal (e,) bool: edges that are none of the maker's.
+    """
+
+    def __init__(self, form, neutral, triangles, held):
+        self.triangles = triangles
+        points, local = np.unique(form.triangles[triangles], return_inverse=True)
+        whole = self.on_form = Surface(neutral.points[points], local.reshape(-1, 3))
+        if neutral is not form.surface:
+            self.on_form = Surface(form.points[points], whole.triangles)
+        self.held = Held(whole, _edges_of_part(form, triangles, whole, held))
+        self.surface = self.held.opened
+        self.points = points[self.held.origin]
+        self.polygon = np.unique(form.polygon[triangles], return_inverse=True)[1].ravel()
+        self.diagonal = self.held.at_opened(_edges_of_part(form, triangles, whole, form.diagonal))
+
+
+def parts_of(form, neutral, held):
+    """List of the Parts of a form; neutral: its Surface in the middle of the goods; held (e,) bool: edges of the form's
+    surface that are held seams."""
+    count, component = form.surface.triangle_components
+    return [Part(form, neutral, np.flatnonzero(component == index), held) for index in range(count)]
+
+
+def _edges_of_part(form, triangles, surface, values):
+    """(e',) of values (e,) at the form's edges, for the edges of the Surface of some of its triangles."""
+    found = np.empty(len(surface.edges), dtype=values.dtype)
+    found[surface.triangle_edges] = values[form.surface.triangle_edges[triangles]]
+    return found

@@ -4,10 +4,11 @@ import numpy as np
 
 from ..seams.begun import point_shares
 from ..seams.fields import from_labels, smoothed
-from ..seams.seek import PIECE_PRICE, STEPS, enriched, flow, simplify
+from ..seams.seek import PIECE_PRICE, enriched, flow, simplify, steps_on
 from ..seams.starts import tidied
 from ..seams.study import network_cost
 
+TRY = 8  # steps of flow on the form itself in a try
 TRIES = 6  # prices tried until length and distortion both fall
 FACTOR = 4.0  # by which the price changes at first
 COARSE = 1  # rung on which splits are tried
@@ -49,7 +50,7 @@ def _less_of_both(level, begin, energy, before):
     price, factor, way = before.distortion / max(before.length, 1e-12), FACTOR, 0
     fields = from_labels(level, tidied(level, begin))
     for _ in range(TRIES):
-        found = flow(level, fields, price, energy, steps=STEPS[-1])
+        found = flow(level, fields, price, energy, steps=TRY)
         longer, worse = found.cost.length > before.length, found.cost.distortion > before.distortion
         if not longer and not worse:
             return found
@@ -64,17 +65,17 @@ def _less_in_all(ladder, begin, thrift, energy, pieces):
     levels = ladder.levels
     top, rung = len(levels) - 1, min(COARSE, len(levels) - 1)
     level = levels[top]
-    found = flow(level, from_labels(level, tidied(level, begin)), thrift, energy, steps=3 * STEPS[-1])
+    found = flow(level, from_labels(level, tidied(level, begin)), thrift, energy, steps=3 * TRY)
     pool = [simplify(level, found, thrift, energy, pieces)]
     level = levels[rung]
     votes = np.zeros((len(level.surface.points), int(begin.max()) + 1))
     np.add.at(votes, (ladder.owners[rung], begin), levels[top].mass)
-    coarse = flow(level, from_labels(level, tidied(level, votes.argmax(axis=1))), thrift, energy, steps=STEPS[rung])
+    coarse = flow(level, from_labels(level, tidied(level, votes.argmax(axis=1))), thrift, energy, steps=steps_on(level))
     coarse = simplify(level, coarse, thrift, energy, pieces)
     richer = enriched(level, coarse, thrift, energy, pieces)
     if richer is not coarse:
         for higher in range(rung + 1, top + 1):
             fields = ladder.lift(richer.fields, higher - 1)
-            richer = flow(levels[higher], fields, thrift, energy, steps=STEPS[-1])
+            richer = flow(levels[higher], fields, thrift, energy, steps=TRY)
         pool.append(simplify(levels[top], richer, thrift, energy, pieces))
     return min(pool, key=lambda one: (0 if pieces is None else abs(one.count - pieces), one.score))

@@ -80,13 +80,16 @@ class Factor:
         return answer
 
 
-def smoothed_defects(surface, share=0.02):
+def smoothing(surface, share=0.02):
+    """Factor of M + l^2 L, M the vertex areas, L the cotangent Laplacian, l = share * sqrt(area): one step of heat flow."""
+    reach = share**2 * total_area(surface)
+    return Factor(diags_array(vertex_areas(surface)) + reach * cotangent_laplacian(surface))
+
+
+def smoothed_defects(surface, share=0.02, smoother=None):
     """(n,) radians: angle defects of the inner points spread over `share` of the form's size, their total kept.
 
-    M (M + l^2 L)^-1 K with M the vertex areas, L the cotangent Laplacian and l = share * sqrt(area); one step of heat flow.
-    Points on an open edge bring no load of their own.
+    M (M + l^2 L)^-1 K, by `smoothing` (`smoother`, where it is at hand). Points on an open edge bring no load of their own.
     """
     defects = np.where(open_points(surface), 0.0, angle_defects(surface))
-    mass = vertex_areas(surface)
-    reach = share**2 * total_area(surface)
-    return mass * Factor(diags_array(mass) + reach * cotangent_laplacian(surface)).solve(defects)
+    return vertex_areas(surface) * (smoother or smoothing(surface, share)).solve(defects)

@@ -3,12 +3,12 @@
 import numpy as np
 
 from ..form.coarsen import coarsen
-from ..form.laplacian import smoothed_defects
+from ..form.laplacian import smoothed_defects, smoothing
 from ..form.measure import total_area
 from .level import Level, scaled
 from .symmetric import Symmetry
 
-RUNGS = (500, 1500, 6000)
+RUNGS = (500, 1500, 6000, 24000, 96000)
 SWEEPS = 2  # of averaging with the neighbours after a lift, which leaves the seams as angular as the rung below
 GROWTH = 1.7  # a rung is worth building only where the next has this many times its points
 
@@ -25,10 +25,10 @@ class Ladder:
         fine, self.factor = scaled(surface, total_area(surface))
         n = len(fine.points)
         price = np.ones(n) if price is None else price
-        load = smoothed_defects(fine)
-        self.levels, self.owners, self.carriers = [], [], []
-        self.levels.append(Level(fine, load, price, _symmetry(fine, planes, self.factor)))
-        self.owners.append(np.arange(n))
+        smoother = smoothing(fine)  # the metric in which seams move there, too: one factorisation less
+        load = smoothed_defects(fine, smoother=smoother)
+        self.levels = [Level(fine, load, price, _symmetry(fine, planes, self.factor), smoother)]
+        self.owners, self.carriers = [np.arange(n)], []
         surface, owner, scale = fine, np.arange(n), 1.0
         for count in sorted(rungs, reverse=True):  # each rung is made of the one above it
             rung = coarsen(surface, count, seed) if count * GROWTH < len(surface.points) else None

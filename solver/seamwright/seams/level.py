@@ -17,10 +17,12 @@ FORM_AREA = 4 * np.pi
 
 class Level:
     """surface: Surface at scale (area near 4 pi). load (n,) curvature, radians. price (n,) factor on the seam's length.
-    symmetry: the Symmetry that networks here keep, or None."""
+    symmetry: the Symmetry that networks here keep, or None. smoother: the metric in which seams move, where it is at hand."""
 
-    def __init__(self, surface, load, price=None, symmetry=None):
+    def __init__(self, surface, load, price=None, symmetry=None, smoother=None):
         self.surface, self.symmetry = surface, symmetry
+        if smoother is not None:
+            self.smoother = smoother
         self.load = np.asarray(load, dtype=float)
         self.price = np.ones(len(surface.points)) if price is None else np.asarray(price, dtype=float)
         self.areas = areas(surface)

@@ -15,10 +15,11 @@ from .topology import through
 
 REPAIRS = 3  # flows, as long as regions had to be put right after the last
 PIECE_PRICE = 0.02  # fixed price of a piece, or specks pay
-TRIALS = ((0, 7), (4, 5), (8, 3))  # on the first rung: steps of flow for every network, then how many of the best go on
+TRIALS = ((0, 7), (6, 3))  # on the first rung: steps of flow for every network, then how many of the best go on
 MOST_PIECES = 40
 SPLIT_STEPS = 12  # of flow after a split
-STEPS = (24, 12, 6, 2)  # steps by rung, coarse to fine; the form itself takes the last
+STEPS = ((1000, 24), (3000, 12), (12000, 6))  # points up to which a level takes so many steps; a finer one takes
+LAST_STEPS = 2
 
 
 @dataclass
@@ -138,16 +139,22 @@ def seek(ladder, thrift, energy="square", pieces=None, progress=None):
         pool = _best(pool, pieces)[:kept]
     if pieces is not None and all(found.count < pieces for found in pool):
         pool = [enriched(level, pool[0], thrift, energy, pieces)]
-    for rung in range(1, len(levels)):
-        level, top = levels[rung], rung == len(levels) - 1
-        steps = STEPS[-1] if top else STEPS[min(rung, 2)]
-        pool = [flow(level, ladder.lift(found.fields, rung - 1), thrift, energy, steps=steps) for found in pool]
-        if not top or pieces is not None:
-            pool = [simplify(level, found, thrift, energy, pieces) for found in pool]
-        pool = _best(pool, pieces)[:1]
+    for rung, level in enumerate(levels):
+        top = rung == len(levels) - 1
+        if rung or top:  # the first rung is done, unless it is the form itself
+            fields = [ladder.lift(found.fields, rung - 1) if rung else found.fields for found in pool]
+            pool = [flow(level, one, thrift, energy, steps=steps_on(level)) for one in fields]
+            if not top or pieces is not None:
+                pool = [simplify(level, found, thrift, energy, pieces) for found in pool]
+            pool = _best(pool, pieces)[:1]
         if progress:
             progress((rung + 1) / len(levels), "seams")
     return pool[0]
+
+
+def steps_on(level):
+    """Steps of flow that pay on a level after a lift."""
+    return next((steps for most, steps in STEPS if len(level.mass) <= most), LAST_STEPS)
 
 
 def _best(pool, pieces):

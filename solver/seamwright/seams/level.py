@@ -17,7 +17,7 @@ FORM_AREA = 4 * np.pi
 
 class Level:
     """surface: Surface at scale (area near 4 pi). load (n,) curvature, radians. price (n,) factor on the seam's length.
-    symmetry: the Symmetry that networks here keep, or None. smoother: the metric in which seams move, where it is at hand."""
+    symmetry: the Symmetry that networks here keep, or None. smoother: the metric in which seams move, if at hand."""
 
     def __init__(self, surface, load, price=None, symmetry=None, smoother=None):
         self.surface, self.symmetry = surface, symmetry

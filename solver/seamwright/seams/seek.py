@@ -10,6 +10,7 @@ from .descend import descend
 from .energy import evaluate
 from .fields import from_labels, redistance
 from .merging import Merging, joined, unions
+from .pointed import MORE, Points
 from .starts import starts, tidied
 from .topology import through
 
@@ -47,7 +48,7 @@ class Found:
         return redistance(self.level, self.cut, self.count)
 
 
-def flow(level, fields, thrift, energy="square", weights=None, steps=20):
+def flow(level, fields, thrift, energy="square", weights=None, steps=20, emphasis=None):
     """Flow, then put the topology right (disks, no specks), and flow again as long as that changed it. Returns Found."""
     cut = cut_by_fields(level.surface, fields)
     labels = tidied(level, cut.labels)
@@ -57,7 +58,7 @@ def flow(level, fields, thrift, energy="square", weights=None, steps=20):
             fields = redistance(level, cut, int(labels.max()) + 1)
         if weights is not None and len(weights) != fields.shape[1]:
             weights = None
-        end = descend(level, fields, thrift, energy, weights, steps)
+        end = descend(level, fields, thrift, energy, weights, steps, emphasis=emphasis)
         cut, labels = end.cut, tidied(level, end.cut.labels)
         if np.array_equal(labels, cut.labels):
             return Found(level, cut, end.cost, end.converged)
@@ -139,17 +140,34 @@ def seek(ladder, thrift, energy="square", pieces=None, progress=None):
         pool = _best(pool, pieces)[:kept]
     if pieces is not None and all(found.count < pieces for found in pool):
         pool = [enriched(level, pool[0], thrift, energy, pieces)]
+    points, emphasis = Points(ladder), [None] * len(levels)
     for rung, level in enumerate(levels):
         top = rung == len(levels) - 1
         if rung or top:  # the first rung is done, unless it is the form itself
             fields = [ladder.lift(found.fields, rung - 1) if rung else found.fields for found in pool]
-            pool = [flow(level, one, thrift, energy, steps=steps_on(level)) for one in fields]
+            pool = [flow(level, one, thrift, energy, steps=steps_on(level), emphasis=emphasis[rung]) for one in fields]
             if not top or pieces is not None:
                 pool = [simplify(level, found, thrift, energy, pieces) for found in pool]
             pool = _best(pool, pieces)[:1]
+        if rung == points.rung:
+            pool[0], emphasis = through_tips(points, pool[0], thrift, energy)
         if progress:
             progress((rung + 1) / len(levels), "seams")
     return pool[0]
+
+
+def through_tips(points, found, thrift, energy):
+    """(Found whose seams run nearer to the tips that `found` misses, the emphasis on every level that keeps them there)."""
+    level, rung, levels = found.level, points.rung, len(points.ladder.levels)
+    emphasis, amount = [None] * levels, np.zeros(len(points.tips))
+    for more in MORE:
+        missed = points.missed(found.fields)
+        if not missed.any():
+            break
+        amount[missed] = more
+        emphasis = points.emphasis(amount)
+        found = flow(level, found.fields, thrift, energy, steps=steps_on(level), emphasis=emphasis[rung])
+    return found, emphasis
 
 
 def steps_on(level):

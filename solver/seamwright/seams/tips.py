@@ -12,14 +12,16 @@ TOP = 0.1  # what lies within this of a tip's potential is the tip itself
 WIDEST = 0.25  # farthest that a tip reaches, as a share of the form's size: what reaches farther is a ridge
 
 
-def tips(surface, persistence=PERSISTENCE):
+def tips(surface, persistence=PERSISTENCE, load=None):
     """(k,) points of a Surface, the highest first: maxima of the potential v, -Laplace v = curvature less its mean.
+
+    load (n,): the curvature at the points, their angle defects if not given.
 
     The mean is taken over each connected part; open edges bring no curvature and let nothing through. A maximum counts when
     it rises by `persistence` over the highest pass that leads to a higher one (Edelsbrunner, Letscher, Zomorodian 2002). The
     rim of a lid or of a ring is a ridge, not a tip.
     """
-    points, potential = np.arange(len(surface.points)), curvature_potential(surface)
+    points, potential = np.arange(len(surface.points)), curvature_potential(surface, load)
     peak = _peaks(surface, potential)
     ends = peak[surface.edges]
     across = ends[:, 0] != ends[:, 1]
@@ -50,11 +52,11 @@ def tips(surface, persistence=PERSISTENCE):
     return kept[np.array([_width(surface, potential, tip) <= reach for tip in kept.tolist()], dtype=bool)]
 
 
-def curvature_potential(surface):
+def curvature_potential(surface, load=None):
     """(n,) the potential v of `tips`, zero at the first point of each part."""
     part, first = _parts(surface)
     mass = vertex_areas(surface)
-    load = np.where(open_points(surface), 0.0, angle_defects(surface))
+    load = np.where(open_points(surface), 0.0, angle_defects(surface) if load is None else load)
     mean = np.bincount(part, load) / np.bincount(part, mass)
     pins = csc_matrix((np.ones(len(first)), (first, first)), shape=(len(mass),) * 2)
     potential = Factor(cotangent_laplacian(surface) + pins).solve(load - mean[part] * mass)

@@ -9,6 +9,7 @@ from .form.mirror import NEAR, measured, planes, reflection
 from .form.surface import Surface
 from .pattern import Pattern
 from .seams.network import Network
+from .seams.whole import is_disk
 
 KEPT = 0.01  # of the form's size: a network that is this near to its mirror image is symmetric
 LOPSIDED = 0.1  # difference of seam prices on the two sides of a plane from which they count as unlike
@@ -16,10 +17,10 @@ LOPSIDED = 0.1  # difference of seam prices on the two sides of a plane from whi
 
 def check(form, wishes):
     """Refuse wishes that this form cannot be given, and those that this version cannot do, rather than leave them undone."""
-    later = {"shut": wishes.shut, "only": wishes.only}
+    later = {"only": wishes.only}
     for name, value in later.items():
         if value is not None:
-            raise WishError(f"{name}: not offered yet. Leave it out; keep_clear, held, pieces, thrift and start are there.")
+            raise WishError(f"{name}: not offered yet. Leave it out; keep_clear, held, shut, pieces and start are there.")
     _check_start(form, wishes.start)
     if not isinstance(wishes.symmetry, str):
         size = np.sqrt(total_area(form.surface))
@@ -87,6 +88,31 @@ def held_edges(form, wishes, never):
     return held
 
 
+def shut_edges(form, wishes, held):
+    """(e,) bool: edges of the form's surface that may be no seams. held (e,) bool: those that are."""
+    shut = np.zeros(len(form.surface.edges), dtype=bool)
+    if wishes.shut is None:
+        return shut
+    shut[edges_asked(form, "shut", wishes.shut)] = True
+    both = form.surface.edges[shut & held]
+    if len(both):
+        raise WishError(f"held and shut: the edge from {_given(form, both[0])} is wished to be a seam and to be none. Leave "
+                        "it out of one of them.")
+    return shut & ~form.surface.open_edges  # there nothing is sewn
+
+
+def patches_allow(form, part):
+    """Refuse a part in which shut edges leave no place for a seam that has to be."""
+    for number in range(0 if part.patch is None else int(part.patch.max()) + 1):
+        inside = part.patch == number
+        if is_disk(part.surface, inside):
+            continue
+        ends = part.surface.edges[part.shut & inside[part.surface.edges].all(axis=1)]
+        raise WishError(f"shut: the edges around {_point(form, part.points[ends[0, 0]])} close a ring, and what has no seam "
+                        "cannot lie flat there. Leave some edges out, so that a seam finds a way through where no face is "
+                        "beside a shut edge.")
+
+
 def _given(form, pair):
     """'point a to point b', a pair of the form's points by the caller's numbers."""
     return " to ".join(_point(form, point) for point in pair)
@@ -116,14 +142,14 @@ def prices_allow(form, part, price, never):
 def planes_of(part, price, wishes, network=None):
     """List of Planes of symmetry that a part's network is to keep.
 
-    The maker's own where they hold for the part; else those found, unless the seam prices (n,), the held seams or the
-    network to start from are lopsided themselves.
+    The maker's own where they hold for the part; else those found, unless the seam prices (n,), the edges held or
+    shut, or the network to start from are lopsided themselves.
     """
-    held = Network(part.held.surface, part.held.edges, None)
+    held, shut = Network(part.held.surface, part.held.edges, None), Network(part.surface, part.shut, None)
     if isinstance(wishes.symmetry, str):
         found = [] if wishes.symmetry == "none" else planes(part.held.surface)
         return [plane for plane in found if _unlike(part.surface, plane, price) < LOPSIDED and _keeps(held, plane)
-                and (network is None or _keeps(network, plane))]
+                and _keeps(shut, plane) and (network is None or _keeps(network, plane))]
     size = np.sqrt(total_area(part.surface))
     own = [measured(part.surface, point, normal) for point, normal in wishes.symmetry]
     own = [plane for plane in own if plane.error <= NEAR * size]
@@ -131,9 +157,10 @@ def planes_of(part, price, wishes, network=None):
         if _unlike(part.surface, plane, price) >= LOPSIDED:
             raise WishError("keep_clear and symmetry: the weights are not alike on the two sides of a plane. Paint them "
                             "alike, or leave symmetry at \"auto\".")
-        if not _keeps(held, plane):
-            raise WishError("held and symmetry: the held seams are not alike on the two sides of a plane. Hold them alike, "
-                            "or leave symmetry at \"auto\".")
+        for name, edges in (("held", held), ("shut", shut)):
+            if not _keeps(edges, plane):
+                raise WishError(f"{name} and symmetry: the edges of {name} are not alike on the two sides of a plane. Give "
+                                "them alike, or leave symmetry at \"auto\".")
     return own
 
 

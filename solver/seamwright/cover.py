@@ -4,7 +4,7 @@ from dataclasses import replace
 
 import numpy as np
 
-from .asked import check, held_edges, planes_of, prices_allow, shared_out
+from .asked import check, held_edges, patches_allow, planes_of, prices_allow, shared_out, shut_edges
 from .assemble import assemble
 from .errors import CoverError
 from .fit.goods import get
@@ -12,17 +12,19 @@ from .fit.improve import improve
 from .fit.join import joined
 from .fit.sewn import closed
 from .fit.tailor import Tailor
+from .form.measure import areas
 from .form.offset import carried, offset
 from .form.surface import Surface
 from .parts import parts_of
 from .pattern import Pattern
-from .seams.begun import network_of_labels, network_of_pattern
+from .seams.begun import network_of_labels, network_of_pattern, triangle_labels
 from .seams.ladder import Ladder
 from .seams.network import cut_through
 from .seams.opened import opened
 from .seams.prices import NEVER, seam_prices
 from .seams.route import cut_along
 from .seams.seek import seek
+from .seams.whole import kept_whole, united
 from .wishes import Wishes
 
 PLAIN_THRIFT = 0.1  # price of a metre of seam where a number of pieces is wished and no thrift
@@ -38,7 +40,8 @@ def cover(form, wishes=None, progress=None):
     check(form, wishes)
     prices = seam_prices(form, wishes)
     neutral, said = _neutral(form, goods, wishes)
-    parts = parts_of(form, neutral, held_edges(form, wishes, prices >= NEVER))
+    held = held_edges(form, wishes, prices >= NEVER)
+    parts = parts_of(form, neutral, held, shut_edges(form, wishes, held))
     wanted = shared_out(form, parts, wishes.pieces)
     covered, notes = [], list(form.mended) + said
     for number, (part, pieces) in enumerate(zip(parts, wanted, strict=True)):
@@ -76,16 +79,18 @@ def _neutral(form, goods, wishes):
 def _cover_part(form, part, price, wishes, goods, pieces, tell, notes):
     """(Tailored, planes of symmetry it keeps) of one part; what the maker should know goes to notes."""
     prices_allow(form, part, price, NEVER)
-    begun = _begun(form, part, wishes)
+    patches_allow(form, part)
+    begun = _begun(form, part, wishes, notes)
     planes = planes_of(part, price, wishes, begun)
-    ladder = Ladder(part.surface, price, planes, seed=int(wishes.seed))
+    ladder = Ladder(part.surface, price, planes, seed=int(wishes.seed), patch=part.patch)
     metric = 1 / ladder.factor
 
     def explicit(cut):
         level = ladder.levels[-1]
         if wishes.route == "edges":
             return cut_along(level, cut, part.polygon, part.diagonal, metric)
-        return opened(cut_through(level, part.held.evened(cut), metric))
+        network = cut_through(level, part.held.evened(cut), metric)
+        return opened(network if part.bound is None else kept_whole(network, part.bound))
 
     tailor = Tailor(ladder, explicit, goods, wishes.comfort, wishes.grain)
     if begun is not None:
@@ -99,7 +104,17 @@ def _cover_part(form, part, price, wishes, goods, pieces, tell, notes):
         result = tailor.untangled(tailor.real(len(ladder.levels) - 1, found.cut, fully=True))
     if pieces is not None:
         result = joined(tailor, result, pieces)
+    _check_shut(part, result.network)
     return _placed(tailor.sewn(closed(part.held, result)), part), planes
+
+
+def _check_shut(part, network):
+    """CoverError where a seam runs within faces that shut edges keep whole."""
+    barred = network.seam & ~network.allowed
+    if part.bound is not None and barred.any():
+        x, y, z = 1000 * network.surface.points[network.surface.edges[barred][0]].mean(axis=0)
+        raise CoverError(f"Shut: no seams were found that leave the shut edges near ({x:.0f}, {y:.0f}, {z:.0f}) mm free. "
+                         "Shut fewer edges.")
 
 
 def _placed(result, part):
@@ -108,17 +123,27 @@ def _placed(result, part):
     return result
 
 
-def _begun(form, part, wishes):
-    """The Network that a part begins with, None without one."""
+def _begun(form, part, wishes, notes):
+    """The Network that a part begins with, None without one; what the maker should know goes to notes."""
     if wishes.start is None:
         return None
     if isinstance(wishes.start, Pattern):
         network = network_of_pattern(wishes.start.pieces, part.triangles)
         points = carried(network.surface, network.source, part.on_form, part.held.surface)
         network = replace(network, surface=Surface(points, network.surface.triangles))
-        return opened(part.held.opened_network(network)) if part.held.edges.any() else network
-    labels = np.unique(wishes.start, return_inverse=True)[1].ravel()[form.polygon][part.triangles]
-    return network_of_labels(part.surface, labels, ~part.diagonal)
+        if part.held.edges.any():
+            network = opened(part.held.opened_network(network))
+    else:
+        labels = np.unique(wishes.start, return_inverse=True)[1].ravel()[form.polygon][part.triangles]
+        network = network_of_labels(part.surface, labels, ~part.diagonal)
+    if part.bound is None:
+        return network
+    network = kept_whole(network, part.bound)
+    if not (network.seam & ~network.allowed).any():
+        return network
+    notes.append("Start: its seams along shut edges, or in the faces beside them, were left out before it was improved.")
+    labels = united(triangle_labels(network, len(part.triangles)), part.bound, areas(part.surface))
+    return kept_whole(network_of_labels(part.surface, labels, ~part.diagonal), part.bound)
 
 
 def _unmet(pattern, wishes, prices):

@@ -4,6 +4,7 @@ import numpy as np
 
 from .form.surface import Surface
 from .seams.held import Held
+from .seams.whole import bound_faces, patches
 
 
 class Part:
@@ -11,11 +12,12 @@ class Part:
 
     triangles (t,): the form's triangles in it, ascending; held: a Held of its Surface in the middle of the goods; on_form:
     the same triangles on the form itself; surface: that of `held` opened along the held seams, on which everything runs;
-    points (n,): the form's point of each of its points; polygon (t,): the maker's face of each triangle, numbered from 0;
-    diagonal (e,) bool: edges that are none of the maker's.
+    points (n,): the form's point of each of its points; polygon (t,): the maker's face of each triangle, numbered from 0,
+    faces that stay whole together as one; diagonal (e,) bool: edges within those. Where edges are shut, patch (n,) and
+    bound (t,) tell the patches of points and of faces that stay whole (see `seams.whole`); else they are None.
     """
 
-    def __init__(self, form, neutral, triangles, held):
+    def __init__(self, form, neutral, triangles, held, shut):
         self.triangles = triangles
         points, local = np.unique(form.triangles[triangles], return_inverse=True)
         whole = self.on_form = Surface(neutral.points[points], local.reshape(-1, 3))
@@ -25,14 +27,23 @@ class Part:
         self.surface = self.held.opened
         self.points = points[self.held.origin]
         self.polygon = np.unique(form.polygon[triangles], return_inverse=True)[1].ravel()
-        self.diagonal = self.held.at_opened(_edges_of_part(form, triangles, whole, form.diagonal))
+        self.shut = self.held.at_opened(_edges_of_part(form, triangles, whole, shut))
+        self.patch = self.bound = None
+        if self.shut.any():
+            beside = self.polygon[self.surface.edge_triangles[self.shut]]
+            self.patch = patches(self.surface, np.isin(self.polygon, beside))
+            self.bound = bound_faces(self.surface, self.patch, self.polygon)
+            one = np.where(self.bound < 0, self.polygon, self.polygon.max() + 1 + self.bound)
+            self.polygon = np.unique(one, return_inverse=True)[1].ravel()
+        sides = self.polygon[self.surface.edge_triangles]
+        self.diagonal = ~self.surface.open_edges & (sides[:, 0] == sides[:, 1])
 
 
-def parts_of(form, neutral, held):
-    """List of the Parts of a form; neutral: its Surface in the middle of the goods; held (e,) bool: edges of the form's
-    surface that are held seams."""
+def parts_of(form, neutral, held, shut):
+    """List of the Parts of a form; neutral: its Surface in the middle of the goods; held, shut (e,) bool: edges of the
+    form's surface that are held seams, and that may be none."""
     count, component = form.surface.triangle_components
-    return [Part(form, neutral, np.flatnonzero(component == index), held) for index in range(count)]
+    return [Part(form, neutral, np.flatnonzero(component == index), held, shut) for index in range(count)]
 
 
 def _edges_of_part(form, triangles, surface, values):

@@ -31,6 +31,13 @@ def network_of_labels(surface, labels, allowed):
     return opened(Network(surface, ~surface.open_edges & (labels[a] != labels[b]), np.arange(len(labels))), allowed)
 
 
+def triangle_labels(network, count):
+    """(count,) for each triangle that a Network was cut from the piece that has most of it."""
+    pieces, piece = network.pieces
+    area = np.bincount(network.source * pieces + piece, areas(network.surface), minlength=count * pieces)
+    return area.reshape(count, pieces).argmax(axis=1)
+
+
 def point_shares(surface, network, factor):
     """(n, K) share that every piece of a Network has in the area around each point of the Surface it lies on.
 

@@ -43,7 +43,10 @@ class Cut:
 
 
 def cut_by_fields(surface, fields, labels=None):
-    """Cut of a Surface by fields (n, K); labels default to the largest field of each point."""
+    """Cut of a Surface by fields (n, K); labels default to the largest field of each point.
+
+    Next to a point whose label is not its largest field's the cut is as near as it can be.
+    """
     if labels is None:
         labels = fields.argmax(axis=1)
     edges = surface.edges
@@ -59,7 +62,7 @@ def rises(surface, fields, labels, edge):
     """(tail (c,), head (c,)): by how much each end of a cut edge prefers its own region to the other's."""
     a, b = surface.edges[edge, 0], surface.edges[edge, 1]
     i, j = labels[a], labels[b]
-    return fields[a, i] - fields[a, j], fields[b, j] - fields[b, i]
+    return np.maximum(fields[a, i] - fields[a, j], 0), np.maximum(fields[b, j] - fields[b, i], 0)
 
 
 def cut_faces(surface, labels):

@@ -32,11 +32,11 @@ def descend(level, fields, thrift, energy="square", weights=None, steps=30, tole
     Nocedal, Wright: Numerical Optimization, 7.2 (two-loop recursion); the metric is (M + l^2 L)^-1 on each field.
     """
     count = fields.shape[1]
-    cut = cut_by_fields(level.surface, fields)
+    cut = cut_by_fields(level.surface, fields, level.labels(fields))
     history, taken, small, stuck = [], 0, 0, 0
     while taken < steps and small < 2 and stuck < 2:
         fields, twins = _fields(level, cut, count)
-        cut = cut_by_fields(level.surface, fields)
+        cut = cut_by_fields(level.surface, fields, level.labels(fields))
         cost = evaluate(level, cut, thrift, energy, weights, emphasis=emphasis)
         history.append(cost.total)
         gradient = _gradient(level, cut, fields, cost, twins)
@@ -118,7 +118,7 @@ def _backtrack(level, fields, direction, gradient, cost, thrift, energy, weights
     share = 1.0
     for _ in range(8):
         trial = fields + share * direction
-        cut = cut_by_fields(level.surface, trial)
+        cut = cut_by_fields(level.surface, trial, level.labels(trial))
         new = evaluate(level, cut, thrift, energy, weights, emphasis=emphasis)
         if new.total <= cost.total + 1e-4 * share * slope:
             return trial, cut, new

@@ -7,6 +7,7 @@ from ..form.laplacian import smoothed_defects, smoothing
 from ..form.measure import total_area
 from .level import Level, scaled
 from .symmetric import Symmetry
+from .whole import on_rung
 
 RUNGS = (500, 1500, 6000, 24000, 96000)
 SWEEPS = 2  # of averaging with the neighbours after a lift, which leaves the seams as angular as the rung below
@@ -17,17 +18,18 @@ class Ladder:
     """levels: coarse to fine, the last is the form; owners: for each level (n,) its point for every point of the form;
     carriers: for each level but the last the csr that carries values to the next.
 
-    surface: one connected Surface. price (n,) factor on seam length. planes: list of Planes of symmetry that networks are to
-    keep, at right angles. seed: of the coarse levels. `factor`: lengths on the levels over lengths in metres.
+    surface: a Surface. price (n,) factor on seam length. planes: list of Planes of symmetry that networks are to keep, at
+    right angles. seed: of the coarse levels. patch (n,) number of the patch that each point stays in one region with, -1 for
+    none. `factor`: lengths on the levels over lengths in metres.
     """
 
-    def __init__(self, surface, price=None, planes=(), rungs=RUNGS, seed=0):
+    def __init__(self, surface, price=None, planes=(), rungs=RUNGS, seed=0, patch=None):
         fine, self.factor = scaled(surface, total_area(surface))
         n = len(fine.points)
         price = np.ones(n) if price is None else price
         smoother = smoothing(fine)  # the metric in which seams move there, too: one factorisation less
         load = smoothed_defects(fine, smoother=smoother)
-        self.levels = [Level(fine, load, price, _symmetry(fine, planes, self.factor), smoother)]
+        self.levels = [Level(fine, load, price, _symmetry(fine, planes, self.factor), patch, smoother)]
         self.owners, self.carriers = [np.arange(n)], []
         surface, owner, scale = fine, np.arange(n), 1.0
         for count in sorted(rungs, reverse=True):  # each rung is made of the one above it
@@ -39,7 +41,8 @@ class Ladder:
                 surface, more = scaled(rung.surface, total_area(rung.surface))
                 scale *= more
                 self.levels.insert(0, Level(surface, np.bincount(owner, load), np.bincount(owner, price) / size,
-                                            _symmetry(surface, planes, self.factor * scale)))
+                                            _symmetry(surface, planes, self.factor * scale),
+                                            None if patch is None else on_rung(surface, owner, patch)))
                 self.owners.insert(0, owner)
 
     def lift(self, fields, source):

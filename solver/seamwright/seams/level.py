@@ -11,16 +11,19 @@ from scipy.sparse import csc_matrix, csr_matrix
 from ..form.laplacian import Factor, cotangent_laplacian
 from ..form.measure import areas, vertex_areas
 from ..form.surface import Surface
+from .whole import united
 
 FORM_AREA = 4 * np.pi
 
 
 class Level:
     """surface: Surface at scale (area near 4 pi). load (n,) curvature, radians. price (n,) factor on the seam's length.
-    symmetry: the Symmetry that networks here keep, or None. smoother: the metric in which seams move, if at hand."""
+    symmetry: the Symmetry that networks here keep, or None. patch (n,) number of the patch that each point has to stay in
+    one region with, -1 for none; or None. smoother: the metric in which seams move, if at hand."""
 
-    def __init__(self, surface, load, price=None, symmetry=None, smoother=None):
+    def __init__(self, surface, load, price=None, symmetry=None, patch=None, smoother=None):
         self.surface, self.symmetry = surface, symmetry
+        self.patch = None if patch is None or patch.max() < 0 else patch
         if smoother is not None:
             self.smoother = smoother
         self.load = np.asarray(load, dtype=float)
@@ -33,6 +36,20 @@ class Level:
     def edge_length(self):
         """Mean edge length."""
         return float(self.surface.edge_lengths.mean())
+
+    def labels(self, fields):
+        """(n,) the region of each point: the largest of its fields (n, K), or of the sums over its patch."""
+        labels = fields.argmax(axis=1)
+        if self.patch is not None:
+            inside = self.patch >= 0
+            total = np.zeros((int(self.patch.max()) + 1, fields.shape[1]))
+            np.add.at(total, self.patch[inside], self.mass[inside, None] * fields[inside])
+            labels[inside] = total.argmax(axis=1)[self.patch[inside]]
+        return labels
+
+    def united(self, labels):
+        """(n,) labels of which every patch has one."""
+        return labels if self.patch is None else united(labels, self.patch, self.mass)
 
     @cached_property
     def frames(self):

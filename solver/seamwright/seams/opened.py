@@ -34,22 +34,22 @@ def _cut_graph(part, allowed):
     """Edges of a connected surface whose cutting leaves a disk."""
     n = len(part.points)
     lengths = part.edge_lengths
+    usable = allowed & ~part.open_edges
     roots = np.unique(part.edges[part.open_edges])
     closed = not len(roots)
     if closed:
-        roots = np.array([0])
-    usable = allowed & ~part.open_edges
+        roots = part.edges[usable][:1, 0] if usable.any() else np.array([0])
     graph = coo_matrix((lengths[usable], tuple(part.edges[usable].T)), shape=(n, n)).tocsr()
     gap, before, _ = dijkstra(graph, directed=False, indices=roots, min_only=True, return_predecessors=True)
     if closed and part.euler == 2:  # a sphere: one slit between two far points
-        far = int(np.argmax(gap))
+        far = _farthest(gap)
         gap, before = dijkstra(graph, directed=False, indices=far, return_predecessors=True)
-        return _way_back(part, before, int(np.argmax(gap)))
+        return _way_back(part, before, _farthest(gap))
     tree = np.zeros(len(part.edges), dtype=bool)
     reached = np.flatnonzero(before >= 0)
     tree[part.edge_index(np.column_stack([reached, before[reached]]))] = True
     dual = np.flatnonzero(~tree & ~part.open_edges)
-    way = gap[part.edges[dual]].sum(axis=1) + lengths[dual]
+    way = np.where(allowed[dual], gap[part.edges[dual]].sum(axis=1) + lengths[dual], 0)
     weight = np.where(allowed[dual], way.max() + 1 - way, 0) + 1e-9  # cross what would be longest to cut; never cut the rest
     weight[allowed[dual]] += 1
     crossed = _spanning(part, dual, weight)
@@ -58,6 +58,11 @@ def _cut_graph(part, allowed):
     for point in np.unique(part.edges[left]):
         cut.append(_way_back(part, before, int(point)))
     return np.unique(np.concatenate(cut))
+
+
+def _farthest(gap):
+    """The point at the largest distance that can be reached."""
+    return int(np.argmax(np.where(np.isfinite(gap), gap, -1)))
 
 
 def _spanning(part, dual, weight):

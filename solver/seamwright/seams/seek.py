@@ -50,7 +50,7 @@ class Found:
 
 def flow(level, fields, thrift, energy="square", weights=None, steps=20, emphasis=None):
     """Flow, then put the topology right (disks, no specks), and flow again as long as that changed it. Returns Found."""
-    cut = cut_by_fields(level.surface, fields)
+    cut = cut_by_fields(level.surface, fields, level.labels(fields))
     labels = tidied(level, cut.labels)
     for turn in range(REPAIRS):
         if turn or not np.array_equal(labels, cut.labels):

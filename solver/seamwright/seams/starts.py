@@ -25,9 +25,12 @@ def starts(level, cells=CELLS):
 
 def tidied(level, labels):
     """Labels whose regions are connected disks of a sensible size, symmetric where the level is to be."""
-    labels = split_components(level.surface, labels)
+    labels = split_components(level.surface, level.united(labels))
     tables, speck = regions(level, labels), SPECK * level.mass.sum()
     if (tables.euler != 1).any() or tables.area.min() < speck:
         labels = make_disks(level, labels)
         labels = make_disks(level, absorb(level, labels, speck))
-    return labels if level.symmetry is None else symmetrised(level, level.symmetry, labels)
+    if level.symmetry is None:
+        return labels
+    labels = symmetrised(level, level.symmetry, labels)
+    return labels if level.patch is None else make_disks(level, level.united(labels))

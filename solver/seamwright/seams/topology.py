@@ -10,6 +10,8 @@ import numpy as np
 from scipy.sparse import coo_matrix
 from scipy.sparse.csgraph import connected_components, dijkstra
 
+from .whole import united
+
 CELLS = 8  # cells that a region which is no disk is first cut into
 MOST_CELLS = 128
 
@@ -123,25 +125,25 @@ def voronoi(level, count, inside=None):
     middle = (points * mass[:, None]).sum(0) / mass.sum()
     seeds = [int(np.argmax(np.linalg.norm(points - middle, axis=1)))]
     gap = _distance(graph, seeds)[0]
-    while len(seeds) < count:
+    while len(seeds) < count and gap.max() > 1e-6 * level.edge_length:  # the points of a patch are as good as one
         seeds.append(int(np.argmax(gap)))
         gap = np.minimum(gap, _distance(graph, seeds[-1:])[0])
     for _ in range(2):
-        owner = _distance(graph, seeds)[1]
-        total = np.bincount(owner, mass, minlength=count)
-        pull = np.column_stack([np.bincount(owner, mass * points[:, k], minlength=count) for k in range(3)])
+        owner = _nearest(level, inside, graph, seeds)
+        total = np.maximum(np.bincount(owner, mass), 1e-300)  # a seed whose patch is another's has no points
+        pull = np.column_stack([np.bincount(owner, mass * points[:, k]) for k in range(3)])
         middle = pull / total[:, None]
         off = np.linalg.norm(points - middle[owner], axis=1)
         order = np.lexsort((off, owner))
         seeds = order[np.unique(owner[order], return_index=True)[1]].tolist()
-    return _distance(graph, seeds)[1]
+    return _nearest(level, inside, graph, seeds)
 
 
 def nearer(level, inside, places):
     """(k,) which of the places (c, 3) each point of `inside` is nearest to, by distance along edges."""
     points = level.surface.points[inside]
     seeds = [int(np.argmin(np.linalg.norm(points - place, axis=1))) for place in places]
-    return _distance(_graph(level, inside), seeds)[1]
+    return _nearest(level, inside, _graph(level, inside), seeds)
 
 
 def through(level, inside, peak):
@@ -163,7 +165,17 @@ def _graph(level, inside):
     number[inside] = np.arange(len(inside))
     rows, columns = number[surface.edges].T
     kept = (rows >= 0) & (columns >= 0)
-    return coo_matrix((surface.edge_lengths[kept], (rows[kept], columns[kept])), shape=(len(inside),) * 2).tocsr()
+    rows, columns, lengths = rows[kept], columns[kept], surface.edge_lengths[kept]
+    if level.patch is not None:  # points of one patch are as good as one
+        together = level.patch[surface.edges[kept]]
+        lengths = np.where((together[:, 0] == together[:, 1]) & (together[:, 0] >= 0), 1e-9 * lengths, lengths)
+    return coo_matrix((lengths, (rows, columns)), shape=(len(inside),) * 2).tocsr()
+
+
+def _nearest(level, inside, graph, seeds):
+    """(k,) index of the seed nearest to each point of `inside`, one for every patch."""
+    owner = _distance(graph, seeds)[1]
+    return owner if level.patch is None else united(owner, level.patch[inside], level.mass[inside])
 
 
 def _distance(graph, seeds):

@@ -25,10 +25,12 @@ class Held:
 
     def __init__(self, surface, edges):
         self.surface, self.edges = surface, edges
-        corners = Network(surface, edges, None).corner_points
-        first = np.unique(corners, return_index=True)[1]
-        self.origin = surface.triangles.ravel()[first]
-        self.opened = Surface(surface.points[self.origin], corners) if edges.any() else surface
+        self.opened, self.origin = surface, np.arange(len(surface.points))
+        if edges.any():
+            corners = Network(surface, edges, None).corner_points
+            first = np.unique(corners, return_index=True)[1]
+            self.origin = surface.triangles.ravel()[first]
+            self.opened = Surface(surface.points[self.origin], corners)
         self.whole_edge = self.at_opened(np.arange(len(surface.edges)))
 
     def at_opened(self, values):

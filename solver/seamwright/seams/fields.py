@@ -4,7 +4,7 @@ import numpy as np
 from scipy.sparse import coo_matrix
 from scipy.sparse.csgraph import dijkstra
 
-from .energy import seam_nodes
+from .nodes import seam_nodes
 
 REACH = 8.0  # edge lengths beyond which a distance no longer matters within one round
 

@@ -103,10 +103,18 @@ class Level:
         slots, rows, _, _ = self._pattern
         return np.bincount(slots.ravel(), self.stiffness.ravel(), minlength=len(rows) + 1)
 
-    def factor(self, changed, change):
-        """Factor of the Laplacian over the unknowns after adding change (k, 3, 3) to the triangles `changed` (k,)."""
+    def factor(self, cut, face, corner, stiffness):
+        """Factor of the Laplacian over the unknowns with the triangles `cut` (f,) replaced by parts of them.
+
+        face (t,): the triangle each part lies in; corner (t, 3): which of its corners is there, 3 for none of them;
+        stiffness (t, 3, 3) of the parts.
+        """
         slots, rows, pointers, count = self._pattern
-        data = (self._base + np.bincount(slots[changed].ravel(), change.ravel(), minlength=len(rows) + 1))[:-1]
+        none, own = len(rows), np.minimum(corner, 2)
+        places = slots[face[:, None, None], own[:, :, None], own[:, None, :]]
+        places = np.where((corner < 3)[:, :, None] & (corner < 3)[:, None, :], places, none)
+        data = self._base - np.bincount(slots[cut].ravel(), self.stiffness[cut].ravel(), none + 1)
+        data = (data + np.bincount(places.ravel(), stiffness.ravel(), none + 1))[:-1]
         kept = np.abs(data) > 1e-12  # what lies across a seam is exactly zero: the blocks fall apart
         before = np.concatenate([[0], np.cumsum(kept)])
         return Factor(csc_matrix((data[kept], rows[kept], before[pointers]), shape=(count, count)), ordered=True)

@@ -5,10 +5,10 @@ from dataclasses import replace
 import numpy as np
 
 from ..form.surface import Surface
-from .energy import seam_nodes
 from .fields import redistance
 from .level import triangle_stiffness
 from .network import Network
+from .nodes import seam_nodes
 from .opened import opened
 from .straighten import corridor, mirrored, straightened
 

@@ -20,7 +20,7 @@ TRIALS = ((0, 7), (6, 3))  # on the first rung: steps of flow for every network,
 MOST_PIECES = 40
 SPLIT_STEPS = 12  # of flow after a split
 STEPS = ((1000, 24), (3000, 12), (12000, 6))  # points up to which a level takes so many steps; a finer one takes
-LAST_STEPS = 2
+LAST_STEPS = 1
 
 
 @dataclass

@@ -153,7 +153,10 @@ def seek(ladder, thrift, energy="square", pieces=None, progress=None):
             pool[0], emphasis = through_tips(points, pool[0], thrift, energy)
         if progress:
             progress((rung + 1) / len(levels), "seams")
-    return pool[0]
+    found = pool[0]
+    if emphasis[-1] is not None:  # the cost without it
+        found = settle(found.level, found.cut, found.cut.labels, thrift, energy, converged=found.converged)
+    return found
 
 
 def through_tips(points, found, thrift, energy):

@@ -101,7 +101,7 @@ def _cover_part(form, part, price, wishes, goods, pieces, tell, notes):
         result = tailor.run(tell)
     else:
         found = seek(ladder, wishes.thrift or PLAIN_THRIFT, wishes.energy, pieces, tell)
-        result = tailor.untangled(tailor.real(len(ladder.levels) - 1, found.cut, fully=True))
+        result = tailor.untangled(tailor.real(len(ladder.levels) - 1, found.cut))
     if pieces is not None:
         result = joined(tailor, result, pieces)
     _check_shut(part, result.network)

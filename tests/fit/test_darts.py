@@ -31,7 +31,7 @@ def cone_without_seam(slope, around=24, rings=8):
 def test_a_dart_to_the_tip_makes_a_cone_flat():
     """A cone is developable off its tip (any textbook of differential geometry): cut open to it, it flattens exactly."""
     judges = Judges(goods.get("canvas"), 0.5)
-    before = judges.all(cone_without_seam(1.0), fully=True)
+    before = judges.all(cone_without_seam(1.0))
     assert before.use > 1
     after = darted(judges, before)
     assert after.network.pieces[0] == 1
@@ -42,7 +42,7 @@ def test_a_dart_to_the_tip_makes_a_cone_flat():
 
 def test_what_fits_gets_no_dart():
     judges = Judges(goods.get("spandex"), 0.0)
-    met = judges.all(cone_without_seam(0.1), fully=True)
+    met = judges.all(cone_without_seam(0.1))
     assert met.fits
     assert darted(judges, met) is met
 

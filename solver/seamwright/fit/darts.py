@@ -43,7 +43,7 @@ def _with_dart(judges, met, piece):
     if cut.euler != 1 or len(cut.boundary_loops) != 1:
         return None
     try:
-        one = judges.piece(cut, True)
+        one = judges.piece(cut)
     except CoverError:
         return None
     return (edges, one) if one.utilisation < GAIN * old.utilisation and not one.crossings else None

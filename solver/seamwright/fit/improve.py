@@ -31,7 +31,7 @@ def improve(tailor, network, thrift, energy, pieces, tell):
         found = _less_in_all(ladder, begin, thrift or before.distortion / before.length, energy, pieces)
     tell(0.7, "flattening pieces")
     if found is not None:
-        met = tailor.untangled(tailor.real(len(ladder.levels) - 1, found.cut, fully=True))
+        met = tailor.untangled(tailor.real(len(ladder.levels) - 1, found.cut))
         after = network_cost(ladder, met.network, price, energy)
         if pieces is not None and network.pieces[0] != pieces:
             better = True
@@ -42,7 +42,7 @@ def improve(tailor, network, thrift, energy, pieces, tell):
             better = after.total + PIECE_PRICE * more <= before.total
         if better:
             return met, False
-    return tailor.untangled(tailor.judges.all(network, fully=True)), True
+    return tailor.untangled(tailor.judges.all(network)), True
 
 
 def _less_of_both(level, begin, energy, before):

@@ -49,7 +49,7 @@ def _trial(tailor, met, group):
         if part.euler != 1 or len(part.boundary_loops) != 1:
             return None
         try:
-            judged.append(met.judged[before[0]] if len(before) == 1 else tailor.judges.piece(part, True))
+            judged.append(met.judged[before[0]] if len(before) == 1 else tailor.judges.piece(part))
         except CoverError:
             return None
     trial = Tailored(network, judged)

@@ -9,7 +9,7 @@ from ..flat.fence import Fence
 from .measure import area_quantile, areas, utilisation, warp_weft_shear
 from .shape import relax_for_goods
 
-SENSELESS = 1.6
+SENSELESS = 1.1
 """Use of the limits from which a piece needs a split anyway: then its crossings say where."""
 
 

@@ -4,7 +4,7 @@ import numpy as np
 
 from ..form.measure import areas
 
-DAMPED = 0.4  # power with which the spread of the real use within a piece is taken over
+DAMPED = 1.0  # power with which the spread of the real use within a piece is taken over
 
 
 def spread(level, met):

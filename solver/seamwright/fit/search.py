@@ -20,18 +20,19 @@ from ..seams.topology import nearer, regions, through
 from .foresee import largest
 
 STEPS = 6  # flow steps in a round
-SETTLE = 16  # flow steps after a lift, which leaves the seams as rough as the rung below
-HALVINGS = (2, 2, 4)  # rounds on the first rung after each of which only the better half of the starts goes on
+RESTS = (12, 6)  # flow steps after a lift, which leaves the seams as rough as the rung below, and after weighing anew
+HALVINGS = (2, 2, 4)  # rounds on the first rung, before each but the first of which the worse half of the starts is left out
 CELLS = (2, 3, 4, 6, 9)  # sizes of the cells among the starts
 TOO_MUCH = 3.0  # use of the limits at which a piece is split at once
 PATIENCE = 4  # rounds running that a piece may be beyond its limits before it is split
-REPAIRS = 3  # flows after a lift, as long as regions had to be put right
 ROOM = 0.97  # foreseen use under which a union may be merged
 OVER = 1.02  # foreseen use that counts as beyond
 MOST_PIECES = 40
 SMALLEST_SPLIT = 0.02  # share of the form's area under which a piece is not split
-SWAY = (0.6, 2.2)  # bounds on one change of a weight
-LEARNT = (0.5, 2.5)  # bounds on one correction of the foresight
+HURRY = 1.5  # power of the use by which a weight changes in a round
+SWAY = (0.6, 1.8)  # bounds on one change of a weight
+LEARNT = (0.4, 3.0)  # bounds on the real use over the foreseen one
+BLUR = 0.12  # length over which what is learnt is smoothed, on the levels' scale: sharper, it makes seams wiggle
 
 
 @dataclass
@@ -61,7 +62,7 @@ class Search:
         self.ladder, self.reach = ladder, reach
 
     def begin(self):
-        """The States of the first rung, best first; the worse half of the starts is dropped after every few rounds."""
+        """The States of the first rung, best first."""
         level = self.ladder.levels[0]
         weight = 4.0 / self.reach**2  # seam and distortion then weigh alike on a quarter of a sphere
         strictness = np.ones(len(self.ladder.owners[0]))
@@ -69,20 +70,18 @@ class Search:
         for labels in starts(level, CELLS):
             cut = cut_by_fields(level.surface, from_labels(level, labels))
             pool.append(self._state(0, cut, labels, np.full(len(labels), weight), strictness))
-        for count in HALVINGS:
+        for turn, count in enumerate(HALVINGS):
+            pool = pool[: (len(pool) + 1) // 2] if turn else pool
             pool = sorted((self.rounds(0, state, count) for state in pool), key=lambda state: state.rank)
-            pool = pool[: (len(pool) + 1) // 2]
         return pool
 
     def lifted(self, rung, state):
         """The State one rung up."""
         fields = self.ladder.lift(state.fields, rung - 1)
-        for _ in range(REPAIRS):
-            cut = self._flow(rung, fields, state, SETTLE).cut
-            state = self._after(rung, state, cut)
+        for steps in RESTS:
+            state = self._after(rung, state, self._flow(rung, fields, state, steps).cut)
+            state.weights = state.weights * np.clip(state.use**HURRY, *SWAY)
             fields = state.fields
-            if np.array_equal(state.cut.labels, cut.labels):
-                break
         return state
 
     def learnt(self, rung, state, real, local):
@@ -90,10 +89,15 @@ class Search:
 
         Stricter where the foresight was too mild, and most where the strain is.
         """
-        factor = np.clip(real / np.maximum(state.use, 1e-6), *LEARNT)[state.cut.labels] * local
-        strictness = state.strictness * factor[self.ladder.owners[rung]]
+        level = self.ladder.levels[rung]
+        local = level.diffusion(BLUR).solve(level.mass * local)
+        owner = self.ladder.owners[rung]
+        u = evaluate(level, state.cut, 1.0, "square", gradient=False).u
+        use = self._use(rung, state.cut.labels, u, local[owner])[0]
+        factor = np.clip(real / np.maximum(use, 1e-6), *LEARNT)[state.cut.labels]
+        strictness = (local * np.exp(level.diffusion(BLUR).solve(level.mass * np.log(factor))))[owner]
         state = self._state(rung, state.cut, state.cut.labels, state.weights[state.cut.labels], strictness, state.strained)
-        state.weights = state.weights * np.clip(real**2, *SWAY)
+        state.weights = state.weights * np.clip(real**HURRY, *SWAY)
         return state
 
     def rounds(self, rung, state, count):
@@ -101,13 +105,13 @@ class Search:
         best = None
         for turn in range(count):
             if turn == 0 or turn < count - 2:  # what is split needs a round or two to settle
-                state = self.split(rung, state, self._overdone(rung, state))
+                state = self.split(rung, state, self._overdone(rung, state)[:1])
             end = self._flow(rung, state.fields, state)
             state = self._merge(rung, self._after(rung, state, end.cut))
             if best is None or state.rank < best.rank:
                 best = replace(state)
             state.strained = state.strained + 1 if state.use.max() > OVER else 0
-            state.weights = state.weights * np.clip(state.use**2, *SWAY)
+            state.weights = state.weights * np.clip(state.use**HURRY, *SWAY)
         return best
 
     def _after(self, rung, state, cut):

@@ -7,11 +7,11 @@ from ..seams.twins import twin_stretch
 from .foresee import piece_use
 from .tailored import ENOUGH, Tailored
 
-HOPELESS = 1.6  # use without a chain above which half of it is not tried either, and foreseen, above which none is
+HOPELESS = 1.4  # use without a chain above which half of it is not tried either, and foreseen, above which none is
 NEAR = 0.15  # a chain on another rung is the same one when its middle is this near, as a share of the form's size
 
 
-def dropped(judges, met, planes, reach, limit=ENOUGH, fully=True, halves=True):
+def dropped(judges, met, planes, reach, limit=ENOUGH, halves=True):
     """(Tailored, what was left out): seam chains dropped, longest first, while the piece they leave is a disk, within
     the limit and not over itself; then halves of chains, so that darts are left. On a symmetric form a chain goes
     together with its mirror image. What was left out: for each the places (3, 3) of its begin, middle and end."""
@@ -24,10 +24,10 @@ def dropped(judges, met, planes, reach, limit=ENOUGH, fully=True, halves=True):
             if key in refused or whole > HOPELESS:
                 continue
             group = with_images(met.network, chain, planes)
-            trial, use = _without(judges, met, group, limit, fully, most)
+            trial, use = _without(judges, met, group, limit, most)
             if use == np.inf and len(group) > 1:  # of the two seams of a sleeve one has to stay
                 group = [chain]
-                trial, use = _without(judges, met, group, limit, fully, most)
+                trial, use = _without(judges, met, group, limit, most)
             refused.update((_key(one), use) for one in group)
             if trial is not None:
                 spare += [_places(met.network, one) for one in group]
@@ -52,7 +52,7 @@ def with_images(network, chain, planes):
     return group
 
 
-def _without(judges, met, group, limit, fully, most):
+def _without(judges, met, group, limit, most):
     """(Tailored without some chains, the worst use that leaves), or (None, that use; infinite where no disk is left)."""
     network = met.network
     surface = network.surface
@@ -65,15 +65,18 @@ def _without(judges, met, group, limit, fully, most):
     judged = [None] * trial.pieces[0]
     for old in range(number):  # the others keep their verdicts under their new numbers
         judged[now[np.argmax(piece == old)]] = met.judged[old]
+    changed = list(dict.fromkeys(now[first] for first in firsts))
+    if max(met.judged[old].utilisation for old in np.unique(piece[np.isin(now, changed)])) > limit:
+        return None, np.inf  # what is beyond its limits will not come within them so
     worst = 0.0
-    for new in dict.fromkeys(now[first] for first in firsts):
+    for new in changed:
         part = trial.part_surface(np.flatnonzero(now == new))[0]
         if not _is_disk(part):
             return None, np.inf
         if piece_use(part, most) > 1:
             return None, np.inf
         try:
-            judged[new] = judges.piece(part, fully, senseless=limit)
+            judged[new] = judges.piece(part, limit, senseless=0.0)  # to lay it apart costs more than it brings
         except CoverError:
             return None, np.inf
         worst = max(worst, judged[new].utilisation)

@@ -11,19 +11,19 @@ from ..seams.opened import edges_in, halves_border, opened
 from .darts import darted
 from .foresee import reach
 from .lessons import lobes, piece_of_region, spread, worst
+from .resigned import resigned
 from .search import MOST_PIECES, Search
 from .sewn import sewn
 from .spare import dropped, without_nearest
 from .tailored import ENOUGH, Judges, Tailored
 
 FINE_ENOUGH = 1200  # points of the rung on which the foresight learns: coarser ones strain where the form does not
-FEW_CHAINS = 12  # of seam, up to which the form itself is asked what can be dropped
-CANDIDATES = 2  # networks that learn
+FINALISTS = 2  # networks that have learnt, of which spare seams are dropped
 NEARLY = 0.93  # a network that fits and has a piece this near its limits is not worth another lesson
-LESSONS = (3, 5)  # most lessons on the learning rung: for every candidate, then for the best
+LESSONS = 3  # most flattenings of a network on a rung
 ROUNDS = 5  # rounds after each
 CONFIRMATIONS = 4  # most flattenings of the form itself, with a lesson between
-MARGIN = 0.97  # use under which a seam is dropped on the learning rung: the form itself may ask a little more
+MARGIN = 1.03  # use under which a seam is dropped on the learning rung: what the form itself needs is put back
 MOST_SPLITS = 12  # of pieces that still lie over themselves at the end
 
 
@@ -43,34 +43,40 @@ class Tailor:
         top = len(levels) - 1
         learning = next((rung for rung, level in enumerate(levels) if len(level.free) >= FINE_ENOUGH), top)
         tell(0.0, "trying seams")
-        pool = self.search.begin()[:CANDIDATES]
+        pool = self.search.begin()
         for rung in range(1, learning + 1):
             pool = [self.search.lifted(rung, state) for state in pool]
-        tell(0.3, "fitting pieces")
-        state, met = min((self.schooled(learning, state, LESSONS[0]) for state in pool), key=lambda pair: pair[1].rank)
-        if not met.fits and len(met.judged) < MOST_PIECES:
-            state, met = self.schooled(learning, state, LESSONS[1])
-        tell(0.5, "dropping spare seams")
-        spare = self.dropped(met, MARGIN, fully=False)[1]
-        for rung in range(learning + 1, top + 1):
-            tell(0.5 + 0.1 * (rung - learning), "refining seams")
-            state = self.search.lifted(rung, state)
-        tell(0.8, "flattening pieces")
-        met = self.confirmed(top, state, spare)
-        if len(met.network.chains) <= FEW_CHAINS:  # what the coarse rung thought needed, the form itself may not
-            met = self.dropped(met, ENOUGH, fully=True, halves=False)[0]
-        return darted(self.judges, met)
+        tell(0.2, "fitting pieces")
+        pool = sorted((self.schooled(learning, state) for state in pool), key=_rank)
+        tell(0.4, "dropping spare seams")
+        finals = [(state, *self.dropped(met, MARGIN)) for state, met in pool[:FINALISTS]]
+        best = None
+        for state, _, spare in sorted(finals, key=_rank):
+            for rung in range(learning + 1, top + 1):
+                tell(0.4 + 0.1 * (rung - learning), "refining seams")
+                state = self.search.lifted(rung, state)
+            tell(0.8, "flattening pieces")
+            met = darted(self.judges, self.confirmed(top, state, spare))
+            best = met if best is None else min(best, met, key=_fits_first)
+            if best.fits:
+                break
+        return self.dropped(best, halves=False)[0]  # what the coarse rung thought needed, the form itself may not
 
     def sewn(self, met):
-        """The Tailored with the two sides of its seams matched, where the goods allow it."""
-        judges = self.judges
-        return Tailored(met.network, sewn(met.network, met.judged, judges.goods, judges.comfort, judges.grain))
+        """The Tailored with the two sides of its seams matched, where the goods allow it.
 
-    def dropped(self, met, limit=ENOUGH, fully=True, halves=True):
+        Before, what cannot fit is laid so that as little of it as can be is beyond the hard limits.
+        """
+        wishes = self.judges.goods, self.judges.comfort, self.judges.grain
+        judged = [one if one.utilisation <= ENOUGH else resigned(met.network.piece_surface(piece)[0], one, *wishes)
+                  for piece, one in enumerate(met.judged)]
+        return Tailored(met.network, sewn(met.network, judged, *wishes))
+
+    def dropped(self, met, limit=ENOUGH, halves=True):
         """(Tailored, places of what was left out): see `spare.dropped`."""
-        return dropped(self.judges, met, self.planes, self.search.reach, limit, fully, halves)
+        return dropped(self.judges, met, self.planes, self.search.reach, limit, halves)
 
-    def real(self, rung, cut, spare=(), fully=False):
+    def real(self, rung, cut, spare=()):
         """The Tailored of a cut, every piece flattened for the goods; spare: places (3, 3) of stretches to leave out."""
         if rung == len(self.ladder.levels) - 1:
             network = self.explicit(cut)
@@ -78,17 +84,17 @@ class Tailor:
             network = opened(cut_through(self.ladder.levels[rung], cut, 1 / self.ladder.factor))
         for places in spare:
             network = without_nearest(network, places)
-        return self.judges.all(network, fully)
+        return self.judges.all(network)
 
-    def schooled(self, rung, state, lessons):
-        """(State, Tailored) best met while the foresight learns from real flattening, with at most so many lessons."""
+    def schooled(self, rung, state):
+        """(State, Tailored) best met while the foresight learns from real flattening."""
         best, vain = None, 0
-        for lesson in range(lessons):
+        for lesson in range(LESSONS):
             met = self.real(rung, state.cut)
             better = best is None or met.rank < best[1].rank
             best, vain = ((state, met), 0) if better else (best, vain + 1)
             done = (met.fits and met.use > NEARLY) or vain == 2 or len(met.judged) >= MOST_PIECES
-            if done or lesson == lessons - 1:
+            if done or lesson == LESSONS - 1:
                 return best
             state = self.taught(rung, state, met, ROUNDS)
 
@@ -96,16 +102,26 @@ class Tailor:
         """The best Tailored on the form itself, corrected while it does not fit."""
         best = None
         for turn in range(CONFIRMATIONS):
-            met = self.real(rung, state.cut, spare, fully=True)
-            needed = [places for places in spare if met.judged[_piece_at(met.network, places[1])].crossings]
-            if needed:  # a piece lies over itself for want of a seam that was dropped: put it back
-                spare = [places for places in spare if not any(places is one for one in needed)]
-                met = min(met, self.real(rung, state.cut, spare, fully=True), key=lambda met: met.rank)
-            if best is None or met.rank < best.rank:
-                best = met
+            met, spare = self.with_needed(rung, state, spare)
+            best = met if best is None else min(best, met, key=_fits_first)
             if best.fits or turn == CONFIRMATIONS - 1 or len(met.judged) >= MOST_PIECES:
                 return self.untangled(best)
             state = self.taught(rung, state, met, 2, insist=turn == CONFIRMATIONS - 2)
+
+    def with_needed(self, rung, state, spare):
+        """(Tailored without the spare seams, what of them was spare indeed): where a piece does not fit for want of a seam
+        that was dropped, the last such one is put back."""
+        met = self.real(rung, state.cut, spare)
+        while True:
+            wanting = [one.utilisation > ENOUGH or bool(one.crossings) for one in met.judged]
+            needed = [at for at, places in enumerate(spare) if wanting[_piece_at(met.network, places[1])]]
+            if not needed:
+                return met, spare
+            fewer = [places for at, places in enumerate(spare) if at != needed[-1]]
+            trial = self.real(rung, state.cut, fewer)
+            if _fits_first(trial) > _fits_first(met):
+                return met, spare
+            met, spare = trial, fewer
 
     def taught(self, rung, state, met, rounds, insist=False):
         """The State after what `met` teaches: weights by the real use; pieces that lie over themselves split there."""
@@ -140,9 +156,18 @@ class Tailor:
             for piece in range(trial.pieces[0]):
                 old = network.pieces[1][np.argmax(trial.pieces[1] == piece)]
                 new = old == crossed[0]
-                judged.append(self.judges.piece(trial.piece_surface(piece)[0], True) if new else met.judged[old])
+                judged.append(self.judges.piece(trial.piece_surface(piece)[0]) if new else met.judged[old])
             met = Tailored(trial, judged)
         return met
+
+
+def _rank(found):
+    """The rank of a (State, Tailored, ...)."""
+    return found[1].rank
+
+
+def _fits_first(met):
+    return not met.fits, met.rank
 
 
 def _piece_at(network, place):

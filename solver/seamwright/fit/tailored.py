@@ -2,12 +2,15 @@
 
 from dataclasses import dataclass, replace
 
+import numpy as np
+
 from .judge import SENSELESS, judge
-from .resigned import resigned
 
 ENOUGH = 1.0  # real use of the limits that counts as fitting
-SHAPED, SHAPED_WOVEN = 0.93, 0.65  # full shaping brings the use down to about this share of what the first stage reaches
-FAR = 4.0  # use after the first stage of shaping that more shaping cannot mend
+BEYOND = 2.0  # power of the use by which a piece beyond its limits makes the seam around it dearer: that much more is needed
+KNOT = 2.0  # by how much a piece that lies over itself does
+SHAPED, SHAPED_WOVEN = 0.93, 0.57  # full shaping brings the use down to about this share of what the first stage reaches
+MENDED, MENDED_WOVEN = 1.25, 2.3  # times the limit: more use after the first stage than more shaping can mend
 
 
 @dataclass
@@ -29,9 +32,14 @@ class Tailored:
 
     @property
     def rank(self):
-        """Length, dearer the farther the worst piece is beyond its limits, and for every piece over itself."""
-        over = sum(bool(one.crossings) for one in self.judged)
-        return self.network.length() * max(1.0, self.use / ENOUGH) ** 3 * (1 + over)
+        """Length of seam, dearer around a piece the farther it is beyond its limits, and where it lies over itself."""
+        surface, (number, piece) = self.network.surface, self.network.pieces
+        seam = np.flatnonzero(self.network.seam)
+        around = np.zeros(number)
+        for side in surface.edge_triangles[seam].T:
+            np.add.at(around, piece[side[side >= 0]], 0.5 * surface.edge_lengths[seam[side >= 0]])
+        dearer = [max(1.0, one.utilisation / ENOUGH) ** BEYOND * (KNOT if one.crossings else 1) for one in self.judged]
+        return float(around @ dearer)
 
 
 class Judges:
@@ -41,24 +49,24 @@ class Judges:
         self.goods, self.comfort, self.grain = goods, comfort, grain
         self.known = {}
 
-    def piece(self, surface, fully, senseless=SENSELESS):
-        """Judged for one piece: shaped for the goods fully, or so far that the rest can be foreseen. Remembered.
+    def piece(self, surface, limit=ENOUGH, senseless=SENSELESS):
+        """Judged for one piece. Remembered.
 
-        What fits, or is far from fitting, after the first stage of shaping is not shaped further. What lies over itself is
-        laid apart only where it asks no more than `senseless` of the limits.
+        What keeps the limit after the first stage of shaping is not shaped further, nor is what is far from it: its use is
+        foreseen. What lies over itself is laid apart only where it asks no more than `senseless` of the goods' limits.
         """
-        key = (fully, senseless, surface.points.tobytes(), surface.triangles.tobytes())
+        key = (limit, senseless, surface.points.tobytes(), surface.triangles.tobytes())
         if key not in self.known:
-            share = 1.0 if fully else SHAPED if self.goods.shear is None else SHAPED_WOVEN
+            woven = self.goods.shear is not None
             common = surface, self.goods, self.comfort, self.grain
-            one = judge(*common, stages=1, senseless=ENOUGH if fully else min(SENSELESS, senseless / share))
-            if fully and (one.crossings or one.utilisation > ENOUGH) and one.utilisation < FAR:
-                one = judge(*common, stages=None, senseless=senseless)
-            if fully and one.utilisation > ENOUGH:
-                one = resigned(surface, one, self.goods, self.comfort, self.grain)
-            self.known[key] = replace(one, utilisation=one.utilisation * share)
+            one = judge(*common, stages=1, senseless=limit)
+            if one.utilisation > limit * (MENDED_WOVEN if woven else MENDED):
+                one = replace(one, utilisation=one.utilisation * (SHAPED_WOVEN if woven else SHAPED))
+            elif one.crossings or one.utilisation > limit:
+                one = judge(*common, stages=None, start=one.flat, done=1, senseless=senseless)
+            self.known[key] = one
         return self.known[key]
 
-    def all(self, network, fully):
+    def all(self, network):
         """Tailored for a Network, every piece judged."""
-        return Tailored(network, [self.piece(network.piece_surface(k)[0], fully) for k in range(network.pieces[0])])
+        return Tailored(network, [self.piece(network.piece_surface(k)[0]) for k in range(network.pieces[0])])

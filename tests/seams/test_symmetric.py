@@ -6,6 +6,7 @@ from forms import dumbbell, ellipsoid, icosphere, torus
 from parted import level_of
 from seamwright.form.mirror import Plane
 from seamwright.seams.cut import cut_by_fields
+from seamwright.seams.descend import descend
 from seamwright.seams.energy import evaluate, field_gradient
 from seamwright.seams.fields import from_labels
 from seamwright.seams.merging import joined
@@ -185,3 +186,25 @@ def test_a_lopsided_network_has_no_twins():
     network = cut_through(level, cut_by_fields(level.surface, from_labels(level, lean)), 1.0)
     assert (twin_pieces(network, X)[0] == -1).any()
     assert twin_stretch(network, X, network.chains[0]) is None
+
+
+def test_a_seam_between_partners_lies_on_the_plane_and_stays_there():
+    level = level_of(uneven((1.0, 0.7, 0.5)))
+    symmetry = Symmetry(level.surface, [X])
+    level.symmetry = symmetry
+    height = symmetry.mirrors[0].height
+    waves = 0.3 * level.edge_length * np.sin(40 * level.surface.points[:, 1])
+    fields = np.column_stack([height + waves, -height - waves])
+    partners = symmetry.partners(fields.argmax(axis=1), 2)
+    straight = symmetry.project(fields, partners)
+    for fields in (straight, descend(level, straight, 0.1, steps=6).fields):
+        cut = cut_by_fields(level.surface, fields)
+        a, b = level.surface.edges[cut.edge].T
+        off = height[a] + cut.place * (height[b] - height[a])
+        assert np.abs(off).max() < 1e-3 * level.edge_length  # a cut keeps 1e-4 of an edge from its ends
+    move = np.random.default_rng(6).normal(size=fields.shape)
+    once = symmetry.project_move(move, partners)
+    np.testing.assert_allclose(symmetry.project(straight + once, partners) - symmetry.project(straight, partners),
+                               symmetry.project_move(once, partners), atol=1e-12)  # a move is what two fields differ by
+    pull = np.random.default_rng(7).normal(size=fields.shape)
+    assert (symmetry.pull_back(pull, partners) * move).sum() == pytest.approx((pull * once).sum(), rel=1e-12)

@@ -47,7 +47,7 @@ def descend(level, fields, thrift, energy="square", weights=None, steps=30, tole
             if (direction * gradient).sum() >= 0:
                 direction, pairs = -_metric(level, gradient), deque(maxlen=MEMORY)
             if twins is not None:
-                direction = level.symmetry.project(direction, twins)
+                direction = level.symmetry.project_move(direction, twins)
             direction *= _allowed(level, cut, direction, first=not pairs)
             step = _backtrack(level, fields, direction, gradient, cost, thrift, energy, weights, emphasis)
             if step is None:

@@ -9,13 +9,14 @@ import numpy as np
 from scipy.sparse import coo_matrix
 from scipy.sparse.csgraph import dijkstra
 
+from ..form.measure import angle_defects
 from .level import FORM_AREA
-from .tips import tips
+from .tips import EVEN, tips
 
 MOST_POINTS = 12000  # of the rung on which tips are found
 MISSED = 0.03 * np.sqrt(FORM_AREA)  # distance from the seams from which a tip counts as missed
 REACH = 0.03 * np.sqrt(FORM_AREA)  # how far around a missed tip distortion counts for more
-MORE = (12.0, 40.0)  # how much more at the tip itself: at first, and where that was not enough
+MORE = (12.0, 40.0, 120.0)  # how much more at the tip itself: at first, and where that was not enough
 
 
 class Points:
@@ -28,8 +29,9 @@ class Points:
     @cached_property
     def tips(self):
         """(k,) points of the rung."""
-        level = self.ladder.levels[self.rung]
-        return tips(level.surface, load=level.load)
+        level, owner = self.ladder.levels[self.rung], self.ladder.owners[self.rung]
+        defects = np.bincount(owner, angle_defects(self.ladder.levels[-1].surface))
+        return tips(level.surface, load=level.mass * level.diffusion(EVEN * np.sqrt(FORM_AREA)).solve(defects))
 
     @cached_property
     def _gaps(self):

@@ -36,12 +36,30 @@ class Mirror:
         self.image = corners[rows, share.argmax(axis=1)]
         share = np.where(self.right[corners], share, -1.0)
         self.twin = np.where(share.max(axis=1) >= 0, corners[rows, share.argmax(axis=1)], -1)
+        ends = surface.edges[self.height[surface.edges].prod(axis=1) <= 0]
+        self.near = np.unique(ends)  # the points of all edges that reach over the plane
 
     def partners(self, labels, count):
         """(count,) the region where most of each region's mirror image lies; one whose partner has another stands alone."""
         votes = np.bincount(labels * count + labels[self.image], minlength=count * count).reshape(count, count)
         partner, alone = (votes + votes.T).argmax(axis=1), np.arange(count)
         return np.where(partner[partner] == alone, partner, alone)
+
+    def parted(self, fields, partner, height):
+        """(n, K) fields whose partners differ by twice +- `height` (n,) near the plane, so that it parts them."""
+        fields = fields.copy()
+        for i, j in zip(*_pairs(partner), strict=True):
+            side = 1.0 if (self.height * (fields[:, i] - fields[:, j])).sum() > 0 else -1.0
+            middle = 0.5 * (fields[self.near, i] + fields[self.near, j])
+            fields[self.near, i] = middle + side * height[self.near]
+            fields[self.near, j] = middle - side * height[self.near]
+        return fields
+
+
+def _pairs(partner):
+    """(i, j) the regions that have another one for a partner, each pair once."""
+    first = np.flatnonzero(np.arange(len(partner)) < partner)
+    return first, partner[first]
 
 
 class Symmetry:
@@ -55,14 +73,27 @@ class Symmetry:
         return [mirror.partners(labels, count) for mirror in self.mirrors]
 
     def project(self, fields, partners):
-        """(n, K) symmetric fields: for each mirror the mean of the fields and their partners' mirror images."""
+        """(n, K) symmetric fields: for each mirror the mean of the fields and their partners' mirror images.
+
+        Near the plane partners differ by the height over it: a mirror image on a mesh that is not symmetric itself is
+        true but to a share of an edge, and the flow would make use of that.
+        """
         for mirror, partner in zip(self.mirrors, partners, strict=True):
             fields = 0.5 * (fields + (mirror.matrix @ fields)[:, partner])
+            fields = mirror.parted(fields, partner, mirror.height)
         return fields
+
+    def project_move(self, move, partners):
+        """(n, K) the same for the difference of two fields that are to be symmetric."""
+        for mirror, partner in zip(self.mirrors, partners, strict=True):
+            move = 0.5 * (move + (mirror.matrix @ move)[:, partner])
+            move = mirror.parted(move, partner, np.zeros(len(move)))
+        return move
 
     def pull_back(self, gradient, partners):
         """(n, K) gradient by the fields that went into `project`, from the gradient by those that came out."""
         for mirror, partner in zip(self.mirrors[::-1], partners[::-1], strict=True):
+            gradient = mirror.parted(gradient, partner, np.zeros(len(gradient)))
             gradient = 0.5 * (gradient + (mirror.back @ gradient)[:, partner])
         return gradient
 

@@ -4,23 +4,25 @@ import numpy as np
 from scipy.sparse import coo_matrix, csc_matrix
 from scipy.sparse.csgraph import connected_components
 
-from ..form.laplacian import Factor, cotangent_laplacian
+from ..form.laplacian import Factor, cotangent_laplacian, smoothed_defects
 from ..form.measure import angle_defects, open_points, total_area, vertex_areas
 
 PERSISTENCE = 0.5  # how far the potential rises above the pass to a higher tip (measured: limbs yes, bulges no)
 TOP = 0.1  # what lies within this of a tip's potential is the tip itself
+EVEN = 0.005  # share of the form's size over which curvature is evened out first: what is finer is no limb
 WIDEST = 0.25  # farthest that a tip reaches, as a share of the form's size: what reaches farther is a ridge
 
 
 def tips(surface, persistence=PERSISTENCE, load=None):
     """(k,) points of a Surface, the highest first: maxima of the potential v, -Laplace v = curvature less its mean.
 
-    load (n,): the curvature at the points, their angle defects if not given.
+    load (n,): the curvature at the points; their angle defects, evened out, if not given.
 
     The mean is taken over each connected part; open edges bring no curvature and let nothing through. A maximum counts when
     it rises by `persistence` over the highest pass that leads to a higher one (Edelsbrunner, Letscher, Zomorodian 2002). The
     rim of a lid or of a ring is a ridge, not a tip.
     """
+    load = smoothed_defects(surface, EVEN) if load is None else load
     points, potential = np.arange(len(surface.points)), curvature_potential(surface, load)
     peak = _peaks(surface, potential)
     ends = peak[surface.edges]
@@ -53,7 +55,7 @@ def tips(surface, persistence=PERSISTENCE, load=None):
 
 
 def curvature_potential(surface, load=None):
-    """(n,) the potential v of `tips`, zero at the first point of each part."""
+    """(n,) the potential v of `tips`, zero at the first point of each part; load (n,), the angle defects if not given."""
     part, first = _parts(surface)
     mass = vertex_areas(surface)
     load = np.where(open_points(surface), 0.0, angle_defects(surface) if load is None else load)

@@ -16,12 +16,9 @@ LOPSIDED = 0.1  # difference of seam prices on the two sides of a plane from whi
 
 
 def check(form, wishes):
-    """Refuse wishes that this form cannot be given, and those that this version cannot do, rather than leave them undone."""
-    later = {"only": wishes.only}
-    for name, value in later.items():
-        if value is not None:
-            raise WishError(f"{name}: not offered yet. Leave it out; keep_clear, held, shut, pieces and start are there.")
+    """Refuse wishes that this form cannot be given."""
     _check_start(form, wishes.start)
+    _check_only(form, wishes)
     if not isinstance(wishes.symmetry, str):
         size = np.sqrt(total_area(form.surface))
         for number, (point, normal) in enumerate(wishes.symmetry):
@@ -47,6 +44,22 @@ def _check_start(form, start):
         raise WishError(f"start: {labels.size} labels for a form of {form.face_count} faces. Give one for each face.")
     if labels.dtype.kind not in "biuf" or not np.isfinite(labels).all():
         raise WishError("start: labels must be numbers. Give every face the number of its piece.")
+
+
+def _check_only(form, wishes):
+    if wishes.only is None:
+        return
+    given = np.asarray(wishes.only)
+    if given.shape != (form.face_count,):
+        raise WishError(f"only: {given.size} values for a form of {form.face_count} faces. Give true or false for each "
+                        "face.")
+    if given.dtype.kind not in "bi" or not np.isin(given, (0, 1)).all():
+        raise WishError("only: give true or false for each face.")
+    if not given[form.polygon].any():
+        raise WishError("only: it holds no face of the form, so there is nothing to cover. Give the faces to cover.")
+    if wishes.start is not None:
+        raise WishError("only and start: what is there is improved as a whole, and only a part is to be covered. Leave one "
+                        "of them out.")
 
 
 def edges_asked(form, name, pairs):
@@ -123,13 +136,13 @@ def _point(form, point):
     return f"point {np.flatnonzero(form.point_of == point)[0]}"
 
 
-def prices_allow(form, part, price, never):
-    """Refuse a part that needs seams and may have none. price (n,) at its points, never: what counts as no seam there."""
+def prices_allow(form, part, never):
+    """Refuse a part that needs seams and may have none; never: a price that counts as no seam there."""
     count, component = part.surface.triangle_components  # opened along held seams it may be several
     for index in range(count):
         points, local = np.unique(part.surface.triangles[component == index], return_inverse=True)
         alone = Surface(part.surface.points[points], local.reshape(-1, 3))
-        inner = price[points][~open_points(alone)]
+        inner = part.price[points][~open_points(alone)]
         if not len(inner) or (inner < never).any() or (alone.euler == 1 and len(alone.boundary_loops) == 1):
             continue
         if count == 1 and not part.held.edges.any():
@@ -139,28 +152,31 @@ def prices_allow(form, part, price, never):
                         "and the held seams leave there what cannot lie flat without another. Leave a place for seams.")
 
 
-def planes_of(part, price, wishes, network=None):
+def planes_of(part, wishes, network=None, given=None):
     """List of Planes of symmetry that a part's network is to keep.
 
-    The maker's own where they hold for the part; else those found, unless the seam prices (n,), the edges held or
-    shut, or the network to start from are lopsided themselves.
+    The maker's own where they hold for the part; else those found, unless the seam prices, the edges held or shut, the
+    network to start from, or the triangles given (t,) bool to be covered alone are lopsided themselves.
     """
+    sides = part.surface.edge_triangles
+    border = np.zeros(len(sides), dtype=bool) if given is None else given[sides[:, 0]] != given[sides[:, 1]]
+    border = Network(part.surface, border & ~part.surface.open_edges, None)
     held, shut = Network(part.held.surface, part.held.edges, None), Network(part.surface, part.shut, None)
     if isinstance(wishes.symmetry, str):
         found = [] if wishes.symmetry == "none" else planes(part.held.surface)
-        return [plane for plane in found if _unlike(part.surface, plane, price) < LOPSIDED and _keeps(held, plane)
-                and _keeps(shut, plane) and (network is None or _keeps(network, plane))]
+        return [plane for plane in found if _unlike(part.surface, plane, part.price) < LOPSIDED and _keeps(held, plane)
+                and _keeps(shut, plane) and _keeps(border, plane) and (network is None or _keeps(network, plane))]
     size = np.sqrt(total_area(part.surface))
     own = [measured(part.surface, point, normal) for point, normal in wishes.symmetry]
     own = [plane for plane in own if plane.error <= NEAR * size]
     for plane in own:
-        if _unlike(part.surface, plane, price) >= LOPSIDED:
+        if _unlike(part.surface, plane, part.price) >= LOPSIDED:
             raise WishError("keep_clear and symmetry: the weights are not alike on the two sides of a plane. Paint them "
                             "alike, or leave symmetry at \"auto\".")
-        for name, edges in (("held", held), ("shut", shut)):
+        for name, edges in (("held", held), ("shut", shut), ("only", border)):
             if not _keeps(edges, plane):
-                raise WishError(f"{name} and symmetry: the edges of {name} are not alike on the two sides of a plane. Give "
-                                "them alike, or leave symmetry at \"auto\".")
+                raise WishError(f"{name} and symmetry: {name} is not alike on the two sides of a plane. Make it so, "
+                                "or leave symmetry at \"auto\".")
     return own
 
 

@@ -7,11 +7,12 @@ import numpy as np
 from .asked import check, held_edges, patches_allow, planes_of, prices_allow, shared_out, shut_edges
 from .assemble import assemble
 from .errors import CoverError
+from .fit.foresee import reach, stretch_weight
 from .fit.goods import get
 from .fit.improve import improve
 from .fit.join import joined
 from .fit.sewn import closed
-from .fit.tailor import Tailor
+from .fit.tailor import Tailor, finished
 from .form.measure import areas
 from .form.offset import carried, offset
 from .form.surface import Surface
@@ -20,6 +21,7 @@ from .pattern import Pattern
 from .seams.begun import network_of_labels, network_of_pattern, triangle_labels
 from .seams.ladder import Ladder
 from .seams.network import cut_through
+from .seams.only import BORDER, along_edges, grown, through_faces
 from .seams.opened import opened
 from .seams.prices import NEVER, seam_prices
 from .seams.route import cut_along
@@ -41,7 +43,9 @@ def cover(form, wishes=None, progress=None):
     prices = seam_prices(form, wishes)
     neutral, said = _neutral(form, goods, wishes)
     held = held_edges(form, wishes, prices >= NEVER)
-    parts = parts_of(form, neutral, held, shut_edges(form, wishes, held))
+    parts = parts_of(form, neutral, held, shut_edges(form, wishes, held), prices)
+    if wishes.only is not None:
+        parts = [part for part in parts if _given(form, part, wishes).any()]
     wanted = shared_out(form, parts, wishes.pieces)
     covered, notes = [], list(form.mended) + said
     for number, (part, pieces) in enumerate(zip(parts, wanted, strict=True)):
@@ -50,7 +54,7 @@ def cover(form, wishes=None, progress=None):
                 progress((number + 0.95 * share) / len(parts), words)
 
         try:
-            covered.append(_cover_part(form, part, prices[part.points], wishes, goods, pieces, tell, notes))
+            covered.append(_cover_part(form, part, wishes, goods, pieces, tell, notes))
         except CoverError as error:
             where = f"{form.name}, part {number + 1} of {len(parts)}" if len(parts) > 1 else form.name
             raise CoverError(f"{where}: {error}") from error
@@ -76,21 +80,33 @@ def _neutral(form, goods, wishes):
     ]
 
 
-def _cover_part(form, part, price, wishes, goods, pieces, tell, notes):
+def _cover_part(form, part, wishes, goods, pieces, tell, notes):
     """(Tailored, planes of symmetry it keeps) of one part; what the maker should know goes to notes."""
-    prices_allow(form, part, price, NEVER)
     patches_allow(form, part)
     begun = _begun(form, part, wishes, notes)
-    planes = planes_of(part, price, wishes, begun)
-    ladder = Ladder(part.surface, price, planes, seed=int(wishes.seed), patch=part.patch)
+    planes = planes_of(part, wishes, begun, _given(form, part, wishes))
+    if wishes.only is None:
+        prices_allow(form, part, NEVER)
+        result = _sought(part, planes, begun, wishes, goods, pieces, tell, notes)
+    else:
+        ground, source = _only(form, part, planes, wishes, goods)
+        result = _sought(ground, planes, None, wishes, goods, pieces, tell, notes)
+        result.network = replace(result.network, source=source[result.network.source])
+    _check_shut(part, result.network)
+    return _placed(finished(closed(part.held, result), goods, wishes.comfort, wishes.grain), part), planes
+
+
+def _sought(ground, planes, begun, wishes, goods, pieces, tell, notes):
+    """The Tailored of a Ground, from scratch or from a Network begun with; pieces: a wished number or None."""
+    ladder = Ladder(ground.surface, ground.price, planes, seed=int(wishes.seed), patch=ground.patch)
     metric = 1 / ladder.factor
 
     def explicit(cut):
         level = ladder.levels[-1]
         if wishes.route == "edges":
-            return cut_along(level, cut, part.polygon, part.diagonal, metric)
-        network = cut_through(level, part.held.evened(cut), metric)
-        return opened(network if part.bound is None else kept_whole(network, part.bound))
+            return cut_along(level, cut, ground.polygon, ground.diagonal, metric)
+        network = cut_through(level, ground.held.evened(cut), metric)
+        return opened(network if ground.bound is None else kept_whole(network, ground.bound))
 
     tailor = Tailor(ladder, explicit, goods, wishes.comfort, wishes.grain)
     if begun is not None:
@@ -102,10 +118,29 @@ def _cover_part(form, part, price, wishes, goods, pieces, tell, notes):
     else:
         found = seek(ladder, wishes.thrift or PLAIN_THRIFT, wishes.energy, pieces, tell)
         result = tailor.untangled(tailor.real(len(ladder.levels) - 1, found.cut))
-    if pieces is not None:
-        result = joined(tailor, result, pieces)
-    _check_shut(part, result.network)
-    return _placed(tailor.sewn(closed(part.held, result)), part), planes
+    return result if pieces is None else joined(tailor, result, pieces)
+
+
+def _given(form, part, wishes):
+    """(t,) bool: triangles of a part that `only` wishes covered, None without that wish."""
+    return None if wishes.only is None else np.asarray(wishes.only, dtype=bool)[form.polygon[part.triangles]]
+
+
+def _only(form, part, planes, wishes, goods):
+    """(Ground of the patch that covers the given faces of a part, (t,) the part's triangle of each of its triangles)."""
+    ladder = Ladder(part.surface, part.price, planes, seed=int(wishes.seed), patch=part.patch)
+    level, given, metric = ladder.levels[-1], _given(form, part, wishes), 1 / ladder.factor
+    points = np.zeros(len(part.points), dtype=bool)
+    points[part.surface.triangles[given]] = True
+    if wishes.thrift is None:
+        cut = grown(ladder, points, BORDER, "square", stretch_weight(reach(goods, wishes.comfort)))
+    else:
+        cut = grown(ladder, points, wishes.thrift, wishes.energy, 1.0)
+    if cut is None:
+        return part, np.arange(len(part.triangles))
+    if wishes.route == "edges":
+        return part.cut_out(*along_edges(level, cut, part.polygon, part.diagonal, given, metric))
+    return part.cut_out(*through_faces(level, part.held.evened(cut), metric))
 
 
 def _check_shut(part, network):

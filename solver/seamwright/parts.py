@@ -1,23 +1,40 @@
 """The parts of a form that are covered one by one, each opened along the seams that the maker holds."""
 
+from dataclasses import dataclass
+
 import numpy as np
 
 from .form.surface import Surface
 from .seams.held import Held
+from .seams.study import at_points, shares
 from .seams.whole import bound_faces, patches
 
 
-class Part:
+@dataclass
+class Ground:
+    """What seams are sought on: a Surface and, of its points (n,), triangles (t,) and edges (e,), what Part says of them."""
+
+    surface: Surface
+    price: np.ndarray
+    polygon: np.ndarray
+    diagonal: np.ndarray
+    patch: np.ndarray | None
+    bound: np.ndarray | None
+    held: Held
+
+
+class Part(Ground):
     """One connected part of a Form.
 
     triangles (t,): the form's triangles in it, ascending; held: a Held of its Surface in the middle of the goods; on_form:
     the same triangles on the form itself; surface: that of `held` opened along the held seams, on which everything runs;
-    points (n,): the form's point of each of its points; polygon (t,): the maker's face of each triangle, numbered from 0,
-    faces that stay whole together as one; diagonal (e,) bool: edges within those. Where edges are shut, patch (n,) and
-    bound (t,) tell the patches of points and of faces that stay whole (see `seams.whole`); else they are None.
+    points (n,): the form's point of each of its points; price (n,) of seams there; polygon (t,): the maker's face of each
+    triangle, numbered from 0, faces that stay whole together as one; diagonal (e,) bool: edges within those. Where edges are
+    shut, patch (n,) and bound (t,) tell the patches of points and of faces that stay whole (see `seams.whole`); else they
+    are None.
     """
 
-    def __init__(self, form, neutral, triangles, held, shut):
+    def __init__(self, form, neutral, triangles, held, shut, prices):
         self.triangles = triangles
         points, local = np.unique(form.triangles[triangles], return_inverse=True)
         whole = self.on_form = Surface(neutral.points[points], local.reshape(-1, 3))
@@ -26,6 +43,7 @@ class Part:
         self.held = Held(whole, _edges_of_part(form, triangles, whole, held))
         self.surface = self.held.opened
         self.points = points[self.held.origin]
+        self.price = prices[self.points]
         self.polygon = np.unique(form.polygon[triangles], return_inverse=True)[1].ravel()
         self.shut = self.held.at_opened(_edges_of_part(form, triangles, whole, shut))
         self.patch = self.bound = None
@@ -35,15 +53,36 @@ class Part:
             self.bound = bound_faces(self.surface, self.patch, self.polygon)
             one = np.where(self.bound < 0, self.polygon, self.polygon.max() + 1 + self.bound)
             self.polygon = np.unique(one, return_inverse=True)[1].ravel()
-        sides = self.polygon[self.surface.edge_triangles]
-        self.diagonal = ~self.surface.open_edges & (sides[:, 0] == sides[:, 1])
+        self.diagonal = _within(self.surface, self.polygon)
 
 
-def parts_of(form, neutral, held, shut):
+    def cut_out(self, network, inside):
+        """(Ground of the triangles `inside` (t,) bool of a Network of this part, which seams part from the others; (t',) the
+        part's triangle that each of its triangles lies in)."""
+        surface, points, triangles = network.part_surface(np.flatnonzero(inside))
+        source = network.source[triangles]
+        share = shares(self.surface, network, 1.0)
+        price = at_points(network.surface, self.surface.triangles[network.source], share, self.price)[points]
+        polygon = np.unique(self.polygon[source], return_inverse=True)[1].ravel()
+        patch = bound = None
+        if self.bound is not None and (self.bound[source] >= 0).any():
+            patch = patches(surface, self.bound[source] >= 0)
+            bound = bound_faces(surface, patch, polygon)
+        held = Held(surface, np.zeros(len(surface.edges), dtype=bool))
+        return Ground(surface, price, polygon, _within(surface, polygon), patch, bound, held), source
+
+
+def _within(surface, polygon):
+    """(e,) bool: edges within one of the faces (t,)."""
+    sides = polygon[surface.edge_triangles]
+    return ~surface.open_edges & (sides[:, 0] == sides[:, 1])
+
+
+def parts_of(form, neutral, held, shut, prices):
     """List of the Parts of a form; neutral: its Surface in the middle of the goods; held, shut (e,) bool: edges of the
-    form's surface that are held seams, and that may be none."""
+    form's surface that are held seams, and that may be none; prices (n,) of seams at its points."""
     count, component = form.surface.triangle_components
-    return [Part(form, neutral, np.flatnonzero(component == index), held, shut) for index in range(count)]
+    return [Part(form, neutral, np.flatnonzero(component == index), held, shut, prices) for index in range(count)]
 
 
 def _edges_of_part(form, triangles, surface, values):

@@ -25,10 +25,10 @@ class Wishes:
     "none" or a list of planes (point, normal), metres, at right angles. keep_clear: (n,) weights of the caller's points, 0
     free, 1 twice the price, inf never. held, shut: (k, 2) point pairs that are, or may not be, seams. start: a Pattern of
     the form or (m,) face labels, improved: with thrift the total never rises, without it neither length nor distortion does.
-    only: (m,) bool. pieces: a wished number. route: "through" faces or along "edges". grain: a direction on the form.
-    thickness_side: "outside" where the goods lie on the outside of the form, "inside" where its surface is to be their
-    outer face: pieces are then measured in the middle of the goods' thickness; "none" on the form itself. seed: another one
-    tries other coarse levels.
+    only: (m,) bool of the faces to cover, with as little more as serves. pieces: a wished number. route: "through" faces or
+    along "edges". grain: a direction on the form. thickness_side: "outside" where the goods lie on the outside of the form,
+    "inside" where its surface is to be their outer face: pieces are then measured in the middle of the goods' thickness;
+    "none" on the form itself. seed: another one tries other coarse levels.
     """
 
     goods: object = "canvas"

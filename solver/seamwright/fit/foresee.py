@@ -21,6 +21,11 @@ def reach(goods, comfort):
     return plain if shear is None else max(plain, 0.5 * shear / SHEAR_SHARE)
 
 
+def stretch_weight(reach):
+    """Of a piece's distortion against seams of price 1, to begin with: the two then weigh alike on a quarter of a sphere."""
+    return 4.0 / reach**2
+
+
 def largest(level, labels, u):
     """(K,) the QUANTILE by area of |u| in every region."""
     return area_quantile(np.abs(u), level.mass, labels, int(labels.max()) + 1)

@@ -17,7 +17,7 @@ from ..seams.fields import from_labels, redistance
 from ..seams.merging import merges
 from ..seams.starts import starts, tidied
 from ..seams.topology import nearer, regions, through
-from .foresee import largest
+from .foresee import largest, stretch_weight
 
 STEPS = 6  # flow steps in a round
 RESTS = (12, 6)  # flow steps after a lift, which leaves the seams as rough as the rung below, and after weighing anew
@@ -64,7 +64,7 @@ class Search:
     def begin(self):
         """The States of the first rung, best first."""
         level = self.ladder.levels[0]
-        weight = 4.0 / self.reach**2  # seam and distortion then weigh alike on a quarter of a sphere
+        weight = stretch_weight(self.reach)
         strictness = np.ones(len(self.ladder.owners[0]))
         pool = []
         for labels in starts(level, CELLS):

@@ -62,16 +62,6 @@ class Tailor:
                 break
         return self.dropped(best, halves=False)[0]  # what the coarse rung thought needed, the form itself may not
 
-    def sewn(self, met):
-        """The Tailored with the two sides of its seams matched, where the goods allow it.
-
-        Before, what cannot fit is laid so that as little of it as can be is beyond the hard limits.
-        """
-        wishes = self.judges.goods, self.judges.comfort, self.judges.grain
-        judged = [one if one.utilisation <= ENOUGH else resigned(met.network.piece_surface(piece)[0], one, *wishes)
-                  for piece, one in enumerate(met.judged)]
-        return Tailored(met.network, sewn(met.network, judged, *wishes))
-
     def dropped(self, met, limit=ENOUGH, halves=True):
         """(Tailored, places of what was left out): see `spare.dropped`."""
         return dropped(self.judges, met, self.planes, self.search.reach, limit, halves)
@@ -159,6 +149,17 @@ class Tailor:
                 judged.append(self.judges.piece(trial.piece_surface(piece)[0]) if new else met.judged[old])
             met = Tailored(trial, judged)
         return met
+
+
+def finished(met, goods, comfort, grain=None):
+    """The Tailored with the two sides of its seams matched, where the goods allow it.
+
+    Before, what cannot fit is laid so that as little of it as can be is beyond the hard limits.
+    """
+    wishes = goods, comfort, grain
+    judged = [one if one.utilisation <= ENOUGH else resigned(met.network.piece_surface(piece)[0], one, *wishes)
+              for piece, one in enumerate(met.judged)]
+    return Tailored(met.network, sewn(met.network, judged, *wishes))
 
 
 def _rank(found):

@@ -116,7 +116,7 @@ def _length(level, cut, nodes, thrift, gradient):
     force = (mean / length)[:, None] * along
     both, count, edges = np.append(a, b), nodes.count, len(level.surface.edges)
     pull = np.column_stack([np.bincount(both, np.append(-f, f), count) for f in force.T])
-    dearer = np.bincount(both, 0.5 * np.append(length, length), count)
+    dearer = np.bincount(both, 0.5 * np.append(length, length), count).astype(float)  # of nothing the sums are whole numbers
     for k in range(3):
         dearer[nodes.around[:, k]] += dearer[nodes.middles] / 3
     return total, thrift * (nodes.by_place(pull, edges) + np.bincount(nodes.edges, dearer[nodes.cuts] * gain, edges))

@@ -24,6 +24,7 @@ class Level:
     def __init__(self, surface, load, price=None, symmetry=None, patch=None, smoother=None):
         self.surface, self.symmetry = surface, symmetry
         self.patch = None if patch is None or patch.max() < 0 else patch
+        self.fixed = None  # (n,) label of points that keep theirs, -1 for others; or None
         if smoother is not None:
             self.smoother = smoother
         self.load = np.asarray(load, dtype=float)
@@ -38,14 +39,14 @@ class Level:
         return float(self.surface.edge_lengths.mean())
 
     def labels(self, fields):
-        """(n,) the region of each point: the largest of its fields (n, K), or of the sums over its patch."""
+        """(n,) the region of each point: that of the largest of its fields (n, K), or of their sums over its patch."""
         labels = fields.argmax(axis=1)
         if self.patch is not None:
             inside = self.patch >= 0
             total = np.zeros((int(self.patch.max()) + 1, fields.shape[1]))
             np.add.at(total, self.patch[inside], self.mass[inside, None] * fields[inside])
             labels[inside] = total.argmax(axis=1)[self.patch[inside]]
-        return labels
+        return labels if self.fixed is None else np.where(self.fixed >= 0, self.fixed, labels)
 
     def united(self, labels):
         """(n,) labels of which every patch has one."""

@@ -30,7 +30,7 @@ class Nodes:
 
     def by_place(self, pull, edges):
         """(edges,) gradient by the cut places, from that by the nodes' positions (N, 2)."""
-        at_cuts = pull.copy()
+        at_cuts = pull.astype(float)  # sums of nothing are whole numbers
         for k in range(3):
             at_cuts[self.around[:, k]] += pull[self.middles] / 3
         start, end = self.place[self.ends[:, 0]], self.place[self.ends[:, 1]]

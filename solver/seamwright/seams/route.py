@@ -21,7 +21,7 @@ def cut_along(level, cut, polygon, diagonal, metric):
     surface = Surface(level.surface.points * metric, level.surface.triangles)
     gap = np.abs(redistance(level, cut, int(cut.labels.max()) + 1)).min(axis=1) * metric
     cost, near = corridor(surface, ~diagonal, level.price, gap)
-    labels = _shortened(surface, _face_labels(level, cut, polygon), polygon, cost)
+    labels = shortened(surface, face_labels(level, cut, polygon), polygon, cost)
     sides = surface.edge_triangles
     seam = ~surface.open_edges & (labels[polygon[sides[:, 0]]] != labels[polygon[sides[:, 1]]])
     network = Network(surface, seam, np.arange(len(surface.triangles)))
@@ -35,7 +35,7 @@ def cut_along(level, cut, polygon, diagonal, metric):
     return replace(network, face=polygon)
 
 
-def _face_labels(level, cut, polygon):
+def face_labels(level, cut, polygon):
     """(f,) the region that holds most of each of the maker's faces."""
     count, faces = int(cut.labels.max()) + 1, int(polygon.max()) + 1
     share = np.zeros((faces, count))
@@ -55,8 +55,9 @@ def _face_labels(level, cut, polygon):
     return share.argmax(axis=1)
 
 
-def _shortened(surface, labels, polygon, cost):
-    """Labels after flips of single faces that make the border cheaper, cost (e,); at most SWEEPS sweeps."""
+def shortened(surface, labels, polygon, cost, fixed=()):
+    """Labels after flips of single faces, but for those `fixed` (k,), that make the border cheaper, cost (e,); at most
+    SWEEPS sweeps."""
     sides = polygon[surface.edge_triangles]
     inner = np.flatnonzero(~surface.open_edges & (sides[:, 0] != sides[:, 1]))
     around = {}
@@ -67,7 +68,7 @@ def _shortened(surface, labels, polygon, cost):
     for _ in range(SWEEPS):
         border = labels[sides[inner, 0]] != labels[sides[inner, 1]]
         changed = False
-        for face in np.unique(sides[inner[border]]).tolist():
+        for face in np.setdiff1d(sides[inner[border]], fixed).tolist():
             total = {}
             for other, length in around[face]:
                 total[labels[other]] = total.get(labels[other], 0.0) + length

@@ -39,8 +39,7 @@ def network_cost(ladder, network, thrift, energy="square"):
     share = shares(level.surface, network, ladder.factor)
     corners = level.surface.triangles[network.source]
     surface = Surface(network.surface.points * ladder.factor, network.surface.triangles)
-    load, price = (_at_points(surface, (share * values[corners][:, None]).sum(axis=2))
-                   for values in (level.density, level.price))
+    load, price = (at_points(surface, corners, share, values) for values in (level.density, level.price))
     mass, fixed = vertex_areas(surface), open_points(surface)
     fixed[surface.edges[network.seam]] = True
     u, free = np.zeros(len(mass)), np.flatnonzero(~fixed)
@@ -62,10 +61,11 @@ def shares(surface, network, factor):
     return closest_on_triangles(places, corners)[0].reshape(-1, 3, 3)
 
 
-def _at_points(surface, values):
-    """(n,) one of the values (t, 3) that the triangles' corners have at each point: they agree."""
-    found = np.zeros(len(surface.points))
-    found[surface.triangles] = values
+def at_points(fine, corners, share, values):
+    """(n,) at the points of a Surface what values at points of another are there: its triangles' corners lie at shares
+    (t, 3, 3) of triangles with corner points (t, 3)."""
+    found = np.zeros(len(fine.points))
+    found[fine.triangles] = (share * values[corners][:, None]).sum(axis=2)  # corners that meet in a point agree
     return found
 
 

@@ -7,6 +7,7 @@ from seamwright.form.measure import total_area
 from seamwright.seams.cut import cut_by_fields
 from seamwright.seams.fields import from_labels
 from seamwright.seams.level import Level, scaled
+from seamwright.seams.middle import LEAST, ROUND
 from seamwright.seams.topology import voronoi
 
 OWN = (lambda u: u**4 + np.cosh(u) - 1, lambda u: 4 * u**3 + np.sinh(u))
@@ -27,6 +28,16 @@ def fields_of_cells(level, count):
 def cells(level, count):
     """Cut of a Level into `count` round cells."""
     return cut_by_fields(level.surface, fields_of_cells(level, count))
+
+
+def middle_of(*cuts):
+    """The place of the middle of three cuts: corners 1 / (cot + cot 60), rounded where an angle passes 120 degrees."""
+    weights = []
+    for k in range(3):
+        a, b = cuts[(k + 1) % 3] - cuts[k], cuts[(k + 2) % 3] - cuts[k]
+        x = 1 / np.tan(np.arctan2(np.linalg.norm(np.cross(a, b)), a @ b)) + 1 / np.tan(np.pi / 3)
+        weights.append(2 / (x + np.hypot(x, ROUND)))
+    return sum((LEAST + (1 - 3 * LEAST) * w / sum(weights)) * cut for w, cut in zip(weights, cuts, strict=True))
 
 
 def cut_mesh(surface, cut):
@@ -59,7 +70,7 @@ def cut_mesh(surface, cut):
             a, b, c = face
             p, q, r = between(a, b), between(b, c), between(c, a)
             middle = len(points)
-            points.append(np.mean([points[p], points[q], points[r]], axis=0).tolist())
+            points.append(middle_of(*(np.array(points[k]) for k in (p, q, r))).tolist())
             triangles += [[a, p, middle], [a, middle, r], [b, q, middle], [b, middle, p], [c, r, middle], [c, middle, q]]
             regions += [marks[0], marks[0], marks[1], marks[1], marks[2], marks[2]]
             segments += [(p, middle), (q, middle), (r, middle)]

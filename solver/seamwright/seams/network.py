@@ -12,6 +12,7 @@ from scipy.sparse.csgraph import connected_components
 
 from ..form.measure import total_area
 from ..form.surface import Surface, components_through
+from .middle import middles
 
 NEAREST = 0.1  # share of an edge that a cut keeps from its ends: less makes needles, more makes the seam zigzag
 
@@ -141,7 +142,7 @@ def cut_through(level, cut, metric):
     number = np.full(len(surface.edges), -1)
     number[cut.edge] = len(surface.points) + np.arange(len(cut.edge))
     middle = len(surface.points) + len(cut.edge) + np.arange(len(cut.three.face))
-    points.append(points[1][number[cut.three.edges] - len(surface.points)].mean(axis=1))
+    points.append(middles(points[1][number[cut.three.edges] - len(surface.points)], NEAREST))
     keep = np.ones(len(surface.triangles), dtype=bool)
     triangles, source, segments = [], [], []
     for kind in (cut.two, cut.three):

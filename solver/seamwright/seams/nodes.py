@@ -2,6 +2,8 @@
 
 import numpy as np
 
+from .middle import middles, pulled
+
 
 class Nodes:
     """The N nodes of all cut faces, first each face's corners, then its cuts, then its middle where it has one.
@@ -10,7 +12,7 @@ class Nodes:
     its face, 3 at cuts and middles. faces (f,) cut; face (t,), table (t, 3): sub-triangles over the nodes. seams (s, 2)
     segments over the nodes, sides (s, 2) a corner on either side of each. cuts (c,) nodes, edges (c,) the edge each lies on,
     ends (c, 2) the corners its share counts from and to, sign (c,) -1 where it counts from the edge's larger point.
-    middles (q,) nodes, around (q, 3) the cuts each is the mean of.
+    middles (q,) nodes, around (q, 3) the cuts each lies between.
     """
 
     def __init__(self, level, cut):
@@ -31,8 +33,7 @@ class Nodes:
     def by_place(self, pull, edges):
         """(edges,) gradient by the cut places, from that by the nodes' positions (N, 2)."""
         at_cuts = pull.astype(float)  # sums of nothing are whole numbers
-        for k in range(3):
-            at_cuts[self.around[:, k]] += pull[self.middles] / 3
+        at_cuts[self.around] += pulled(self.place[self.around], pull[self.middles])
         start, end = self.place[self.ends[:, 0]], self.place[self.ends[:, 1]]
         return np.bincount(self.edges, self.sign * (at_cuts[self.cuts] * (end - start)).sum(axis=1), edges)
 
@@ -84,7 +85,7 @@ def seam_nodes(level, cut, kind):
     points = corners[:, start] + share[:, :, None] * (corners[:, end] - corners[:, start])
     nodes = np.concatenate([corners, points], axis=1)
     if len(kind.seams) == 3:
-        nodes = np.concatenate([nodes, points.mean(axis=1, keepdims=True)], axis=1)
+        nodes = np.concatenate([nodes, middles(points)[:, None]], axis=1)
     return nodes, whole
 
 

@@ -42,6 +42,7 @@ def parser():
     options.add_argument("--seeds", type=int, help="score of the seam stage over the best of so many seeds, at --thrift "
                          "or three of them")
     options.add_argument("--rivals", action="store_true", help="distortion at equal seam length against other ways to seam")
+    options.add_argument("--slim", action="store_true", help="laying a piece flat, against libigl's SLIM")
     options.add_argument("--symmetry", default="auto", choices=("auto", "none"))
     options.add_argument("--goods", default=[], type=several(str), help="goods to cover in, comma between, or all")
     options.add_argument("--comfort", default=0.5, type=float)
@@ -53,13 +54,15 @@ def parser():
 def wanted(options):
     """List of (table, its rows) for what the options ask for; rows yield (Row, Pattern or None)."""
     import seamwright as sw
-    from tables import against, best, fits, stage
+    from tables import against, best, fits, slim, stage
 
     goods = list(sw.goods()) if options.goods == ["all"] else options.goods
     asked = []
-    compared = options.seeds or options.rivals
+    compared = options.seeds or options.rivals or options.slim
     if options.rivals:
         asked.append((against, against.rows(options.forms, options.points, options.thrift or THRIFTS)))
+    if options.slim:
+        asked.append((slim, slim.rows(options.forms, options.points)))
     if options.seeds:
         asked.append((best, best.rows(options.forms, options.points, options.thrift or THRIFTS, options.seeds)))
     if not compared and (options.thrift or not goods):

@@ -60,7 +60,7 @@ def holding_areas(count):
 
 
 def flown(level, fields, steps, rounds):
-    """The best Descent of some rounds, the fields diffused in between, which moves junctions (Esedoglu, Ruuth, Tsai 2010)."""
+    """The best Descent of some rounds; diffusing distances in between moves junctions (Esedoglu, Ruuth, Tsai 2010)."""
     best = None
     for _ in range(rounds):
         end = flow.descend(level, fields, 1.0, steps=steps, tolerance=1e-7)

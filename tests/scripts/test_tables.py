@@ -6,14 +6,16 @@ from pathlib import Path
 
 import numpy as np
 import pytest
-from forms import icosphere, torus
+from forms import cap, icosphere, torus
+from seamwright.flat import flatten
 from seamwright.form.form import Form
+from seamwright.form.surface import Surface
 from seamwright.seams.ladder import Ladder
 from seamwright.seams.network import Network
 
 sys.path.insert(0, str(Path(__file__).resolve().parents[2] / "scripts"))
 import bench  # noqa: E402
-from tables import against, best, rivals  # noqa: E402
+from tables import against, best, rivals, slim  # noqa: E402
 from tables.geodesics import Heat, exact  # noqa: E402
 from tables.rivals import Rival  # noqa: E402
 
@@ -90,6 +92,16 @@ def test_over_the_best():
     assert (row.over, row.unlike, row.best) == (pytest.approx(0.1), pytest.approx(0.1), 1.0)
     assert best.compared("ball", 9, 0.1, [1.1, 1.2], 0.99).best == 0.99
     assert best.compared("ball", 9, 0.1, [1.1, 1.2], None).unlike is None
+
+
+def test_flattening_against_slim():
+    """Both come to the same least energy; the steps and times told are those of the first to be so near."""
+    points, faces = cap(1.3, 16)
+    row = slim.compared("cap", Surface(points, faces))
+    assert row.points == len(points) and 0 < row.near <= row.nearer
+    assert row.near_ratio > 0 and row.nearer_ratio > 0  # SLIM came as near: never is None
+    assert slim.line(row).startswith("cap") and "over 1 pieces" in slim.summary([row])[0]
+    assert row.energy == pytest.approx(flatten(Surface(points, faces)).energy, rel=1e-3)
 
 
 def test_tables_are_printed_and_written(tmp_path, monkeypatch, capsys):

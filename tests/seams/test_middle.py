@@ -32,8 +32,8 @@ def test_ways_meet_at_120_degrees():
 
 def test_least_way_found_by_search():
     for cuts in triangles(12, seed=5):
-        best = minimize(lambda at, cuts=cuts: np.linalg.norm(cuts - at, axis=1).sum(), cuts.mean(axis=0), method="Nelder-Mead",
-                        options={"xatol": 1e-9, "fatol": 1e-12}).fun
+        best = minimize(lambda at, cuts=cuts: np.linalg.norm(cuts - at, axis=1).sum(), cuts.mean(axis=0),
+                        method="Nelder-Mead", options={"xatol": 1e-9, "fatol": 1e-12}).fun
         assert np.linalg.norm(cuts - middles(cuts[None], 0.0)[0], axis=1).sum() == pytest.approx(best, rel=1e-3)
 
 

@@ -1,8 +1,8 @@
 """Where three seams meet within a face: near the point with the least way to its three cuts (Torricelli, 1640s).
 
 With the mean of the cuts instead, seams would have to lengthen before their junction may leave the face, and junctions
-stay where the mesh holds them. Torricelli's point has the shares 1 / (cot A + cot 60) in the triangle of the cuts, up to a factor;
-beyond 120 degrees at a cut it is the cut itself.
+stay where the mesh holds them. Torricelli's point has the shares 1 / (cot A + cot 60) in the triangle of the cuts, up to a
+factor; beyond 120 degrees at a cut it is the cut itself.
 """
 
 import numpy as np

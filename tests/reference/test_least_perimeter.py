@@ -81,7 +81,7 @@ def parted(surface, count, seed=7):
     fields = from_labels(levels[0], (levels[0].surface.points @ corners.T).argmax(axis=1))
     for rung, level in enumerate(levels):
         fields = fields if rung == 0 else ladder.lift(fields, rung - 1)
-        end = flown(level, fields, *((20, 6) if rung == 0 else (8, 3)))
+        end = flown(level, fields, *((20, 6) if rung == 0 else (8, 4)))
         fields = end.fields
     return level, end
 

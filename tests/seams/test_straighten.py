@@ -106,7 +106,7 @@ def test_seams_along_edges_are_hardly_longer_than_through(name):
     form = Form(*FORMS[name])
     ladder = Ladder(form.surface, rungs=())
     level, metric = ladder.levels[-1], 1 / ladder.factor
-    cut = cells(level, 5)
+    cut = cells(level, 6)
     network = cut_along(level, cut, form.polygon, form.diagonal, metric)
     assert network.length() < 1.25 * cut_through(level, cut, metric).length()
     for piece in range(network.pieces[0]):

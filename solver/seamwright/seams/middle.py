@@ -8,7 +8,7 @@ factor; beyond 120 degrees at a cut it is the cut itself.
 import numpy as np
 
 ROUND = 0.05  # cotangents within which the change to a cut itself is rounded, so that the gradient is smooth
-LEAST = 0.01  # share that every cut keeps, so that no sub-triangle vanishes
+LEAST = 0.02  # share that every cut keeps, so that no sub-triangle vanishes
 
 
 def shares(cuts, least=LEAST):

@@ -12,10 +12,11 @@ from seamwright.form.form import Form
 from seamwright.form.surface import Surface
 from seamwright.seams.ladder import Ladder
 from seamwright.seams.network import Network
+from seamwright.seams.refuse import measured
 
 sys.path.insert(0, str(Path(__file__).resolve().parents[2] / "scripts"))
 import bench  # noqa: E402
-from tables import against, best, rivals, slim  # noqa: E402
+from tables import against, best, rivals, slim, stage  # noqa: E402
 from tables.geodesics import Heat, exact  # noqa: E402
 from tables.rivals import Rival  # noqa: E402
 
@@ -102,6 +103,14 @@ def test_flattening_against_slim():
     assert row.near_ratio > 0 and row.nearer_ratio > 0  # SLIM came as near: never is None
     assert slim.line(row).startswith("cap") and "over 1 pieces" in slim.summary([row])[0]
     assert row.energy == pytest.approx(flatten(Surface(points, faces)).energy, rel=1e-3)
+
+
+@pytest.mark.parametrize("name", ["ball", "egg", "pear", "crate", "buoy", "worm", "shade", "bowl"])
+def test_nothing_to_refuse(name):
+    """Seams for a thrift are such as a patternmaker would sew, limbs and all."""
+    row, pattern = stage.measured_row(name, 2000, 0.1, "auto")
+    assert row.refused == [], [one.sentence for one in measured(pattern) if one.refused]
+    assert row.symmetric == (name != "worm")  # which is twisted
 
 
 def test_tables_are_printed_and_written(tmp_path, monkeypatch, capsys):

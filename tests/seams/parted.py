@@ -77,14 +77,8 @@ def cut_mesh(surface, cut):
     return np.array(points), np.array(triangles), np.array(regions), segments
 
 
-def slow_cost(level, cut, thrift, pair, weights):
-    """(distortion, length, total, u) of a cut, on the cut mesh: one loop over its triangles, one dense solve.
-
-    pair: (j, dj/du), None for half the integral of |grad u|^2, here taken from the gradients themselves.
-    """
-    surface = level.surface
-    n = len(surface.points)
-    points, triangles, regions, segments = cut_mesh(surface, cut)
+def dense(points, triangles):
+    """(stiffness (n, n), mass (n,), [(triangle, its own stiffness)]) by one loop over the triangles."""
     stiffness, mass = np.zeros((len(points), len(points))), np.zeros(len(points))
     parts = []
     for triangle in triangles.tolist():
@@ -104,12 +98,48 @@ def slow_cost(level, cut, thrift, pair, weights):
             for j in range(3):
                 stiffness[triangle[i], triangle[j]] += local[i, j]
         parts.append((triangle, local))
+    return stiffness, mass, parts
+
+
+def open_rim(triangles):
+    """Set of the points on open edges."""
     seen = {}
-    for triangle in surface.triangles.tolist():
+    for triangle in triangles.tolist():
         for k in range(3):
             edge = tuple(sorted((triangle[k], triangle[(k + 1) % 3])))
             seen[edge] = seen.get(edge, 0) + 1
-    held = {p for edge, count in seen.items() if count == 1 for p in edge} | set(range(n, len(points)))
+    return {p for edge, count in seen.items() if count == 1 for p in edge}
+
+
+def slow_edges_cost(points, triangles, seams, load, price, thrift, pair):
+    """(distortion, length, total, u) of seams along edges, pairs of points: one loop, one dense solve.
+
+    load, price (n,): curvature by area and factor on length at the points.
+    """
+    stiffness, mass, parts = dense(points, triangles)
+    held = open_rim(triangles) | {p for edge in seams for p in edge}
+    free = [p for p in range(len(points)) if p not in held]
+    u = np.zeros(len(points))
+    u[free] = np.linalg.solve(stiffness[np.ix_(free, free)], (load * mass)[free])
+    if pair is None:
+        distortion = sum(0.5 * u[triangle] @ local @ u[triangle] for triangle, local in parts)
+    else:
+        distortion = sum(pair[0](u[p]) * mass[p] for p in range(len(points)))
+    length = sum(0.5 * (price[p] + price[q]) * np.linalg.norm(points[q] - points[p]) for p, q in seams)
+    return distortion, length, distortion + thrift * length, u
+
+
+def slow_cost(level, cut, thrift, pair, weights):
+    """(distortion, length, total, u) of a cut, on the cut mesh: one loop over its triangles, one dense solve.
+
+    pair: (j, dj/du), None for half the integral of |grad u|^2, here taken from the gradients themselves.
+    """
+    surface = level.surface
+    n = len(surface.points)
+    points, triangles, regions, segments = cut_mesh(surface, cut)
+    stiffness, mass, parts = dense(points, triangles)
+    rim = open_rim(surface.triangles)
+    held = rim | set(range(n, len(points)))
     free = [p for p in range(len(points)) if p not in held]
     density = np.concatenate([level.load / level.mass, np.zeros(len(points) - n)])
     u = np.zeros(len(points))

@@ -5,11 +5,13 @@ from dataclasses import replace
 import numpy as np
 import pytest
 from forms import cap, cube, cylinder, dumbbell, ellipsoid, icosphere, limbs, torus
-from parted import OWN, cells, fields_of_cells, level_of, slow_cost
+from parted import OWN, cells, fields_of_cells, level_of, slow_cost, slow_edges_cost
 from seamwright.form.form import Form
 from seamwright.seams.cut import NEAREST, cut_by_fields
 from seamwright.seams.energy import density, evaluate, field_gradient
-from seamwright.seams.study import log_scale, seam_energy
+from seamwright.seams.ladder import Ladder
+from seamwright.seams.network import Network
+from seamwright.seams.study import log_scale, network_cost, seam_energy
 
 FORMS = {
     "ellipsoid": ellipsoid(1.0, 0.8, 0.5, 2), "torus": torus(1.0, 0.4, 16, 9), "cap": cap(1.4, 7),
@@ -36,6 +38,28 @@ def test_slow_twin_agrees(case, energy):
     level, _, cut, weights = case
     cost = evaluate(level, cut, 0.3, ENERGIES[energy], weights)
     distortion, length, total, u = slow_cost(level, cut, 0.3, density(ENERGIES[energy]), weights)
+    assert cost.distortion == pytest.approx(distortion, rel=1e-10)
+    assert cost.length == pytest.approx(length, rel=1e-12)
+    assert cost.total == pytest.approx(total, rel=1e-10)
+    np.testing.assert_allclose(cost.u, u, rtol=0, atol=1e-10)
+
+
+@pytest.mark.parametrize("name", FORMS)
+@pytest.mark.parametrize("energy", ENERGIES)
+def test_slow_twin_agrees_along_edges(name, energy):
+    """Borders of five cells, and a slit where there was none: a run that ends in the middle of a piece."""
+    form = Form(*FORMS[name])
+    surface, chance = form.surface, np.random.default_rng(5)
+    price = chance.uniform(0.5, 2.0, len(form.points))
+    ladder = Ladder(surface, price, rungs=())
+    level = ladder.levels[-1]
+    owner = cells(level, 5).labels[surface.triangles].min(axis=1)
+    a, b = surface.edge_triangles.T
+    seam = ~surface.open_edges & (owner[a] != owner[b])
+    seam[np.flatnonzero(~surface.open_edges)[3]] = True
+    cost = network_cost(ladder, Network(surface, seam, np.arange(len(owner))), 0.3, ENERGIES[energy])
+    distortion, length, total, u = slow_edges_cost(level.surface.points, surface.triangles, surface.edges[seam].tolist(),
+                                                   level.load / level.mass, price, 0.3, density(ENERGIES[energy]))
     assert cost.distortion == pytest.approx(distortion, rel=1e-10)
     assert cost.length == pytest.approx(length, rel=1e-12)
     assert cost.total == pytest.approx(total, rel=1e-10)

@@ -91,10 +91,9 @@ def farthest_tip(seen, limit=0.04):
 
 
 def jag(seen):
-    """Length of all seams over their length when resampled."""
+    """Length of all stitch lines over their length when resampled: in the flat, where relief of the form is no jag."""
     limit = EDGES_JAG if seen.along_edges else DETAILED_JAG if len(seen.tips) > DETAILED else SMOOTH_JAG
-    whole = sum(seen.lengths)
-    plain = sum(_length(seen.resampled(k, STEP)) for k in range(len(seen.seams)))
+    whole, plain = seen.stitch_lengths(STEP)
     value = whole / plain if plain > 0 else 1.0
     return _most("jag", value, limit, f"The seams are {100 * (value - 1):.1f} % longer than smooth ones. Smooth them.")
 
@@ -209,10 +208,6 @@ def _most(name, value, limit, sentence):
 def _least(name, value, limit, sentence):
     bad = not value >= limit
     return Measure(name, float(value), float(limit), bad, sentence if bad else "")
-
-
-def _length(path):
-    return float(np.linalg.norm(np.diff(path, axis=0), axis=1).sum())
 
 
 def _place(point):

@@ -42,7 +42,7 @@ class Seen:
         self.size = np.sqrt(self.part_area)
         self.piece_area = np.array([piece.areas.sum() for piece in self.pieces])
         self.piece_part = np.array([self._component[piece.source[0]] for piece in self.pieces])
-        self.lengths = [float(np.linalg.norm(np.diff(seam.path, axis=0), axis=1).sum()) for seam in self.seams]
+        self.lengths = [_length(seam.path) for seam in self.seams]
         self.seam_part = np.array([self.piece_part[self._owner(seam)] for seam in self.seams], dtype=np.int64)
 
     def _owner(self, seam):
@@ -132,10 +132,13 @@ class Seen:
 
     def resampled(self, k, share):
         """(q, 3) points along seam k at even steps of about `share` of the size."""
-        path, step = self.seams[k].path, share * self.size[self.seam_part[k]]
-        way = np.concatenate([[0], np.cumsum(np.linalg.norm(np.diff(path, axis=0), axis=1))])
-        at = np.linspace(0, way[-1], max(1, round(way[-1] / step)) + 1)
-        return np.column_stack([np.interp(at, way, axis) for axis in path.T])
+        return _even(self.seams[k].path, share * self.size[self.seam_part[k]])
+
+    def stitch_lengths(self, share):
+        """Metres of all sewn stitch lines in the flat, as they are and at even steps of about `share` of the size."""
+        lines = [(self.pieces[self.number[name]].flat[points], share * self.size[part])
+                 for seam, part in zip(self.seams, self.seam_part, strict=True) for name, points in seam.sides]
+        return sum(_length(line) for line, _ in lines), sum(_length(_even(line, step)) for line, step in lines)
 
     def distances(self, points):
         """(k,) metres from points (k, 3) to the nearest seam or hem."""
@@ -176,6 +179,17 @@ class Seen:
     @cached_property
     def _seams_at(self):
         return np.bincount(self.ends.ravel(), minlength=len(self.degree))
+
+
+def _length(path):
+    return float(np.linalg.norm(np.diff(path, axis=0), axis=1).sum())
+
+
+def _even(path, step):
+    """(q, d) points along a path at even steps of about `step` metres."""
+    way = np.concatenate([[0], np.cumsum(np.linalg.norm(np.diff(path, axis=0), axis=1))])
+    at = np.linspace(0, way[-1], max(1, round(way[-1] / step)) + 1)
+    return np.column_stack([np.interp(at, way, axis) for axis in path.T])
 
 
 def _toward(path, reach):

@@ -24,6 +24,15 @@ def test_a_sphere_has_no_tips():
     assert len(points.tips) == 0 and not points.missed(np.zeros((len(points.ladder.levels[points.rung].mass), 2))).any()
 
 
+def test_the_corners_of_an_open_edge_are_no_tips():
+    side = 30
+    x, y = np.meshgrid(np.linspace(0, 1, side), np.linspace(0, 1, side), indexing="ij")
+    first = (np.arange(side - 1)[:, None] * side + np.arange(side - 1)).ravel()
+    squares = np.column_stack([first, first + side, first + side + 1, first + 1])
+    sheet = Form(np.column_stack([x.ravel(), y.ravel(), 0 * x.ravel()]), squares)
+    assert len(Points(Ladder(sheet.surface)).tips) == 0
+
+
 def test_tips_are_the_ends_of_the_limbs(ladder):
     points = Points(ladder)
     surface = ladder.levels[points.rung].surface

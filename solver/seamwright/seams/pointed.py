@@ -9,7 +9,7 @@ import numpy as np
 from scipy.sparse import coo_matrix
 from scipy.sparse.csgraph import dijkstra
 
-from ..form.measure import angle_defects
+from ..form.measure import angle_defects, open_points
 from .level import FORM_AREA
 from .tips import EVEN, tips
 
@@ -30,7 +30,8 @@ class Points:
     def tips(self):
         """(k,) points of the rung."""
         level, owner = self.ladder.levels[self.rung], self.ladder.owners[self.rung]
-        defects = np.bincount(owner, angle_defects(self.ladder.levels[-1].surface))
+        form = self.ladder.levels[-1].surface
+        defects = np.bincount(owner, np.where(open_points(form), 0.0, angle_defects(form)))
         return tips(level.surface, load=level.mass * level.diffusion(EVEN * np.sqrt(FORM_AREA)).solve(defects))
 
     @cached_property

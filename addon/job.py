@@ -1,7 +1,6 @@
 """A form being covered in a child process: the window stays alive, and whatever befalls the child stays with it."""
 
 import json
-import os
 import pickle
 import subprocess
 import sys
@@ -35,13 +34,11 @@ class Job:
         (folder / "request.json").write_text(json.dumps(request), encoding="utf-8")
         np.savez(folder / "form.npz", points=reading.points, corners=reading.corners, sizes=reading.sizes,
                  keep_clear=reading.keep_clear, held=reading.held)
-        # one thread: small systems gain nothing from more, and sums must not depend on the machine
-        env = {**os.environ, "OPENBLAS_NUM_THREADS": "1", "OMP_NUM_THREADS": "1"}
         command = [sys.executable, *bpy.app.python_args, worker.__file__, str(folder)]
         # messages go through a file, which every system can read without waiting
         with open(folder / "messages.txt", "wb") as out, open(self._errors, "wb") as errors:
             self._process = subprocess.Popen(
-                command, stdin=subprocess.PIPE, stdout=out, stderr=errors, env=env,
+                command, stdin=subprocess.PIPE, stdout=out, stderr=errors,
                 creationflags=getattr(subprocess, "CREATE_NO_WINDOW", 0))
         self._messages = open(folder / "messages.txt", encoding="utf-8")
         self._rest = ""

@@ -27,7 +27,7 @@ BINARY = {  # library: its licence, all of which go with GPL-3.0-or-later
     "scipy": "BSD-3-Clause; with OpenBLAS, BSD-3-Clause, and the GCC run-time library, GPL-3.0 with its exception",
     "shapely": "BSD-3-Clause; with GEOS, LGPL-2.1",
 }
-PURE = {"fpdf2": "LGPL-3.0-only", "fonttools": "MIT", "defusedxml": "PSF-2.0"}
+PURE = {"fpdf2": "LGPL-3.0-only", "fonttools": "MIT", "defusedxml": "PSF-2.0", "threadpoolctl": "BSD-3-Clause"}
 
 
 def pinned(name):

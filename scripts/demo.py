@@ -5,7 +5,6 @@
 Open out/index.html afterwards. Exit status as the command line's: 0 all fits, 1 a piece is strained, 3 a form failed.
 """
 
-import os
 import subprocess
 import sys
 
@@ -35,5 +34,4 @@ def main():
 
 if __name__ == "__main__":
     setup.enter(__file__)
-    os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
     sys.exit(main())

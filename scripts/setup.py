@@ -22,6 +22,7 @@ HOST_PINS = {
 }
 PINS = [
     "fpdf2==2.8.9", "shapely==2.2.0", "fonttools==4.68.0", "defusedxml==0.7.1",  # what the solver writes sheets with
+    "threadpoolctl==3.8.0",  # one thread for small systems
     "pytest==9.2.0", "ruff==0.17.6", "pdfplumber==0.11.10", "svgelements==1.9.6",  # what the tests need
     "libigl==2.6.3",  # what the bench compares with
 ]

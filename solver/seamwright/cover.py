@@ -3,6 +3,7 @@
 from dataclasses import replace
 
 import numpy as np
+from threadpoolctl import threadpool_limits
 
 from .asked import check, held_edges, patches_allow, planes_of, prices_allow, shared_out, shut_edges
 from .assemble import assemble
@@ -37,7 +38,11 @@ def cover(form, wishes=None, progress=None):
 
     Raises WishError on wishes that cannot be, CoverError where no pattern is found.
     """
-    wishes = wishes or Wishes()
+    with threadpool_limits(1, "blas"):  # small systems gain nothing from more, and sums must not depend on the machine
+        return _covered(form, wishes or Wishes(), progress)
+
+
+def _covered(form, wishes, progress):
     goods = get(wishes.goods)
     check(form, wishes)
     prices = seam_prices(form, wishes)

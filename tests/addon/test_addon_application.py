@@ -53,7 +53,7 @@ def test_the_zip_holds_what_both_pythons_need_and_no_numpy(built):
     for start in itertools.product(("scipy", "shapely"), ("cp311", "cp313")):
         assert [name for name in wheels if all(part in name for part in (*start, "x86_64"))], start
     pure = {name.split("-")[0] for name in wheels if "none-any" in name}
-    assert pure == {"defusedxml", "fonttools", "fpdf2", "seamwright"} and len(wheels) == 8
+    assert pure == {"defusedxml", "fonttools", "fpdf2", "seamwright", "threadpoolctl"} and len(wheels) == 9
     assert not any("numpy" in name for name in wheels)
     assert {"LICENSE", "LICENCES.txt", "blender_manifest.toml"} <= {Path(name).name for name in inside}
 

@@ -7,6 +7,7 @@ merged while that pays. It is compared by score and time at the same thrift.
 """
 
 from dataclasses import dataclass
+from itertools import tee
 
 import numpy as np
 from seamwright.seams.fields import from_labels
@@ -22,7 +23,7 @@ from .unit import form_of
 
 DIRECT_CELLS, DIRECT_STEPS = 6, 300
 NOTHING = 1e-6  # distortion under which a form is developable and there is nothing to compare
-FAMILIES = {"partition": rivals.partitions, "tipped": rivals.tipped, "tree": rivals.trees}
+FAMILIES = ("partition", "tipped", "tree")
 
 
 @dataclass
@@ -51,8 +52,7 @@ def rows(names, counts, thrifts):
             form = form_of(name, count)
             ours = [_ours(form, thrift) for thrift in thrifts]
             longest = max(length for length, *_ in ours)
-            ladder = Ladder(form.surface, rungs=())
-            families = {name: _until(family(ladder, form.surface), longest) for name, family in FAMILIES.items()}
+            families = _families(form.surface, longest)
             for thrift, (length, distortion, score, seconds) in zip(thrifts, ours, strict=True):
                 ratios = {name: _over(distortion, family, length) for name, family in families.items()}
                 ends = [rival.ends for rival in families["tree"] if rival.length <= length]
@@ -92,6 +92,14 @@ def _direct(form, thrift):
     found = flow(level, from_labels(level, voronoi(level, DIRECT_CELLS)), thrift, steps=DIRECT_STEPS)
     found = simplify(level, found, thrift)
     return found.score, spent()[0] - begin
+
+
+def _families(surface, longest):
+    """{name: list of Rivals} up to the first that is longer than asked."""
+    ladder = Ladder(surface, rungs=())
+    once, again = tee(rivals.voronoi(ladder, surface))
+    made = rivals.partitions(ladder, once), rivals.tipped(ladder, surface, again), rivals.trees(ladder, surface)
+    return {name: _until(family, longest) for name, family in zip(FAMILIES, made, strict=True)}
 
 
 def _until(family, longest):

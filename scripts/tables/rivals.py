@@ -47,19 +47,16 @@ def tight(ladder, network, seam=None):
     return total * ladder.factor
 
 
-def partitions(ladder, surface):
-    """Yield Rivals: geodesic Voronoi partitions of a Surface into more and more cells.
-
-    Seeds as far apart as can be, then Lloyd's steps: each seed goes to the point of its cell nearest to the cell's middle.
-    """
-    for network in _partitions(ladder, surface):
+def partitions(ladder, networks):
+    """Yield Rivals: `voronoi` partitions as they are."""
+    for network in networks:
         yield Rival(tight(ladder, network), network_cost(ladder, network, 0.0).distortion, dart_ends(network))
 
 
-def tipped(ladder, surface):
-    """Yield Rivals: those partitions after every tip of the form is joined to the nearest seam by a shortest path."""
+def tipped(ladder, surface, networks):
+    """Yield Rivals: the same after every tip of the form is joined to the nearest seam by a shortest path."""
     ends = tips(surface)
-    for network in _partitions(ladder, surface):
+    for network in networks:
         length = tight(ladder, network)
         for tip in ends:
             network, more = joined(network, int(tip))
@@ -128,7 +125,11 @@ def _ways(network, sources):
     return dijkstra(graph, directed=False, indices=sources, min_only=True, return_predecessors=True)[:2]
 
 
-def _partitions(ladder, surface):
+def voronoi(ladder, surface):
+    """Yield Networks: geodesic Voronoi partitions of a Surface into more and more cells.
+
+    Seeds as far apart as can be, then Lloyd's steps: each seed goes to the point of its cell nearest to the cell's middle.
+    """
     heat, mass, points = Heat(surface), vertex_areas(surface), surface.points
     middle = mass @ points / mass.sum()
     for count in CELLS:

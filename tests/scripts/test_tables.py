@@ -40,7 +40,7 @@ def test_distances_on_the_sphere():
 
 def test_partition_of_the_sphere_in_two():
     """Two half spheres: seam 2 pi; u = ln(1 + cos t), so the integral of u^2 is 8 pi (1 - ln 2)^2."""
-    two = first(rivals.partitions, icosphere(4), 1)[0]
+    two = first(lambda ladder, surface: rivals.partitions(ladder, rivals.voronoi(ladder, surface)), icosphere(4), 1)[0]
     assert two.length == pytest.approx(2 * np.pi, rel=0.005)
     assert two.distortion == pytest.approx(8 * np.pi * (1 - np.log(2)) ** 2, rel=0.02)
     assert two.ends == 0
@@ -96,10 +96,10 @@ def test_over_the_best():
 
 
 def test_flattening_against_slim():
-    """Both come to the same least energy; the steps and times told are those of the first to be so near."""
+    """Both come to the same least energy, which is that of `flatten`."""
     points, faces = cap(1.3, 16)
     row = slim.compared("cap", Surface(points, faces))
-    assert row.points == len(points) and 0 < row.near <= row.nearer
+    assert row.points == len(points) and all(0 < steps < slim.MOST for steps in row.steps)
     assert row.near_ratio > 0 and row.nearer_ratio > 0  # SLIM came as near: never is None
     assert slim.line(row).startswith("cap") and "over 1 pieces" in slim.summary([row])[0]
     assert row.energy == pytest.approx(flatten(Surface(points, faces)).energy, rel=1e-3)
@@ -123,4 +123,4 @@ def test_tables_are_printed_and_written(tmp_path, monkeypatch, capsys):
     assert against.line(against.Row(**found["against"][0])) in printed
     assert best.line(best.Row(**found["best"][0])) in printed
     row = found["against"][0]
-    assert row["length"] > 6 and 0 < row["direct"] < 1.5 and row["taken"] > 0
+    assert row["length"] > 6 and 0 < row["direct"] < 1.5

@@ -85,10 +85,14 @@ def evaluate(level, cut, thrift, energy, weights=None, gradient=True, emphasis=N
         per_mass = per_point + p * level.density
     each = np.bincount(labels, per_point * mass)
     distortion = float(each.sum())
-    length, slope = _length(level, cut, nodes, thrift, gradient)
+    price, gain = nodes.prices(level, cut)
+    length, pull, dearer = _length(nodes, price)
+    slope = None
     if gradient:
         at_nodes = [np.append(values, 0.0)[at] for values in (u, p, per_mass)]
-        slope += nodes.by_place(nodes.gather(_pull(area, rise, share, *at_nodes)), len(slope))
+        pull = nodes.gather(_pull(area, rise, share, *at_nodes)) + thrift * pull
+        slope = nodes.by_place(pull, len(level.surface.edges))
+        slope += np.bincount(nodes.edges, thrift * dearer[nodes.cuts] * gain, len(slope))
         slope = slope[cut.edge]
     return Cost(distortion, length, distortion + thrift * length, u, each, slope)
 
@@ -103,23 +107,19 @@ def _pull(area, rise, share, u, p, per_mass):
     return area[:, None, None] * (inner[:, None, None] * rise + share * turn)
 
 
-def _length(level, cut, nodes, thrift, gradient):
-    """(priced seam length, (e,) thrift times its gradient by the cut places or None)."""
+def _length(nodes, price):
+    """(priced seam length, (N, 2) its gradient by the nodes' positions, (N,) by the price at the cuts)."""
     a, b = nodes.seams.T
-    price, gain = nodes.prices(level, cut)
     along = nodes.place[b] - nodes.place[a]
     length = np.maximum(np.linalg.norm(along, axis=1), 1e-30)
     mean = 0.5 * (price[a] + price[b])
-    total = float((mean * length).sum())
-    if not gradient:
-        return total, None
     force = (mean / length)[:, None] * along
-    both, count, edges = np.append(a, b), nodes.count, len(level.surface.edges)
-    pull = np.column_stack([np.bincount(both, np.append(-f, f), count) for f in force.T])
-    dearer = np.bincount(both, 0.5 * np.append(length, length), count).astype(float)  # of nothing the sums are whole numbers
+    both = np.append(a, b)
+    pull = np.column_stack([np.bincount(both, np.append(-f, f), nodes.count) for f in force.T])
+    dearer = np.bincount(both, 0.5 * np.append(length, length), nodes.count)
     for k in range(3):
         dearer[nodes.around[:, k]] += dearer[nodes.middles] / 3
-    return total, thrift * (nodes.by_place(pull, edges) + np.bincount(nodes.edges, dearer[nodes.cuts] * gain, edges))
+    return float((mean * length).sum()), pull, dearer
 
 
 def borders(level, cut):

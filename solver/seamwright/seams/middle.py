@@ -9,6 +9,7 @@ import numpy as np
 
 ROUND = 0.05  # cotangents within which the change to a cut itself is rounded, so that the gradient is smooth
 LEAST = 0.02  # share that every cut keeps, so that no sub-triangle vanishes
+NEXT, LAST = [1, 2, 0], [2, 0, 1]  # the cut after each, and before
 
 
 def shares(cuts, least=LEAST):
@@ -35,8 +36,8 @@ def pulled(cuts, pull):
     gain *= -(weight**2) * rise / twice  # by each corner's dot product; by twice the area it is - dot / twice of that
     ahead, back = sides  # to the next cut, to the one before
     answer = -gain[:, :, None] * (ahead + back)
-    answer += np.roll(gain[:, :, None] * back, 1, axis=1) + np.roll(gain[:, :, None] * ahead, -1, axis=1)
-    across = np.roll(cuts, -1, axis=1) - np.roll(cuts, 1, axis=1)
+    answer += (gain[:, :, None] * back)[:, LAST] + (gain[:, :, None] * ahead)[:, NEXT]
+    across = cuts[:, NEXT] - cuts[:, LAST]
     turned = np.stack([across[..., 1], -across[..., 0]], axis=2)  # of twice the area by each cut
     answer -= (gain * dot).sum(axis=1)[:, None, None] / twice[:, :, None] * turned
     return (LEAST + (1 - 3 * LEAST) * share)[:, :, None] * pull[:, None] + (1 - 3 * LEAST) * answer
@@ -44,7 +45,7 @@ def pulled(cuts, pull):
 
 def _cotangents(cuts):
     """(dot (k, 3) of the sides at each cut, twice (k, 1) the area, the sides): cotangents are dot / twice."""
-    ahead, back = np.roll(cuts, -1, axis=1) - cuts, np.roll(cuts, 1, axis=1) - cuts
+    ahead, back = cuts[:, NEXT] - cuts, cuts[:, LAST] - cuts
     dot = (ahead * back).sum(axis=2)
     a, b = ahead[:, :1], back[:, :1]
     twice = np.sqrt(np.maximum((a * a).sum(2) * (b * b).sum(2) - dot[:, :1] ** 2, 0))

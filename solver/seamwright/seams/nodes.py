@@ -33,7 +33,8 @@ class Nodes:
     def by_place(self, pull, edges):
         """(edges,) gradient by the cut places, from that by the nodes' positions (N, 2)."""
         at_cuts = pull.astype(float)  # sums of nothing are whole numbers
-        at_cuts[self.around] += pulled(self.place[self.around], pull[self.middles])
+        if len(self.middles):
+            at_cuts[self.around] += pulled(self.place[self.around], pull[self.middles])
         start, end = self.place[self.ends[:, 0]], self.place[self.ends[:, 1]]
         return np.bincount(self.edges, self.sign * (at_cuts[self.cuts] * (end - start)).sum(axis=1), edges)
 

@@ -100,7 +100,7 @@ def test_flattening_against_slim():
     points, faces = cap(1.3, 16)
     row = slim.compared("cap", Surface(points, faces))
     assert row.points == len(points) and all(0 < steps < slim.MOST for steps in row.steps)
-    assert row.near_ratio > 0 and row.nearer_ratio > 0  # SLIM came as near: never is None
+    assert row.near_ratio > 0 and row.nearer_ratio > 0 and row.reached
     assert slim.line(row).startswith("cap") and "over 1 pieces" in slim.summary([row])[0]
     assert row.energy == pytest.approx(flatten(Surface(points, faces)).energy, rel=1e-3)
 

@@ -218,3 +218,18 @@ def test_a_symmetric_form_wants_symmetric_seams():
         assert measure.refused == (error > 0)
         assert measured(pattern, [plane])[-1] == measure
         assert measure.value == pytest.approx(error, abs=0.003 if not error else 0.1)
+
+
+def test_a_plane_concerns_the_parts_it_halves():
+    """Two balls, each cut through its middle: the mirror plane of one has no say in the other, whose seam is lopsided."""
+    ball, faces = icosphere(3)
+    points = np.concatenate([ball, ball + [5, 0, 0]])
+    form = Form(points, np.concatenate([faces, faces + len(ball)]))
+    first = np.arange(len(points)) < len(ball)
+    side = np.where(first, points[:, 2], (points - [5, 0, 0]) @ [0.6, 0.3, 0.7]) + 1e-4
+    level = Level(form.surface, np.zeros(len(points)))
+    pattern = pattern_of(form, cut_through(level, cut_by_fields(form.surface, np.column_stack([side, -side])), 1.0))
+    seen = Seen(pattern)
+    for x, lopsided in ((0.0, False), (5.0, True)):
+        plane = Plane(np.array([x, 0.0, 0.0]), np.array([1.0, 0.0, 0.0]), 0.0)
+        assert mirror_error(seen, plane).refused == lopsided

@@ -20,6 +20,7 @@ STRIP = 0.035  # width under which a piece counts as narrow, as a share of the s
 NARROWEST, ALLOWANCES = 0.04, 3  # metres, and allowances: narrower strips are not sewn (common practice)
 SMALL_FORM = 0.1  # share of the size that a strip's width never counts as more than: on small forms pieces are small
 DETAILED = 8  # more tips than this make a detailed form, whose seams may wind more
+HALVED = 0.01  # share of the size within which a plane that halves a part passes its middle
 SMOOTH_JAG, DETAILED_JAG, EDGES_JAG = 1.012, 1.035, 1.10
 
 
@@ -159,11 +160,13 @@ def narrow_share(seen, limit=0.1):
 
 
 def mirror_error(seen, plane, limit=0.005):
-    """The largest distance of a seam from the mirror image of the seams."""
-    if not seen.seams:
+    """The largest distance of a seam from the mirror image of the seams, those of the parts that the plane halves."""
+    halved = np.abs((seen.part_middle - plane.point) @ plane.normal) < HALVED * seen.size
+    chosen = np.flatnonzero(halved[seen.seam_part])
+    if not len(chosen):
         return _most("mirror error", 0.0, limit, "")
-    size = float(np.sqrt(seen.part_area.sum()))
-    samples = np.concatenate([seen.resampled(k, 0.001) for k in range(len(seen.seams))])
+    size = float(np.sqrt(seen.part_area[halved].sum()))
+    samples = np.concatenate([seen.resampled(k, 0.001) for k in chosen])
     gap = cKDTree(samples).query(plane.mirrored(samples))[0]
     worst = int(gap.argmax())
     return _most("mirror error", gap[worst] / size, limit, f"The seam at {_place(samples[worst])} is {_mm(gap[worst])} off "

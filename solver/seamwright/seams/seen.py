@@ -28,7 +28,8 @@ class Corner:
 class Seen:
     """Tables of a Pattern with at least one piece, made as they are asked for.
 
-    seams: the sewn ones, hems: the open ones. size (c,) square root of the area of each connected part of the form.
+    seams: the sewn ones, hems: the open ones. size (c,) square root of the area of each connected part of the form,
+    part_middle (c, 3) its centre of area.
     """
 
     def __init__(self, pattern):
@@ -40,6 +41,9 @@ class Seen:
         count, self._component = self.form.surface.triangle_components
         self.part_area = np.bincount(self._component, areas(self.form.surface), minlength=count)
         self.size = np.sqrt(self.part_area)
+        middle = self.form.points[self.form.triangles].mean(axis=1) * areas(self.form.surface)[:, None]
+        self.part_middle = np.column_stack([np.bincount(self._component, axis, count) for axis in middle.T])
+        self.part_middle /= self.part_area[:, None]
         self.piece_area = np.array([piece.areas.sum() for piece in self.pieces])
         self.piece_part = np.array([self._component[piece.source[0]] for piece in self.pieces])
         self.lengths = [_length(seam.path) for seam in self.seams]

@@ -111,6 +111,15 @@ def test_a_cut_at_its_stop_has_no_slope():
     assert np.abs(gradient).max() == 0
 
 
+@pytest.mark.parametrize("gradient", [True, False])
+def test_an_open_form_in_one_piece_has_no_seams(gradient):
+    level = level_of(cap(1.4, 7))
+    cut = cut_by_fields(level.surface, np.ones((len(level.mass), 1)))
+    cost = evaluate(level, cut, 0.3, "square", gradient=gradient)
+    assert cost.length == 0 and cost.total == cost.distortion > 0
+    assert not gradient or cost.slope.shape == (0,)
+
+
 def test_only_thrift_scales_the_length():
     level = level_of(dumbbell(16))
     cut = cells(level, 4)

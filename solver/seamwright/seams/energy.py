@@ -116,7 +116,7 @@ def _length(nodes, price):
     force = (mean / length)[:, None] * along
     both = np.append(a, b)
     pull = np.column_stack([np.bincount(both, np.append(-f, f), nodes.count) for f in force.T])
-    dearer = np.bincount(both, 0.5 * np.append(length, length), nodes.count)
+    dearer = np.bincount(both, 0.5 * np.append(length, length), nodes.count).astype(float)  # of nothing they are whole
     for k in range(3):
         dearer[nodes.around[:, k]] += dearer[nodes.middles] / 3
     return float((mean * length).sum()), pull, dearer

@@ -4,7 +4,7 @@ from dataclasses import replace
 
 import numpy as np
 import pytest
-from forms import ellipsoid, icosphere, split_quads
+from forms import ellipsoid, frustum, icosphere, split_quads
 from seamwright.fit.goods import get
 from seamwright.flat import flatten
 from seamwright.form.form import Form
@@ -233,3 +233,15 @@ def test_a_plane_concerns_the_parts_it_halves():
     for x, lopsided in ((0.0, False), (5.0, True)):
         plane = Plane(np.array([x, 0.0, 0.0]), np.array([1.0, 0.0, 0.0]), 0.0)
         assert mirror_error(seen, plane).refused == lopsided
+
+
+@pytest.mark.parametrize("turn", [0, 5, 7])
+def test_one_seam_of_a_lampshade_may_be_anywhere(turn):
+    points, faces = frustum(0.5, 0.3, 0.6, 24)
+    form = Form(points, faces)
+    rows = len(points) // 24
+    down = turn * rows + np.arange(rows)
+    seam = np.zeros(len(form.surface.edges), dtype=bool)
+    seam[form.surface.edge_index(np.column_stack([down[:-1], down[1:]]))] = True
+    pattern = pattern_of(form, Network(form.surface, seam, np.arange(len(form.triangles))))
+    assert not mirror_error(Seen(pattern), Plane(np.array([0, 0, 0.3]), np.array([0.0, 1, 0]), 0.0)).refused

@@ -10,7 +10,9 @@ import numpy as np
 from scipy.spatial import cKDTree
 from shapely.geometry import Polygon
 
-from ..form.mirror import Plane
+from ..form.measure import areas
+from ..form.mirror import NEAR, Plane
+from ..form.mirror import measured as plane_through
 from .bends import sharpest_bends
 from .bulges import metres_on_bulges
 from .seen import Seen
@@ -160,17 +162,42 @@ def narrow_share(seen, limit=0.1):
 
 
 def mirror_error(seen, plane, limit=0.005):
-    """The largest distance of a seam from the mirror image of the seams, those of the parts that the plane halves."""
+    """The largest distance of a seam from the mirror image of the seams, those of the parts that the plane halves.
+
+    A form of revolution has more planes than the one given: the one through an axis and the middle of the seams will do.
+    """
     halved = np.abs((seen.part_middle - plane.point) @ plane.normal) < HALVED * seen.size
     chosen = np.flatnonzero(halved[seen.seam_part])
     if not len(chosen):
         return _most("mirror error", 0.0, limit, "")
     size = float(np.sqrt(seen.part_area[halved].sum()))
     samples = np.concatenate([seen.resampled(k, 0.001) for k in chosen])
-    gap = cKDTree(samples).query(plane.mirrored(samples))[0]
+    gap = _mirror_gaps(samples, plane)
+    if gap.max() > limit * size:
+        others = [_mirror_gaps(samples, other) for other in _turned(seen, samples)]
+        gap = min([gap, *others], key=np.max)
     worst = int(gap.argmax())
     return _most("mirror error", gap[worst] / size, limit, f"The seam at {_place(samples[worst])} is {_mm(gap[worst])} off "
                  "its mirror image. Make both sides alike.")
+
+
+def _mirror_gaps(samples, plane):
+    return cKDTree(samples).query(plane.mirrored(samples))[0]
+
+
+def _turned(seen, samples):
+    """Yield Planes of symmetry of a form of one part, through an axis of inertia and the middle of its seams."""
+    if len(seen.size) != 1:
+        return
+    middle, surface = seen.part_middle[0], seen.form.surface
+    off = surface.points[surface.triangles].mean(axis=1) - middle
+    axes = np.linalg.eigh(off.T @ (off * areas(surface)[:, None]))[1].T
+    for axis in axes:
+        normal = np.cross(axis, samples.mean(axis=0) - middle)
+        if np.linalg.norm(normal) > HALVED * seen.size[0]:
+            plane = plane_through(surface, middle, normal)
+            if plane.error <= NEAR * seen.size[0]:
+                yield plane
 
 
 PREDICATES = (smallest_piece, broken_pieces, loose_seams, capped_tips, farthest_tip, jag, sharp_bend, on_bulges,

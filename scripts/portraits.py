@@ -15,6 +15,7 @@ from seamwright.seams.study import network_cost
 from seamwright.sheets.colours import piece_colour, stretch_colour
 
 SIDE = 380  # pixels of a picture
+LEAST = 0.01  # u that is shown in full colour at least: what is less is rounding on a form that lies flat by itself
 FRONT = np.array([0.45, -1.0, 0.55])
 
 
@@ -24,7 +25,7 @@ def page(folder, shown):
     parts = []
     for number, (words, pattern) in enumerate(shown):
         scales = log_scales(pattern)
-        most = max(float(np.abs(u).max()) for u in scales) or 1.0
+        most = max(LEAST, *(float(np.abs(u).max()) for u in scales))
         hues = [rgb(stretch_colour(u[piece.triangles].mean(axis=1) / most))
                 for u, piece in zip(scales, pattern.pieces, strict=True)]
         names = []

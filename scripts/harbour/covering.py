@@ -7,7 +7,7 @@ import time
 from dataclasses import dataclass
 
 import numpy as np
-from seamwright.sheets.report import farthest, quantiles
+from seamwright.sheets.figures import farthest, quantiles
 
 from . import covered
 

@@ -6,7 +6,7 @@ from dataclasses import dataclass
 import numpy as np
 import seamwright as sw
 from seamwright.seams.refuse import measured
-from seamwright.sheets.report import quantiles
+from seamwright.sheets.figures import quantiles
 
 from .unit import form_of, one_factorisation, refusals
 

@@ -98,7 +98,7 @@ def _cover_part(form, part, wishes, goods, pieces, tell, notes):
         result = _sought(ground, planes, None, wishes, goods, pieces, tell, notes)
         result.network = replace(result.network, source=source[result.network.source])
     _check_shut(part, result.network)
-    return _placed(finished(closed(part.held, result), goods, wishes.comfort, wishes.grain), part), planes
+    return _placed(finished(closed(part.held, result), planes, goods, wishes.comfort, wishes.grain), part), planes
 
 
 def _sought(ground, planes, begun, wishes, goods, pieces, tell, notes):

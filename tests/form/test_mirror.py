@@ -3,6 +3,7 @@
 import numpy as np
 import pytest
 from forms import cube, cylinder, disk, dumbbell, ellipsoid, frustum, icosphere, limbs, noisy, split_quads, starfish, torus
+from scipy.spatial import cKDTree
 from seamwright.form.form import Form
 from seamwright.form.measure import total_area, triangle_normals, vertex_normals
 from seamwright.form.mirror import NEAR, Plane, mirrored_points, planes, reflection
@@ -152,6 +153,14 @@ def test_a_mirrored_mesh_is_reflected_onto_itself_exactly():
     matrix = reflection(surface, Plane(np.zeros(3), np.array([1.0, 0, 0]), 0.0))
     assert np.allclose(matrix @ surface.points, surface.points * (-1, 1, 1), atol=1e-12)
     assert abs(matrix @ matrix - np.eye(len(surface.points))).max() < 1e-12
+
+
+def test_the_plane_of_a_mirrored_mesh_is_right_to_rounding():
+    points, faces = icosphere(3)
+    points = points * (0.35 + points[:, :1] ** 2 + 0.25 * points[:, 2:])
+    points = points @ TURN + [0.3, -2, 1]
+    plane, = planes(Surface(points, faces))
+    assert cKDTree(points).query(plane.mirrored(points))[0].max() < 1e-12
 
 
 def test_reflecting_twice_gives_a_smooth_field_back_to_second_order():

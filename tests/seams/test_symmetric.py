@@ -4,6 +4,8 @@ import numpy as np
 import pytest
 from forms import dumbbell, ellipsoid, icosphere, torus
 from parted import level_of
+from scipy.spatial import cKDTree
+from seamwright.form.measure import total_area
 from seamwright.form.mirror import Plane
 from seamwright.seams.cut import cut_by_fields
 from seamwright.seams.descend import descend
@@ -142,6 +144,25 @@ def test_seams_of_projected_fields_are_mirrored():
     nearest = seam[:, 0] + np.clip(share, 0, 1)[:, :, None] * along
     off = np.linalg.norm(mirrored[:, None] - nearest, axis=2).min(axis=1)
     assert off.max() < 0.005 * np.sqrt(level.areas.sum())
+
+
+@pytest.mark.parametrize("regions", ["halves", "halves and a cap"])
+def test_on_a_mirrored_mesh_the_cut_is_mirrored_to_rounding(regions):
+    # a seam on the plane has no room for a cut a little beside it, nor a face there for a diagonal of its own
+    level = level_of(ellipsoid(1.0, 0.7, 0.5, 3))
+    x, y, z = level.surface.points.T
+    wave = 0.1 * np.cos(3 * y)
+    fields = {"halves": [x, -x], "halves and a cap": [x, -x, z - 0.25 + wave + np.abs(x)]}[regions]
+    level.symmetry = Symmetry(level.surface, [X])
+    network = cut_through(level, cut_by_fields(level.surface, np.column_stack(fields)), 1.0)
+    surface = network.surface
+    gap, image = cKDTree(surface.points).query(X.mirrored(surface.points))
+    assert gap.max() < 1e-12 and len(np.unique(surface.triangles)) == len(surface.points)
+    edges = np.sort(surface.edges[network.seam], axis=1)
+    assert {tuple(edge) for edge in edges} == {tuple(edge) for edge in np.sort(image[edges], axis=1)}
+    assert network.pieces[0] == len(fields) and total_area(surface) == pytest.approx(total_area(level.surface), rel=1e-12)
+    if regions == "halves":
+        assert np.abs(surface.points[edges][:, :, 0]).max() < 1e-12
 
 
 def test_merges_are_made_on_both_sides():

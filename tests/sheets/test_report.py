@@ -3,8 +3,9 @@ import json
 import numpy as np
 import pytest
 from seamwright.sheets.colours import VIK, stretch_colour
+from seamwright.sheets.figures import quantiles
 from seamwright.sheets.html import colour_reach, shown_stretch
-from seamwright.sheets.report import quantiles, summary
+from seamwright.sheets.report import summary
 from sheets import samples
 
 
@@ -37,9 +38,48 @@ def test_the_stretch_of_a_cap_laid_at_true_distance():
     # 5 % of a cap's area lies beyond the polar angle whose cap holds 95 % of it
     edge = np.arccos(1 - 0.95 * (1 - np.cos(np.pi / 3)))
     assert found["stretch"]["p5"] == pytest.approx(np.sin(edge) / edge - 1, abs=0.005)
-    assert found["stretch"]["p95"] == 0
+    assert found["stretch"]["p95"] == pytest.approx(0, abs=1e-3)
+    assert sum(found["shares"].values()) == pytest.approx(1) and found["shares"]["strained"] == found["beyond"]
+    # felt takes 2 % of ease-in in comfort, 6 at most: sin a / a = 0.98, 0.94 at polar angles of 19.9 and 34.6 degrees
+    caps = [(1 - np.cos(np.radians(angle))) / (1 - np.cos(np.pi / 3)) for angle in (19.9, 34.6)]
+    assert [found["shares"][key] for key in ("comfortable", "strained")] == pytest.approx([caps[0], 1 - caps[1]], abs=0.02)
+    # near the rim; texture stretch of the azimuthal equidistant map in closed form (Sander et al. 2001): 1.00417
+    assert np.hypot(*found["worst_place_mm"][:2]) == pytest.approx(200 * np.sin(np.pi / 3), rel=0.02)
+    assert found["sander"]["l2"] == pytest.approx(1.00417, abs=3e-4)
+    # the largest stretch is 0, outward, at equal areas: root of flat area a^2 over area 2 (1 - cos a)
+    assert found["sander"]["linf"] == pytest.approx(np.pi / 3 / np.sqrt(2 * (1 - np.cos(np.pi / 3))), abs=2e-3)
     assert found["fit"] == "strained" and not summary(pattern)["fits"]
     assert "The dome is beyond what felt takes." in summary(pattern)["notes"]
+
+
+def test_what_is_told_is_measured_from_what_is_saved(tmp_path):
+    """Figures of all pieces against a plain reading of pattern.json; the pattern's own stretch has no say."""
+    pattern = samples.pouch()
+    for piece in pattern.pieces:
+        piece.stretch[:], piece.utilisation[:] = 7.0, 7.0
+        piece.flat[:, 0] *= 0.97
+    pattern.save(tmp_path, "json")
+    saved = json.loads((tmp_path / "pattern.json").read_text(encoding="utf-8"))
+    told, felt = saved["summary"]["all"], pattern.goods
+    stretch, weight, places = [], [], []
+    for piece in saved["pieces"]:
+        for corners in piece["triangles"]:
+            p, q, r = (np.array(piece["points"][k]) for k in corners)
+            a, b, c = (np.array(piece["flat"][k]) for k in corners)
+            axes = np.linalg.qr(np.column_stack([q - p, r - p]))[0]
+            jacobian = axes.T @ np.column_stack([q - p, r - p]) @ np.linalg.inv(np.column_stack([b - a, c - a]))
+            stretch.append(np.linalg.svd(jacobian, compute_uv=False))
+            weight.append(0.5 * np.linalg.norm(np.cross(q - p, r - p)))
+            places.append((p + q + r) / 3)
+    stretch, weight = np.array(stretch), np.array(weight) / np.sum(weight)
+    assert stretch.max() == pytest.approx(1 / 0.97, rel=1e-4)
+    assert told["stretch"]["worst"] == pytest.approx(stretch.max() - 1, abs=1e-6)
+    used = np.maximum(np.log(stretch.max(axis=1)) / np.log1p(felt.stretch_warp[1]), -np.log(stretch.min(axis=1)) / 0.0619)
+    assert told["utilisation"]["worst"] == pytest.approx(used.max(), rel=1e-3)
+    easy = (stretch <= 1 + felt.stretch_warp[0]).all(axis=1) & (stretch >= 1 - felt.ease_in[0]).all(axis=1)
+    assert told["shares"]["comfortable"] == pytest.approx(weight[easy].sum(), abs=1e-6)
+    assert told["sander"]["l2"] == pytest.approx(np.sqrt(0.97 * weight @ (stretch**2).sum(axis=1) / 2), rel=1e-6)
+    assert np.linalg.norm(np.array(places) - told["worst_place_mm"], axis=1).min() < 1e-3
 
 
 def test_quantiles_against_repeating_each_value():

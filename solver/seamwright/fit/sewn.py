@@ -19,8 +19,7 @@ def sewn(network, judged, goods, comfort, grain=None):
     As they were where that would strain a piece that was not, put more than SLACK of the form further beyond the hard
     limits, or lay a piece over itself. Comfort gives way to seams that go together.
     """
-    seams = [(joint.left.piece, joint.left.points, joint.right.piece, joint.right.points)
-             for joint in joints(network) if joint.right is not None]
+    seams = _seams(network)
     if not seams:
         return judged
     surfaces = [network.piece_surface(piece)[0] for piece in range(network.pieces[0])]
@@ -61,3 +60,17 @@ def closed(held, met):
         crossings = overlaps(flat, part.boundary_loops[0]) if old.crossings else []
         judged.append(replace(old, each=old.each[rank[came[triangles]]], flat=flat, crossings=crossings))
     return Tailored(network, judged)
+
+
+def uneven(met):
+    """Largest difference between the two sides of a seam of a Tailored, the log of their lengths' ratio."""
+    def length(piece, along):
+        return np.linalg.norm(np.diff(met.judged[piece].flat[along], axis=0), axis=1).sum()
+
+    return max((abs(np.log(length(a, at) / length(b, bt))) for a, at, b, bt in _seams(met.network)), default=0.0)
+
+
+def _seams(network):
+    """List of (piece, points (q,), piece, points (q,)), both sides of every seam."""
+    return [(joint.left.piece, joint.left.points, joint.right.piece, joint.right.points)
+            for joint in joints(network) if joint.right is not None]

@@ -11,9 +11,10 @@ from ..seams.opened import edges_in, halves_border, opened
 from .darts import darted
 from .foresee import reach
 from .lessons import lobes, piece_of_region, spread, worst
+from .pairs import paired
 from .resigned import resigned
 from .search import MOST_PIECES, Search
-from .sewn import sewn
+from .sewn import sewn, uneven
 from .spare import dropped, without_nearest
 from .tailored import ENOUGH, Judges, Tailored
 
@@ -151,15 +152,21 @@ class Tailor:
         return met
 
 
-def finished(met, goods, comfort, grain=None):
-    """The Tailored with the two sides of its seams matched, where the goods allow it.
+def finished(met, planes, goods, comfort, grain=None):
+    """The Tailored with twins about mirror Planes laid alike, and both sides of seams matched where the goods allow it.
 
     Before, what cannot fit is laid so that as little of it as can be is beyond the hard limits.
     """
     wishes = goods, comfort, grain
-    judged = [one if one.utilisation <= ENOUGH else resigned(met.network.piece_surface(piece)[0], one, *wishes)
-              for piece, one in enumerate(met.judged)]
-    return Tailored(met.network, sewn(met.network, judged, *wishes))
+    laid = Tailored(met.network, [
+        one if one.utilisation <= ENOUGH else resigned(met.network.piece_surface(piece)[0], one, *wishes)
+        for piece, one in enumerate(met.judged)])
+    alike = paired(laid, planes, *wishes)
+    found = Tailored(met.network, sewn(met.network, alike.judged, *wishes))
+    if not planes or uneven(found) <= goods.mismatch[0]:
+        return found
+    other = Tailored(met.network, sewn(met.network, laid.judged, *wishes))
+    return min(found, other, key=uneven)  # seams that go together come first
 
 
 def _rank(found):

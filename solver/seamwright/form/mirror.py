@@ -26,6 +26,8 @@ FAN, GLOBE = 60, 240
 """Directions tried around an axis, and over the half globe when all moments are alike."""
 BENT = 0.03
 """Mirror error, as such a share, up to which bent faces may be the reason."""
+TWIN = 0.2
+"""Gap, over the mean edge, within which a point counts as the mirror image of another."""
 TRIALS = 8
 """Candidates refined for a plane."""
 APART = 0.1
@@ -80,8 +82,28 @@ def planes(surface, most=1):
                 if plane.error <= tolerance and _square(plane.normal, found)]
         if not good:
             break
-        found.append(min(good, key=lambda plane: max(plane.error / tolerance, EVEN) + _dislike(plane.normal)))
+        best = min(good, key=lambda plane: max(plane.error / tolerance, EVEN) + _dislike(plane.normal))
+        found.append(_between_points(surface, best))
     return found
+
+
+def _between_points(surface, plane):
+    """The Plane halfway between the points and their mirror images, to rounding, where the mesh is its own mirror image.
+
+    Otherwise the plane as it was, good to a small share of an edge.
+    """
+    points, step = surface.points, surface.edge_lengths.mean()
+    better = plane
+    for _ in range(3):
+        gap, at = cKDTree(points).query(better.mirrored(points))
+        if np.quantile(gap, SHARE) > TWIN * step:
+            return plane
+        near = gap <= TWIN * step
+        apart, middle = (points - points[at])[near], 0.5 * (points + points[at])[near]
+        normal = np.linalg.eigh(apart.T @ apart)[1][:, -1]
+        normal *= np.sign(normal @ plane.normal)
+        better = Plane(plane.point + ((middle - plane.point) @ normal).mean() * normal, normal, plane.error)
+    return better
 
 
 def measured(surface, point, normal):

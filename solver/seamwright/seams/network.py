@@ -12,8 +12,11 @@ from scipy.sparse.csgraph import connected_components
 
 from ..form.measure import total_area
 from ..form.surface import Surface, components_through
+from .cut import recut
 from .middle import middles
 
+OTHER_DIAGONAL = np.array([[0, 3, 4], [3, 1, 4], [1, 2, 4]])
+"""The sub-triangles of a face with two regions, its four-sided part cut along the diagonal that `cut.TWO` leaves."""
 NEAREST = 0.1  # share of an edge that a cut keeps from its ends: less makes needles, more makes the seam zigzag
 
 
@@ -133,29 +136,127 @@ def trace_chains(surface, marked, nodes=None):
 def cut_through(level, cut, metric):
     """(Network with the cut's seams as edges, (m,) region of each triangle): the route through faces.
 
-    metric: metres over lengths on the level. Cuts keep NEAREST of the edge from its ends.
+    metric: metres over lengths on the level. Cuts keep NEAREST of the edge from its ends, but for seams on a plane of
+    symmetry, which run through the points that lie on it.
     """
-    surface = level.surface
+    surface, cut = level.surface, _one_sided(level, cut)
+    mirrors = [] if level.symmetry is None else level.symmetry.mirrors
     place = np.clip(cut.place, NEAREST, 1 - NEAREST)
     a, b = surface.edges[cut.edge].T
-    points = [surface.points, surface.points[a] + place[:, None] * (surface.points[b] - surface.points[a])]
+    through = _points_on_planes(level, cut)
+    cuts = np.flatnonzero(through < 0)
     number = np.full(len(surface.edges), -1)
-    number[cut.edge] = len(surface.points) + np.arange(len(cut.edge))
-    middle = len(surface.points) + len(cut.edge) + np.arange(len(cut.three.face))
-    points.append(middles(points[1][number[cut.three.edges] - len(surface.points)], NEAREST))
+    number[cut.edge] = through
+    number[cut.edge[cuts]] = len(surface.points) + np.arange(len(cuts))
+    points = np.concatenate([
+        surface.points, (surface.points[a] + place[:, None] * (surface.points[b] - surface.points[a]))[cuts]])
+    middle = _middles(surface, cut, number, len(points))
+    points = np.concatenate([points, middles(points[number[cut.three.edges]], NEAREST)])
     keep = np.ones(len(surface.triangles), dtype=bool)
-    triangles, source, segments = [], [], []
+    triangles, source, owner = [], [], []
     for kind in (cut.two, cut.three):
         keep[kind.face] = False
         whole = surface.triangles[kind.face[:, None], kind.corners]
         nodes = [whole, number[kind.edges]] + ([middle[:, None]] if kind is cut.three else [])
         nodes = np.concatenate(nodes, axis=1)
-        triangles += [nodes[:, row] for row in kind.table]
+        parts = nodes[:, kind.table]
+        if mirrors and kind is cut.two:
+            other = _by_other_diagonal(surface, kind, points[nodes], mirrors)
+            parts[other] = nodes[other][:, OTHER_DIAGONAL]
+        triangles += list(parts.transpose(1, 0, 2))
         source += [kind.face] * len(kind.table)
-        segments += [nodes[:, pair] for pair in kind.seams]
+        owner += list(whole[:, kind.table.min(axis=1)].T)
     triangles = np.concatenate([surface.triangles[keep], *triangles])
     source = np.concatenate([np.flatnonzero(keep), *source])
-    fine = Surface(np.concatenate(points) * metric, triangles)
-    seam = np.zeros(len(fine.edges), dtype=bool)
-    seam[fine.edge_index(np.concatenate(segments))] = True
-    return Network(fine, seam, source)
+    owner = np.concatenate([surface.triangles[keep, 0], *owner])
+    region = cut.labels[owner]
+    for mirror in mirrors:  # what hangs on a point of the plane is its own side's
+        left = (points[triangles].mean(axis=1) - mirror.plane.point) @ mirror.plane.normal < 0
+        partner = mirror.partners(cut.labels, int(cut.labels.max()) + 1)
+        region = np.where(mirror.on[owner] & left, partner[region], region)
+    whole = (triangles != np.roll(triangles, 1, axis=1)).all(axis=1)
+    triangles, source, region = triangles[whole], source[whole], region[whole]
+    used, triangles = np.unique(triangles, return_inverse=True)
+    fine = Surface(points[used] * metric, triangles.reshape(-1, 3))
+    sides = fine.edge_triangles
+    return Network(fine, ~fine.open_edges & (region[sides[:, 0]] != region[sides[:, 1]]), source)
+
+
+def _middles(surface, cut, number, first):
+    """(k,) number of the point where the three regions of a face meet: `first` and on, or that of a cut already there.
+
+    Where one of the seams lies on a plane, the other two are one seam, and meet it where that reaches the plane.
+    """
+    middle, edges = first + np.arange(len(cut.three.face)), cut.three.edges
+    for k in range(3):
+        on = number[edges[:, k]] < len(surface.points)
+        for other in (edges[:, (k + 1) % 3], edges[:, (k + 2) % 3]):
+            meets = on & (surface.edges[other] == number[edges[:, k]][:, None]).any(axis=1)
+            middle = np.where(meets, number[other], middle)
+    return middle
+
+
+def _by_other_diagonal(surface, kind, places, mirrors):
+    """(k,) bool: faces with two regions to be cut as OTHER_DIAGONAL says, the same as in their mirror images.
+
+    Along the shorter diagonal of the four-sided part, the higher one where they are equal; from the cut on a plane or
+    beside it where there is one, as there the mirror image may have a third region and no choice.
+    """
+    b, c, p, q = places[:, 1:].transpose(1, 0, 2)
+    one, two = np.linalg.norm(p - c, axis=1), np.linalg.norm(b - q, axis=1)
+    across = np.ones(3) - sum(mirror.plane.normal.sum() * mirror.plane.normal for mirror in mirrors)
+    other = np.where(np.abs(one - two) < 1e-9 * one, (q - p) @ across > 0, two < one)
+    for mirror in mirrors:
+        on = mirror.on[surface.edges[kind.edges]]
+        for first, second in (on.any(axis=2).T, on.all(axis=2).T):
+            other = np.where(first ^ second, second, other)
+    return other
+
+
+def _one_sided(level, cut):
+    """The Cut in which points on a plane of symmetry, where a region and its mirror image are equal, have the right one."""
+    labels = cut.labels
+    for mirror in level.symmetry.mirrors if level.symmetry is not None else ():
+        count = int(labels.max()) + 1
+        lean = np.bincount(labels, np.sign(mirror.height) * ~mirror.on, minlength=count)
+        partner = mirror.partners(labels, count)
+        right = np.where(lean[partner] > lean, partner, np.arange(count))
+        labels = np.where(mirror.on, right[labels], labels)
+    cut = recut(level.surface, cut, labels)
+    for mirror in level.symmetry.mirrors if level.symmetry is not None else ():
+        cut.place = _as_on_the_right(level.surface, cut, mirror)
+    return cut
+
+
+def _as_on_the_right(surface, cut, mirror):
+    """(c,) places of the cuts; of edges from a point of the plane to its left, as far from it as on their mirror images.
+
+    There the point counts for its right region, as if that reached over the plane.
+    """
+    ends, place = surface.edges[cut.edge], cut.place.copy()
+    at = np.full(len(surface.edges), -1)
+    at[cut.edge] = np.arange(len(cut.edge))
+    for k in (0, 1):
+        point, far = ends[:, k], ends[:, 1 - k]
+        image = mirror.image[far]
+        same = np.linalg.norm(mirror.plane.mirrored(surface.points[far]) - surface.points[image], axis=1)
+        left = mirror.on[point] & (mirror.height[far] < 0) & (same <= 1e-9 * np.ptp(mirror.height))
+        other = np.where(left, surface.edge_index(np.column_stack([point, image])), -1)
+        other = np.where(other >= 0, at[other], -1)
+        share = np.where(surface.edges[cut.edge[other], 0] == point, cut.place[other], 1 - cut.place[other])
+        place = np.where(other >= 0, share if k == 0 else 1 - share, place)
+    return place
+
+
+def _points_on_planes(level, cut):
+    """(c,) the end of each cut edge that the cut goes through, -1 where it lies between the ends.
+
+    A seam between a region and its mirror image lies on the plane: where an edge has one end on it, there and nowhere else.
+    """
+    ends, found = level.surface.edges[cut.edge], np.full(len(cut.edge), -1)
+    labels = cut.labels[ends]
+    for mirror in level.symmetry.mirrors if level.symmetry is not None else ():
+        partner = mirror.partners(cut.labels, int(cut.labels.max()) + 1)
+        on = mirror.on[ends] & (partner[labels[:, 0]] == labels[:, 1])[:, None]
+        found = np.where(on[:, 0] & ~on[:, 1], ends[:, 0], np.where(on[:, 1] & ~on[:, 0], ends[:, 1], found))
+    return found

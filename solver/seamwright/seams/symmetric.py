@@ -19,8 +19,8 @@ class Mirror:
     """One mirror on one level: surface a Surface, plane a Plane on the same scale.
 
     matrix (n, n) csr reflects fields; height (n,) signed distance from the plane; right (n,) bool: points on the side of
-    the plane's normal, or on it; image (n,): a point near each point's mirror image; twin (n,): the same among the points
-    on the right, -1 where none is near.
+    the plane's normal, or on it; on (n,) bool: those on it with the surface on both sides; image (n,): a point near
+    each point's mirror image; twin (n,): the same among the points on the right, -1 where none is near.
     """
 
     def __init__(self, surface, plane):
@@ -30,7 +30,13 @@ class Mirror:
         self.back = self.matrix.T.tocsr()
         self.height, inward = ((points - plane.point) @ plane.normal for points in (surface.points, drawn_in(surface)))
         tiny = 1e-9 * np.ptp(self.height)
-        self.right = np.where(np.abs(self.height) <= tiny, inward, self.height) > -tiny  # a slit in the plane has two sides
+        flat = np.abs(self.height) <= tiny
+        self.right = np.where(flat, inward, self.height) > -tiny  # a slit in the plane has two sides
+        low, high = self.height.copy(), self.height.copy()
+        for one, other in (surface.edges.T, surface.edges.T[::-1]):
+            np.minimum.at(low, one, self.height[other])
+            np.maximum.at(high, one, self.height[other])
+        self.on = flat & (low < -tiny) & (high > tiny)
         corners, share = self.matrix.indices.reshape(n, 3), self.matrix.data.reshape(n, 3)
         rows = np.arange(n)
         self.image = corners[rows, share.argmax(axis=1)]

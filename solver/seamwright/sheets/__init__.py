@@ -35,11 +35,12 @@ def save(pattern, folder, kinds=tuple(FILES), paper="roll"):
         raise WishError(f"{folder / blocked[0]} is a folder, where a document is to be written. Choose another folder.")
     drafts = draft(pattern)
     sheets = lay(pattern, drafts)
-    summary = summary_of(pattern, drafts, sheets)
+    saved = data.pieces(pattern, drafts)
+    summary = summary_of(pattern, drafts, sheets, saved)
     write = {
         "pdf": lambda: pdf.write(pattern, drafts, sheets, summary, paper),
         "svg": lambda: svg.write(pattern, sheets),
-        "json": lambda: data.write(pattern, drafts, summary),
+        "json": lambda: data.write(pattern, saved, summary),
         "html": lambda: html.write(pattern, sheets, summary),
     }
     return _put(folder, {FILES[kind]: write[kind]() for kind in kinds})

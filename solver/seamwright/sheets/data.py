@@ -29,12 +29,17 @@ import numpy as np
 FORMAT = "seamwright pattern 1"
 
 
-def write(pattern, drafts, summary):
-    """Bytes of pattern.json."""
+def pieces(pattern, drafts):
+    """The pieces of pattern.json, as they are read from it."""
+    return json.loads(json.dumps([_piece(piece, d) for piece, d in zip(pattern.pieces, drafts, strict=True)]))
+
+
+def write(pattern, saved, summary):
+    """Bytes of pattern.json; saved: its `pieces`."""
     document = {
         "format": FORMAT,
         "summary": summary,
-        "pieces": [_piece(piece, d) for piece, d in zip(pattern.pieces, drafts, strict=True)],
+        "pieces": saved,
         "seams": [_seam(seam) for seam in pattern.seams],
         "order": list(pattern.order),
     }

@@ -141,19 +141,40 @@ def _shear_words(goods):
 
 
 def _piece_table(summary):
-    shear = summary["goods"]["shear_degrees"] is not None
-    head = ["piece", "fit", "beyond", "area, m<sup>2</sup>", "stretch, 5 % to 95 %", "worst", "worst shear",
-            "limit used"]
+    head = ["piece", "fit", "comfortable, tight, strained", "area, m<sup>2</sup>", "stretch, 5 % to 95 %", "worst"]
+    goods = summary["goods"]
+    threads = [key for key in ("warp", "weft") if key in summary["all"]]
+    head += [f"{key}, 5 % to 95 %" for key in threads]
+    head += ["shear, 95 % and worst"] * (goods["shear_degrees"] is not None)
+    head += ["limit used", "L<sup>2</sup>, L<sup>&infin;</sup>", "worst near x, y, z, mm"]
     rows = []
     for order, piece in enumerate(summary["pieces"]):
-        stretch = piece["stretch"]
-        cells = [f'<span class="chip" style="background:{piece_colour(order)}"></span>{tidy(piece["name"])}',
-                 f'<span class="{piece["fit"]}">{piece["fit"]}</span>', f"{piece['beyond']:.1%}", f"{piece['area_m2']:.4g}",
-                 f"{stretch['p5']:+.1%} to {stretch['p95']:+.1%}", f"{stretch['worst']:+.1%}",
-                 f"{piece['shear_degrees']['worst']:.1f} degrees" if shear else "", f"{piece['utilisation']['p99_5']:.0%}"]
-        rows.append(cells if shear else cells[:6] + cells[7:])
-    words = "<p>Limit used is the share of the hard limits on all but 0.5 % of the area.</p>"
-    return words + _table(head if shear else head[:6] + head[7:], rows, 2)
+        name = f'<span class="chip" style="background:{piece_colour(order)}"></span>{tidy(piece["name"])}'
+        rows.append([name, f'<span class="{piece["fit"]}">{piece["fit"]}</span>', *_fit_cells(piece, threads)])
+    if len(rows) > 1:
+        rows.append(["all", "", *_fit_cells(summary["all"], threads)])
+    words = (f"<p>Measured anew from pattern.json, {_measured_on(summary)}. Comfortable, tight and strained are shares of "
+             "the area: within the comfortable limits, within the hard ones, beyond them. Limit used is the share of the "
+             "hard limits on all but 0.5 % of the area. L<sup>2</sup> and L<sup>&infin;</sup> are the texture stretch of "
+             "Sander, Snyder, Gortler and Hoppe (2001), 1 for an exact development.</p>")
+    return words + _table(head, rows, 2)
+
+
+def _measured_on(summary):
+    side, half = summary["thickness_side"], summary["goods"]["thickness_mm"] / 2
+    return "on the form's own surface" if side == "none" else f"in the middle of the goods, {half:g} mm {side} the form"
+
+
+def _fit_cells(found, threads):
+    """The figures of a piece, or of all: words for the columns of `_piece_table` after the first two."""
+    stretch = found["stretch"]
+    cells = [", ".join(f"{share:.1%}" for share in found["shares"].values()), f"{found['area_m2']:.4g}",
+             f"{stretch['p5']:+.1%} to {stretch['p95']:+.1%}", f"{stretch['worst']:+.1%}"]
+    cells += [f"{found[key]['p5']:+.1%} to {found[key]['p95']:+.1%}" for key in threads]
+    if "shear_degrees" in found:
+        cells.append("{p95:.1f}, {worst:.1f} degrees".format(**found["shear_degrees"]))
+    return [*cells, f"{found['utilisation']['p99_5']:.0%}", "{l2:.4f}, {linf:.4f}".format(**found["sander"]),
+            ", ".join(f"{value:.0f}" for value in found["worst_place_mm"])]
 
 
 def _seam_table(summary):

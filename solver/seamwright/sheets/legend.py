@@ -38,8 +38,13 @@ def add_legend(pdf, pattern, sheets, summary, grid):
             _line(pdf, f"- {note}", 9)
         pdf.ln(4)
     _heading(pdf, "Pieces", 12)
-    _table(pdf, (8, 34, 22, 18, 34, 30, 48), [
-        ("", "piece", "fit", "beyond", "cut size, mm", "worst stretch", "seams"),
+    shares = summary["all"]["shares"]
+    _line(pdf, f"Of all the area {shares['comfortable']:.1%} is within the comfortable limits of the goods, "
+          f"{shares['tight']:.1%} tight, {shares['strained']:.1%} beyond the hard limits; most strained near "
+          f"{_place(summary['all'])} mm on the form.", 9)
+    pdf.ln(1)
+    _table(pdf, (8, 30, 18, 34, 28, 22, 26, 28), [
+        ("", "piece", "fit", "comfortable, tight, strained", "cut size, mm", "worst stretch", "near, mm", "seams"),
         *(_piece_row(piece, summary) for piece in summary["pieces"])])
     _heading(pdf, "Seams", 12)
     _table(pdf, (30, 62, 34, 34, 34), [("seam", "joins", "first side, mm", "second side, mm", "ease in"),
@@ -128,8 +133,14 @@ def _overview(pdf, sheets, grid, x, y, width, height):
 
 def _piece_row(piece, summary):
     seams = [seam["name"] for seam in summary["seams"] if piece["name"] in seam["pieces"]]
-    return (str(piece["number"]), piece["name"], piece["fit"], f"{piece['beyond']:.1%}",
-            f"{piece['width_mm']:.0f} x {piece['height_mm']:.0f}", f"{piece['stretch']['worst']:+.1%}", ", ".join(seams))
+    return (str(piece["number"]), piece["name"], piece["fit"],
+            ", ".join(f"{share:.0%}" for share in piece["shares"].values()),
+            f"{piece['width_mm']:.0f} x {piece['height_mm']:.0f}", f"{piece['stretch']['worst']:+.1%}", _place(piece),
+            ", ".join(seams))
+
+
+def _place(found):
+    return ", ".join(f"{value:.0f}" for value in found["worst_place_mm"])
 
 
 def _seam_row(seam):

@@ -4,7 +4,9 @@ from math import degrees
 
 import numpy as np
 
+from . import data
 from .draft import draft
+from .figures import figures, read, together
 from .lay import lay, too_large, yield_of
 from .notches import path_places
 
@@ -15,18 +17,23 @@ def summary(pattern):
     form, version, fits, goods (name and figures), pieces, seams, order, seam_metres (joined seams, on the form),
     hem_metres, thickness_side (as in Wishes), area_m2 (covered, in the middle of the goods) and flat_area_m2, lay (sheets of
     goods with width and length used in mm, yield), notes.
-    Each piece: name, number, fit, beyond (share of its area beyond the hard limits), area_m2 and flat_area_m2, stretch
-    {p5, p95, worst} (shares; over the form's area, the smaller and the larger principal one; worst is the one farthest
-    from 0), warp and weft {p5, p95, worst} and shear_degrees {p95, worst} where the goods have a grain, utilisation
-    {p95, p99_5, worst} of the hard limits, width_mm and height_mm of the cut line. Each seam: name, pieces (two names, null
-    at an open edge), lengths_mm, ease, dart, open.
+    Each piece: name, number, fit, width_mm and height_mm of the cut line, and, measured from the pieces as they are saved,
+    beyond (share of its area beyond the hard limits), area_m2 and flat_area_m2, shares {comfortable, tight, strained} of
+    the area within the comfortable limits, between them and the hard ones, and beyond these; worst_place_mm on the form,
+    where most of the limits is used; stretch {p5, p95, worst} (shares; over the form's area, the smaller and the larger
+    principal one; worst is the one farthest from 0); warp and weft {p5, p95, worst} and shear_degrees {p95, worst} where
+    the goods have a grain; utilisation {p95, p99_5, worst} of the hard limits; sander {l2, linf}, texture stretch (Sander,
+    Snyder, Gortler, Hoppe 2001). all: the same of all pieces together. Each seam: name, pieces (two names, null at an open
+    edge), lengths_mm, ease, dart, open.
     """
     drafts = draft(pattern)
-    return summary_of(pattern, drafts, lay(pattern, drafts))
+    return summary_of(pattern, drafts, lay(pattern, drafts), data.pieces(pattern, drafts))
 
 
-def summary_of(pattern, drafts, sheets):
-    """The summary of a pattern whose drafts and lay are at hand."""
+def summary_of(pattern, drafts, sheets, saved):
+    """The summary of a pattern whose drafts, lay and pieces, as they are saved, are at hand."""
+    readings = [read(piece, pattern.goods) for piece in saved]
+    every = figures(together(readings), pattern.goods)
     on_form = [(path_places(seam.path)[-1], seam.open) for seam in pattern.seams]
     goods = pattern.goods
     return _plain({
@@ -41,11 +48,13 @@ def summary_of(pattern, drafts, sheets):
             "shear_degrees": None if goods.shear is None else [degrees(value) for value in goods.shear],
         },
         "thickness_side": pattern.details.get("thickness_side", "none"),
-        "area_m2": sum(piece.areas.sum() for piece in pattern.pieces),
-        "flat_area_m2": sum(piece.flat_areas.sum() for piece in pattern.pieces),
+        "area_m2": every["area_m2"],
+        "flat_area_m2": every["flat_area_m2"],
         "seam_metres": sum(length for length, open_ in on_form if not open_),
         "hem_metres": sum(length for length, open_ in on_form if open_),
-        "pieces": [_piece(piece, d, goods) for piece, d in zip(pattern.pieces, drafts, strict=True)],
+        "all": every,
+        "pieces": [_piece(piece, d, figures(reading, goods))
+                   for piece, d, reading in zip(pattern.pieces, drafts, readings, strict=True)],
         "seams": [_seam(seam) for seam in pattern.seams],
         "order": list(pattern.order),
         "lay": {"sheets": [{"width_mm": s.width, "length_mm": s.height} for s in sheets], "yield": yield_of(sheets, goods)},
@@ -67,40 +76,10 @@ def notes(pattern, drafts):
     return found
 
 
-def quantiles(values, weights, shares):
-    """Values (t,) at shares of the total weight, nearest from below."""
-    order = np.argsort(values, kind="stable")
-    total = np.cumsum(weights[order])
-    place = np.searchsorted(total, np.asarray(shares) * total[-1] * (1 - 1e-12))
-    return values[order][np.minimum(place, len(order) - 1)]
-
-
-def farthest(values):
-    """The value farthest from 0, with its sign."""
-    return values.ravel()[np.argmax(np.abs(values))]
-
-
-def _piece(piece, d, goods):
-    area = piece.areas
+def _piece(piece, d, found):
     left, low, right, high = d.bounds
-    found = {
-        "name": piece.name, "number": d.number, "fit": piece.fit, "beyond": piece.beyond,
-        "area_m2": area.sum(), "flat_area_m2": piece.flat_areas.sum(),
-        "width_mm": right - left, "height_mm": high - low,
-        "stretch": {"p5": quantiles(piece.stretch[:, 1], area, 0.05), "p95": quantiles(piece.stretch[:, 0], area, 0.95),
-                    "worst": farthest(piece.stretch)},
-        "utilisation": {"p95": quantiles(piece.utilisation, area, 0.95),
-                        "p99_5": quantiles(piece.utilisation, area, 0.995), "worst": piece.utilisation.max()},
-    }
-    if not goods.grain_free:
-        for k, name in enumerate(("warp", "weft")):
-            values = piece.warp_weft_shear[:, k]
-            p5, p95 = quantiles(values, area, [0.05, 0.95])
-            found[name] = {"p5": p5, "p95": p95, "worst": farthest(values)}
-    if goods.shear is not None:
-        shear = np.abs(np.degrees(piece.warp_weft_shear[:, 2]))
-        found["shear_degrees"] = {"p95": quantiles(shear, area, 0.95), "worst": shear.max()}
-    return found
+    return {"name": piece.name, "number": d.number, "fit": piece.fit, "width_mm": right - left, "height_mm": high - low,
+            **found}
 
 
 def _seam(seam):

@@ -6,6 +6,7 @@ import numpy as np
 
 from . import pattern as pt
 from .fit.measure import measure
+from .fit.springs import eased
 from .form.offset import carried
 from .naming import named
 from .seams.sides import joints
@@ -25,7 +26,7 @@ def assemble(form, neutral, goods, wishes, parts, notes):
             if part.judged[k].crossings:
                 notes.append(f"Piece {name} lies over itself in the flat; split it with a seam.")
         by_name = dict(zip(own, pieces[-len(own):], strict=True))
-        seams += [_seam(joint, on_form, own, by_name) for joint in joints(network)]
+        seams += [_seam(joint, on_form, own, by_name, goods.ease) for joint in joints(network)]
     pieces = [pieces[k] for k in order]
     _number(seams)
     notes += _strain(pieces, goods) + _ease(seams, goods)
@@ -92,12 +93,18 @@ def _piece(name, network, index, on_form, judged, goods, wishes):
     )
 
 
-def _seam(joint, on_form, names, by_name):
+def _seam(joint, on_form, names, by_name, ease):
     path = on_form[joint.chain]
     left = (names[joint.left.piece], joint.left.points)
     right = (None, joint.left.points) if joint.right is None else (names[joint.right.piece], joint.right.points)
     lengths = tuple(0.0 if name is None else _flat_length(by_name[name], along) for name, along in (left, right))
-    return pt.Seam("", path, (left, right), lengths, joint.dart)
+    run = None
+    if ease > 0 and joint.right is not None:
+        one, other = by_name[left[0]], by_name[right[0]]
+        apart = 0 if one is other else len(one.points)
+        both = [np.concatenate([a, b]) for a, b in ((one.neutral, other.neutral), (one.flat, other.flat))]
+        run = eased(*both, left[1], right[1] + apart)
+    return pt.Seam("", path, (left, right), lengths, joint.dart, run)
 
 
 def _flat_length(piece, along):

@@ -58,7 +58,8 @@ class Seam:
 
     path (q, 3) metres on the form; sides: two of (piece name or None at an open edge, (q,) point indices in that piece,
     both in the path's direction); a closed seam repeats its first point at the end. A seam whose two sides are in one
-    piece closes that piece (a dart where `dart` is true: it ends inside).
+    piece closes that piece (a dart where `dart` is true: it ends inside). eased: where ease is wanted and the sides are
+    not equally long, (begin, end) as shares of the path; else None.
     """
 
     name: str
@@ -66,6 +67,7 @@ class Seam:
     sides: tuple
     lengths: tuple
     dart: bool = False
+    eased: tuple | None = None
 
     @property
     def ease(self):

@@ -1,5 +1,7 @@
 """Pieces matched along their seams: both sides equally long, and the goods still within what they were."""
 
+from dataclasses import replace
+
 import numpy as np
 import pytest
 from forms import disk
@@ -8,7 +10,7 @@ from seamwright.fit.grain import HeldGrain, pull
 from seamwright.fit.match import FURTHER, match
 from seamwright.fit.measure import area_quantile, areas, utilisation, warp_weft_shear
 from seamwright.fit.shape import relax_for_goods
-from seamwright.fit.springs import Gaps, Springs
+from seamwright.fit.springs import Gaps, Springs, eased
 from seamwright.flat import flatten, overlaps
 from seamwright.flat.flatten import DIRICHLET
 from seamwright.flat.rest import Rest
@@ -168,3 +170,35 @@ def test_a_wanted_grain_is_held_in_every_piece(pillow):
         x, y = pull(Rest(piece), wanted) @ flat
         assert y > 0
         assert x / y == pytest.approx(0, abs=1e-9)
+
+
+def test_wanted_ease_stays_on_the_fuller_side(pillow):
+    """The high dome's rim is longer by itself: it may stay so by the ease, no more, and both ask less of the goods."""
+    pieces, joints = pillow
+    goods = get("felt")
+    eased_goods = replace(goods, ease=0.02)
+    flats = [relax_for_goods(piece, flatten(piece).flat, goods, 1.0).flat for piece in pieces]
+    rim = joints[0][1]
+    free = np.log(length(flats[0], rim) / length(flats[1], rim))
+    assert abs(free) > 0.02
+    even, eased = (match(pieces, flats, joints, each, 1.0) for each in (goods, eased_goods))
+    ratio = [length(one.flats[0], rim) / length(one.flats[1], rim) for one in (even, eased)]
+    assert ratio[0] == pytest.approx(1, abs=5e-4)
+    assert ratio[1] ** np.sign(free) == pytest.approx(1.02, abs=1e-3)
+    assert np.abs(eased.mismatch[0]).max() < 1e-3 and eased.sewable
+    assert max(eased.utilisation) < max(even.utilisation)
+
+
+def test_ease_keeps_off_the_ends_of_a_seam_and_out_of_darts():
+    t = np.linspace(0, 1, 41)
+    points = np.concatenate([np.column_stack([t, 0 * t, 0 * t])] * 2)
+    flat = np.concatenate([t, 1.03 * t + 0.1j])
+    one, other = np.arange(41), 41 + np.arange(41)
+    gaps = Gaps(points, [(one, other)])
+    wanted = gaps.ease(flat, np.log1p(0.02))
+    assert gaps.count == 10 and wanted[[0, -1]].tolist() == [0, 0]
+    np.testing.assert_allclose(wanted[1:-1], -np.log(1.02))  # the second side is the longer one
+    assert np.abs(gaps.ease(flat, 0.5)[1:-1] + np.log(1.03)).max() < 1e-12  # no more than it is longer by itself
+    assert eased(points, np.column_stack([flat.real, flat.imag]), one, other) == (0, 1)
+    closing = np.append(other[:-1], one[-1])
+    assert not Gaps(points, [(one, closing)]).ease(flat, 0.02).any()

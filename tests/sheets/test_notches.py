@@ -34,6 +34,18 @@ def test_mates_meet_at_the_same_point_of_the_form(name):
             assert np.linalg.norm(mates[0] - mates[1]) < 1e-9
 
 
+def test_ease_has_a_notch_at_either_end_on_both_sides():
+    pattern = samples.pouch()
+    seam = pattern.seams[0]
+    plain = places_on_form(pattern, seam.name)
+    seam.eased = (0.4, 0.71)
+    by_share = places_on_form(pattern, seam.name)
+    assert {0.4, 0.71} <= set(by_share) and not {0.4, 0.71} & set(plain)
+    for mates in by_share.values():
+        assert len(mates) == 2 and np.linalg.norm(mates[0] - mates[1]) < 1e-9
+    assert np.diff(sorted(by_share)).min() * path_places(seam.path)[-1] > 0.004  # none so near that two read as one
+
+
 def test_spacing_is_that_of_common_practice():
     pattern = samples.cylinder(height=1.2)
     shares = sorted({round(n.share, 9) for n in draft(pattern)[0].notches if n.seam == "s1"})

@@ -26,7 +26,7 @@ def test_a_cylinder():
     assert found["pieces"][0]["width_mm"] == pytest.approx(2 * np.pi * 100 + 40, abs=1e-6)
     assert found["pieces"][0]["height_mm"] == pytest.approx(340)
     assert found["seams"][0] == {"name": "s1", "pieces": ["A", "A"], "lengths_mm": [300, 300], "ease": 0, "dart": False,
-                                 "open": False}
+                                 "open": False, "eased": None}
     assert found["fits"] and found["order"] == ["s1"]
 
 

@@ -24,7 +24,8 @@ class Goods:
     stretch_warp, stretch_weft: how much longer the goods may become along each. ease_in: how much shorter, along either.
     shear: change of the right angle between warp and weft, radians; None where the two principal stretches count.
     width of the roll, hide or sheet; length of a hide or sheet, None for a roll. mismatch: (easy, most) share by which
-    one side of a seam may be longer than the other. nap: pieces may not be turned head to foot. price per `price_per`,
+    one side of a seam may be longer than the other; ease, a share too: by how much it may stay longer where it wants to be,
+    worked in when sewn. nap: pieces may not be turned head to foot. price per `price_per`,
     "m" of the roll or "m2". Raises WishError on a value that cannot be.
     """
 
@@ -38,6 +39,7 @@ class Goods:
     length: float | None = None
     allowance: float = 0.01
     mismatch: tuple = (0.01, 0.02)
+    ease: float = 0.0
     nap: bool = False
     price: float = 0.0
     price_per: str = "m"
@@ -50,6 +52,7 @@ class Goods:
             object.__setattr__(self, "shear", _pair(where, "shear (radians)", self.shear, 0, radians(80)))
         for key, low, high in (("thickness", 0, 0.2), ("width", 0.01, 100), ("allowance", 0, 1), ("price", 0, 1e9)):
             _number(where, key, getattr(self, key), low, high)
+        _number(where, "ease", self.ease, 0, self.mismatch[0], " (what is easily sewn, the first of mismatch)")
         if self.length is not None:
             _number(where, "length", self.length, 0.01, 1000)
         if self.price_per not in ("m", "m2"):
@@ -146,8 +149,8 @@ _KEYS = {  # key of the file: (field, factor to the field's unit); factor None i
     "stretch_warp_percent": ("stretch_warp", _PERCENT), "stretch_weft_percent": ("stretch_weft", _PERCENT),
     "ease_in_percent": ("ease_in", _PERCENT), "shear_degrees": ("shear", _DEGREES), "thickness_mm": ("thickness", _MM),
     "width_mm": ("width", _MM), "length_mm": ("length", _MM), "allowance_mm": ("allowance", _MM),
-    "mismatch_percent": ("mismatch", _PERCENT), "nap": ("nap", None), "price": ("price", None),
-    "price_per": ("price_per", None),
+    "mismatch_percent": ("mismatch", _PERCENT), "ease_percent": ("ease", _PERCENT), "nap": ("nap", None),
+    "price": ("price", None), "price_per": ("price_per", None),
 }
 _NEEDED = ("stretch_warp_percent", "stretch_weft_percent", "ease_in_percent")
 
@@ -194,9 +197,9 @@ def _is_number(value):
     return isinstance(value, Real) and not isinstance(value, bool) and np.isfinite(value)
 
 
-def _number(where, key, value, low, high):
+def _number(where, key, value, low, high, why=""):
     if not _is_number(value) or not low <= value <= high:
-        raise WishError(f"{where}: {key} is {value!r}; expected a number from {low:g} to {high:g}.")
+        raise WishError(f"{where}: {key} is {value!r}; expected a number from {low:g} to {high:g}{why}.")
 
 
 def _pair(where, key, pair, low, high):

@@ -13,14 +13,12 @@ from .grain import HeldGrain
 from .limits import GoodsEnergy, log_and_ratio
 from .measure import area_quantile
 from .shape import DAMPING, exponents_for, settle
-from .springs import Gaps, Springs
+from .springs import EXACT, Gaps, Springs
 
 STEPS = 12
 """Most Newton steps for each exponent."""
 STIFFNESS = 100.0
 """Of the springs along the seams, per area of the pieces; that of a piece's energy at its limits is under 1e-4."""
-EXACT = 5e-4
-"""A stretch of seam whose sides differ by less is matched: 0.05 mm in 100."""
 GROWTH = np.geomspace(1e-6, 1e-1, 6)
 """Shares of the stiffness, one after the other, where the full one asks more of a piece than it may use."""
 FURTHER = 1.1
@@ -32,7 +30,8 @@ SPARE = 0.97
 @dataclass
 class Matched:
     """flats, an (n, 2) a piece; utilisation of each on 99.5 % of its area; mismatch of every joint's stretches, a list of
-    (s,) logs of length ratios; sewable: none differs by more than the goods are easily sewn with; Newton steps taken."""
+    (s,) logs of length ratios, less the ease that is wanted; sewable: none differs by more than the goods are easily sewn
+    with; Newton steps taken."""
 
     flats: list
     utilisation: list
@@ -44,6 +43,8 @@ class Matched:
 def match(surfaces, flats, joints, goods, comfort=0.0, wanted=None):
     """Bring both sides of every joint to one length, stretch by stretch, as far as the goods' limits allow.
 
+    Where the goods are to be eased, the side that is longer by itself may stay so by as much.
+
     surfaces and flats (n, 2), one a piece; joints: (piece, points (q,), piece, points (q,)), points along the seam within
     the piece; a dart joins a piece to itself. Springs pull the sides together while every piece stays within its limits at
     the wished comfort; else within the hard limits, or FURTHER than it already is beyond them; else the springs begin again
@@ -51,6 +52,7 @@ def match(surfaces, flats, joints, goods, comfort=0.0, wanted=None):
     comes to lie over itself. Returns Matched, its utilisation that of the wished comfort.
     """
     table = _Table(surfaces, flats, joints, wanted)
+    table.gaps.wanted = table.gaps.ease(table.free, np.log1p(goods.ease))
     exponents, now, steps = exponents_for(goods), table.free, 0
     wished, hard = _Limits(table, goods, comfort), _Limits(table, goods, 0.0)
     for limits in (wished, hard):

@@ -17,7 +17,7 @@ One object, lengths in millimetres, stretch as shares, angles in degrees where a
                   stretch   [[larger, smaller], ...] principal, a pair a triangle,
                   warp_weft_shear_degrees [[warp, weft, degrees], ...] a triangle,
                   utilisation [share, ...] of the hard limit, a triangle}]
-    seams       [{name, dart, ease, lengths_mm: [a, b],
+    seams       [{name, dart, ease, lengths_mm: [a, b], eased: null or [begin, end] as shares of the seam,
                   sides [{piece: name or null, points: [i, ...]}, ...] mates in step: the k-th points meet}]
     order       [seam name, ...] the sewing order
 """
@@ -69,6 +69,7 @@ def _piece(piece, d):
 def _seam(seam):
     sides = [{"piece": name, "points": None if name is None else np.asarray(at).tolist()} for name, at in seam.sides]
     return {"name": seam.name, "dart": bool(seam.dart), "ease": round(float(seam.ease), 9),
+            "eased": None if seam.eased is None else [round(share, 9) for share in seam.eased],
             "lengths_mm": [round(float(length) * 1000, 4) for length in seam.lengths], "sides": sides}
 
 

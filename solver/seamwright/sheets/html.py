@@ -184,8 +184,12 @@ def _seam_table(summary):
         joins = f"hem of {first or second}" if seam["open"] else f"{first}, {second}" + (" (dart)" if seam["dart"] else "")
         a, b = seam["lengths_mm"]
         second = ["", ""] if seam["open"] else [f"{b:.1f}", f"{seam['ease']:+.2%}"]
-        rows.append([tidy(seam["name"]), tidy(joins), f"{a:.1f}", *second])
-    return _table(["seam", "joins", "first side, mm", "second side, mm", "second longer by"], rows, 2)
+        rows.append([tidy(seam["name"]), tidy(joins), tidy(_ease_words(seam["eased"])), f"{a:.1f}", *second])
+    return _table(["seam", "joins", "ease", "first side, mm", "second side, mm", "second longer by"], rows, 3)
+
+
+def _ease_words(eased):
+    return "{by_mm:.1f} mm of {piece}, from {from_mm:.0f} to {to_mm:.0f} mm".format(**eased) if eased else ""
 
 
 def _table(head, rows, words):

@@ -150,6 +150,8 @@ def _seam_row(seam):
         return seam["name"], f"hem of {first or second}", f"{a:.0f}", "", ""
     joins = f"{first}, a dart" if seam["dart"] else f"{first} to itself" if first == second else f"{first} to {second}"
     ease = f"{abs(b - a):.1f} mm of the {'second' if b > a else 'first'} side" if abs(b - a) >= LEAST_EASE else ""
+    if seam["eased"]:
+        ease += ", from {from_mm:.0f} to {to_mm:.0f} mm".format(**seam["eased"])
     return seam["name"], joins, f"{a:.1f}", f"{b:.1f}", ease
 
 

@@ -48,10 +48,17 @@ def seam_notches(seam, lines, normals):
     places = path_places(seam.path) * 1000
     nudge = DOUBLE_GAP / 2 / places[-1]
     shares = []
-    for order, share in enumerate(_shares(seam.path, places[-1], max(_turning(line) for line in lines))):
+    plain = _shares(seam.path, places[-1], max(_turning(line) for line in lines))
+    for order, share in enumerate(_with_ends_of_ease(plain, seam.eased, places[-1])):
         shares += [share] if order else [share - nudge, share + nudge]
     return tuple([Notch(seam.name, *_at(line, normal, places, share), share) for share in shares]
                  for line, normal in zip(lines, normals, strict=True))
+
+
+def _with_ends_of_ease(shares, eased, length):
+    """The shares with one at either end of the ease [common practice], in the place of any that is near."""
+    ends = [share for share in eased or () if 0 < share < 1]
+    return sorted([share for share in shares if all(abs(share - end) * length > 2 * DOUBLE_GAP for end in ends)] + ends)
 
 
 def _shares(path, length, turning):

@@ -24,7 +24,8 @@ def summary(pattern):
     principal one; worst is the one farthest from 0); warp and weft {p5, p95, worst} and shear_degrees {p95, worst} where
     the goods have a grain; utilisation {p95, p99_5, worst} of the hard limits; sander {l2, linf}, texture stretch (Sander,
     Snyder, Gortler, Hoppe 2001). all: the same of all pieces together. Each seam: name, pieces (two names, null at an open
-    edge), lengths_mm, ease, dart, open.
+    edge), lengths_mm, ease, dart, open, eased (null, or where ease is wanted {piece, by_mm, from_mm, to_mm}: the
+    longer side, and from where to where on the form's seam it is worked in).
     """
     drafts = draft(pattern)
     return summary_of(pattern, drafts, lay(pattern, drafts), data.pieces(pattern, drafts))
@@ -85,7 +86,16 @@ def _piece(piece, d, found):
 def _seam(seam):
     return {"name": seam.name, "pieces": [name for name, _ in seam.sides],
             "lengths_mm": [length * 1000 for length in seam.lengths], "ease": seam.ease, "dart": seam.dart,
-            "open": seam.open}
+            "open": seam.open, "eased": _eased(seam)}
+
+
+def _eased(seam):
+    if seam.eased is None:
+        return None
+    one, other = seam.lengths
+    length = path_places(seam.path)[-1] * 1000
+    return {"piece": seam.sides[int(other > one)][0], "by_mm": abs(other - one) * 1000,
+            "from_mm": seam.eased[0] * length, "to_mm": seam.eased[1] * length}
 
 
 def _plain(value):

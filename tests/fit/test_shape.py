@@ -55,23 +55,6 @@ def test_developments_stay_exact_in_every_goods(name):
     assert np.abs(stretches(surface.points, surface.triangles, shaped.flat)).max() < 1e-8
 
 
-def test_cloth_that_shears_freely_becomes_the_net_of_theory():
-    # a Chebyshev net on the sphere from the pole: yarns keep their length, shear on the diagonal at polar 30, 45 degrees
-    # is 7.5 and 16.1 degrees (closed form by the sine-Gordon equation, computed for this project)
-    trellis = Goods(name="trellis", stretch_warp=(0.001, 0.001), stretch_weft=(0.001, 0.001), ease_in=(0.001, 0.001),
-                    shear=(1.2, 1.2))
-    surface = Surface(*cap(np.radians(50), 24))
-    shaped = relax_for_goods(surface, flatten(surface).flat, trellis, wanted=(0, 1, 0))
-    threads = warp_weft_shear(surface.points, surface.triangles, shaped.flat)
-    middle = surface.points[surface.triangles].mean(axis=1)
-    polar = np.degrees(np.arccos(middle[:, 2] / np.linalg.norm(middle, axis=1)))
-    diagonal = np.abs(np.abs(np.arctan2(middle[:, 1], middle[:, 0])) % (np.pi / 2) - np.pi / 4) < np.radians(6)
-    for at, shear in ((30, 7.5), (45, 16.1)):
-        ring = diagonal & (np.abs(polar - at) < 1.5)
-        assert ring.sum() >= 8
-        assert np.degrees(np.abs(threads[ring, 2])).mean() == pytest.approx(shear, abs=1.5)
-
-
 def test_a_wanted_grain_is_held_while_shaping():
     surface = Surface(*cap(0.9, 12))
     points = surface.points * (1.0, 1.4, 1.0)

@@ -63,7 +63,11 @@ def test_the_makers_own_file(tmp_path):
 
 @pytest.mark.parametrize("text, words", [
     (TABLE + "width_inch = 60\n", ["own.toml", "width_inch", "width_mm"]),
-    (TABLE + "width_mm = -1\n", ["own.toml", "my canvas", "width", "-0.001"]),
+    (TABLE + "width_mm = -1\n", ["own.toml", "my canvas", "width_mm is -1", "from 10 to 100000"]),
+    (TABLE + "allowance_mm = 2000\n", ["own.toml", "allowance_mm is 2000", "from 0 to 1000"]),
+    (TABLE + "shear_degrees = [15, 95]\n", ["shear_degrees is 95", "from 0 to 80"]),
+    (TABLE + "mismatch_percent = [1, 2]\nease_percent = 1.5\n", ["own.toml", "ease is 0.015", "at most 0.01"]),
+    (TABLE + "thickness_cm = 0.3\n", ["thickness_cm", "expected one of", "thickness_mm"]),
     (TABLE + 'width_mm = "1.5 m"\n', ["width_mm", "1.5 m", "without a unit"]),
     (TABLE + "shear_degrees = [30, 15]\n", ["own.toml", "shear", "comfortable", "hard"]),
     (TABLE + "shear_degrees = 30\n", ["shear", "pair"]),

@@ -17,6 +17,13 @@ LEAST_LIMIT = 5e-4
 """No limit counts as less than 0.5 mm in a metre: no cutting table holds more than that."""
 
 
+PAIRS = {"stretch_warp": (0, 5), "stretch_weft": (0, 5), "ease_in": (0, 0.9), "mismatch": (0, 1),
+         "shear": (0, radians(80))}
+NUMBERS = {"thickness": (0, 0.2), "width": (0.01, 100), "length": (0.01, 1000), "allowance": (0, 1), "ease": (0, 1),
+           "price": (0, 1e9)}
+"""What each field may be, from and to."""
+
+
 @dataclass(frozen=True, kw_only=True)
 class Goods:
     """One sheet material. Pairs are (comfortable, hard); stretch and ease-in are shares (0.02 is 2 %), lengths metres.
@@ -46,15 +53,12 @@ class Goods:
 
     def __post_init__(self):
         where = f"goods {self.name!r}"
-        for key, low, high in (("stretch_warp", 0, 5), ("stretch_weft", 0, 5), ("ease_in", 0, 0.9), ("mismatch", 0, 1)):
-            object.__setattr__(self, key, _pair(where, key, getattr(self, key), low, high))
-        if self.shear is not None:
-            object.__setattr__(self, "shear", _pair(where, "shear (radians)", self.shear, 0, radians(80)))
-        for key, low, high in (("thickness", 0, 0.2), ("width", 0.01, 100), ("allowance", 0, 1), ("price", 0, 1e9)):
-            _number(where, key, getattr(self, key), low, high)
-        _number(where, "ease", self.ease, 0, self.mismatch[0], " (what is easily sewn, the first of mismatch)")
-        if self.length is not None:
-            _number(where, "length", self.length, 0.01, 1000)
+        for key in (*PAIRS, *NUMBERS):
+            if getattr(self, key) is not None or key not in ("shear", "length"):
+                object.__setattr__(self, key, _checked(where, key, key, getattr(self, key)))
+        if self.ease > self.mismatch[0]:
+            raise WishError(f"{where}: ease is {self.ease:g}; expected at most {self.mismatch[0]:g}, what is easily sewn "
+                            "(the first of mismatch).")
         if self.price_per not in ("m", "m2"):
             raise WishError(f"{where}: price_per is {self.price_per!r}; write \"m\" or \"m2\".")
         if not isinstance(self.nap, bool):
@@ -175,10 +179,8 @@ def _from_table(path, name, table):
             raise WishError(f"{where}: key {key!r} is not known; expected one of {', '.join(_KEYS)}.")
         field, factor = _KEYS[key]
         if factor is not None:
-            is_pair = isinstance(value, list)
-            if not all(_is_number(v) for v in (value if is_pair else [value])):
-                raise WishError(f"{where}: {key} is {value!r}; expected numbers without a unit (the key names it).")
-            value = tuple(v * factor for v in value) if is_pair else value * factor
+            value = _checked(where, field, key, value, factor)
+            value = tuple(v * factor for v in value) if isinstance(value, tuple) else value * factor
         fields[field] = value
     missing = [key for key in _NEEDED if key not in table]
     if missing:
@@ -197,16 +199,17 @@ def _is_number(value):
     return isinstance(value, Real) and not isinstance(value, bool) and np.isfinite(value)
 
 
-def _number(where, key, value, low, high, why=""):
-    if not _is_number(value) or not low <= value <= high:
-        raise WishError(f"{where}: {key} is {value!r}; expected a number from {low:g} to {high:g}{why}.")
-
-
-def _pair(where, key, pair, low, high):
-    if not isinstance(pair, tuple | list) or len(pair) != 2:
-        raise WishError(f"{where}: {key} is {pair!r}; expected a pair, the comfortable value and the hard one.")
-    for value in pair:
-        _number(where, key, value, low, high)
-    if pair[0] > pair[1]:
-        raise WishError(f"{where}: {key} is comfortable at {pair[0]:g}, hard at {pair[1]:g}; the first is the smaller.")
-    return tuple(float(value) for value in pair)
+def _checked(where, field, key, value, factor=1.0):
+    """The value of a field, called `key` and in units of `factor` where it stands. Raises WishError."""
+    low, high = (end / factor for end in (PAIRS | NUMBERS)[field])
+    if field in PAIRS and (not isinstance(value, tuple | list) or len(value) != 2):
+        raise WishError(f"{where}: {key} is {value!r}; expected a pair, the comfortable value and the hard one.")
+    for number in value if field in PAIRS else [value]:
+        if not _is_number(number) or not low <= number <= high * (1 + 1e-12):
+            unit = " without a unit, which the key names" if isinstance(number, str) else ""
+            raise WishError(f"{where}: {key} is {number!r}; expected a number from {low:g} to {high:g}{unit}.")
+    if field not in PAIRS:
+        return value
+    if value[0] > value[1]:
+        raise WishError(f"{where}: {key} is comfortable at {value[0]:g}, hard at {value[1]:g}; the first is the smaller.")
+    return tuple(float(number) for number in value)

@@ -16,7 +16,7 @@ from .judge import judge
 from .measure import area_quantile, areas, utilisation, warp_weft_shear
 from .tailored import ENOUGH, Tailored
 
-ALIKE = 1e-3
+ALIKE = 2e-3
 """Gap between mirrored points, over the size of the piece, under which they are the same; and least turn of a grain, rad."""
 SLIGHTLY = 1.02
 """What a piece may use of the limits as the mirror image of another, over what that one uses."""

@@ -3,7 +3,7 @@ import itertools
 import numpy as np
 import pytest
 import shapely
-from seamwright.sheets.draft import draft
+from seamwright.sheets.draft import draft, is_mirror_image
 from seamwright.sheets.lettering import Lettering, text_width
 from sheets import samples
 
@@ -79,3 +79,18 @@ def test_corners_turn_with_the_text():
     mark = Lettering("AA", np.array([5.0, 7.0]), 2.0, 90.0)
     assert np.allclose(mark.corners.min(axis=0), [4, 7 - 0.667 * 2])
     assert np.allclose(mark.corners.max(axis=0), [6, 7 + 0.667 * 2])
+
+
+def test_a_mirror_image_is_called_so_only_where_it_is_one():
+    pattern = samples.pouch()
+    front, back = pattern.pieces
+    front.flat = front.flat + 0.01 * np.sin(20 * front.flat[:, ::-1]) * (1, 0)  # no longer its own mirror image
+    back.flat = front.flat * (-1, 1)
+    assert is_mirror_image(front, back)
+    back.flat = -back.flat  # turned half round, as the lay allows
+    assert is_mirror_image(front, back)
+    back.flat = front.flat.copy()
+    assert not is_mirror_image(front, back)
+    pattern.details["mirrored"] = [["front", "back"]]
+    said = [mark.text for mark in draft(pattern)[0].letterings]
+    assert any("not quite the mirror image of back" in text for text in said)

@@ -13,6 +13,8 @@ from .notches import PEN_TICK, SLIT_DEPTH, seam_notches, takes_slits
 DOWN = np.array([1.0, -1.0])
 LEAST_EASE = 1.0
 """Millimetres by which one side of a seam must be longer before its name says so."""
+UNLIKE = 0.005
+"""Share of its area by which a piece may miss its mirror image and still be called that: 1 mm around a piece of 1 m."""
 QUANTITY = 1
 """Every piece is cut once: mirrored twins are pieces of their own, left and right."""
 
@@ -140,12 +142,28 @@ def _heads(pattern, order):
     full = [piece.name, f"{pattern.form.name}, piece {numbered}, cut {QUANTITY}", f"{goods.name}, face side up",
             f"{allowance}, scale 1:1", grain]
     alike = next((names for names in pattern.details.get("mirrored", ()) if piece.name in names), ())
-    twins = [name for name in alike if name != piece.name]
-    if twins:
-        full.insert(2, f"mirror image of {' and '.join(twins)}")
+    twins = [other for other in pattern.pieces if other.name in alike and other is not piece]
+    for words, mirrored in (("mirror image of", True), ("not quite the mirror image of", False)):
+        names = [other.name for other in twins if is_mirror_image(piece, other) == mirrored]
+        if names:
+            full.insert(2, f"{words} {' and '.join(names)}")
     if pattern.version:
         full.append(f"seamwright {pattern.version}")
     return [full, [piece.name, f"{numbered}, cut {QUANTITY}"], [piece.name], [str(order + 1)]]
+
+
+def is_mirror_image(piece, other):
+    """True where one flat piece laid face down covers the other, grain along grain, but for UNLIKE of its area."""
+    one, two = (shapely.Polygon(each.flat[each.outline]) for each in (piece, other))
+    if not (one.is_valid and two.is_valid):
+        return False
+    middle = np.array([one.centroid.x, one.centroid.y])
+    for turn in ([-1, 1], [1, -1]):
+        at = shapely.transform(two, lambda points, turn=turn: points * turn)
+        laid = shapely.transform(at, lambda points, at=at: points - [at.centroid.x, at.centroid.y] + middle)
+        if one.symmetric_difference(laid).area < UNLIKE * one.area:
+            return True
+    return False
 
 
 def _seam_texts(seam, name, mate, side):

@@ -245,3 +245,14 @@ def test_one_seam_of_a_lampshade_may_be_anywhere(turn):
     seam[form.surface.edge_index(np.column_stack([down[:-1], down[1:]]))] = True
     pattern = pattern_of(form, Network(form.surface, seam, np.arange(len(form.triangles))))
     assert not mirror_error(Seen(pattern), Plane(np.array([0, 0, 0.3]), np.array([0.0, 1, 0]), 0.0)).refused
+
+
+def test_a_cap_between_two_pieces_is_a_cap():
+    """A long egg in halves along it, the end of one limb a piece of its own that both halves meet."""
+    form = Form(*ellipsoid(2.0, 0.3, 0.3, 4))
+    x, side = form.points[:, 0] - 1.86, form.points @ [0.0, 1.0, 0.02] - 1e-3
+    fields = np.column_stack([x, np.minimum(side, -x), np.minimum(-side, -x)])
+    level = Level(form.surface, np.zeros(len(form.points)))
+    pattern = pattern_of(form, cut_through(level, cut_by_fields(form.surface, fields), 1.0))
+    assert len(pattern.pieces) == 3
+    assert value(pattern, "caps on tips") == 1

@@ -75,10 +75,9 @@ def loose_seams(seen, limit=0):
 
 
 def capped_tips(seen, limit=0, share=0.03, curvature=np.pi):
-    """How many small caps: pieces ringed by one other, under `share` of the area, that hold more than `curvature`."""
+    """How many small caps: pieces under `share` of the area, without a hem, that hold more than `curvature`."""
     small = seen.piece_area < share * seen.part_area[seen.piece_part]
-    ringed = np.flatnonzero(small & (seen.neighbours == 1) & ~seen.hemmed)
-    bad = [seen.names[k] for k in ringed if seen.curvature(k) > curvature]
+    bad = [seen.names[k] for k in np.flatnonzero(small & ~seen.hemmed) if seen.curvature(k) > curvature]
     return _most("caps on tips", len(bad), limit,
                  f"Caps on a tip: {', '.join(bad)}. Lead a seam through the tip instead of around it.")
 

@@ -1,4 +1,4 @@
-"""A pattern as the refusing eye sees it: who neighbours whom, where seams meet and end, how pieces turn their corners."""
+"""A pattern as the refusing eye sees it: who has a hem, where seams meet and end, how pieces turn their corners."""
 
 from dataclasses import dataclass
 from functools import cached_property
@@ -113,26 +113,11 @@ class Seen:
         return len(bits) - len({part for part, _ in bits})
 
     @cached_property
-    def _sewn_to(self):
-        meets, hemmed = [set() for _ in self.pieces], np.zeros(len(self.pieces), dtype=bool)
-        for seam in self.seams:
-            a, b = (self.number[name] for name, _ in seam.sides)
-            if a != b:
-                meets[a].add(b)
-                meets[b].add(a)
-        for hem in self.hems:
-            hemmed[self._owner(hem)] = True
-        return np.array([len(one) for one in meets]), hemmed
-
-    @property
-    def neighbours(self):
-        """(K,) how many other pieces each is sewn to."""
-        return self._sewn_to[0]
-
-    @property
     def hemmed(self):
         """(K,) bool: pieces with an open edge."""
-        return self._sewn_to[1]
+        hemmed = np.zeros(len(self.pieces), dtype=bool)
+        hemmed[[self._owner(hem) for hem in self.hems]] = True
+        return hemmed
 
     def resampled(self, k, share):
         """(q, 3) points along seam k at even steps of about `share` of the size."""

@@ -6,6 +6,7 @@ import numpy as np
 
 from . import pattern as pt
 from .fit.measure import measure
+from .fit.sizes import upright
 from .fit.springs import eased
 from .form.offset import carried
 from .naming import named
@@ -83,7 +84,8 @@ def _ease(seams, goods):
 
 def _piece(name, network, index, on_form, judged, goods, wishes):
     surface, points, triangles = network.piece_surface(index)
-    flat = judged.flat - judged.flat.min(axis=0)
+    flat = upright(judged.flat, goods, goods.grain_free and wishes.grain is None)
+    flat = flat - flat.min(axis=0)
     measured = measure(surface.points, surface.triangles, flat, goods, wishes.comfort)
     return pt.Piece(
         name, on_form[points], flat, surface.triangles, network.source[triangles], surface.boundary_loops[0],

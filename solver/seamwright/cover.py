@@ -13,6 +13,7 @@ from .fit.goods import get
 from .fit.improve import improve
 from .fit.join import joined
 from .fit.sewn import closed
+from .fit.sizes import is_strip, narrowest, sized
 from .fit.tailor import Tailor, finished
 from .form.measure import areas
 from .form.offset import carried, offset
@@ -21,11 +22,9 @@ from .parts import parts_of
 from .pattern import Pattern
 from .seams.begun import network_of_labels, network_of_pattern, triangle_labels
 from .seams.ladder import Ladder
-from .seams.network import cut_through
 from .seams.only import BORDER, along_edges, grown, through_faces
 from .seams.opened import opened
 from .seams.prices import NEVER, seam_prices
-from .seams.route import cut_along
 from .seams.seek import seek
 from .seams.whole import kept_whole, united
 from .wishes import Wishes
@@ -104,14 +103,9 @@ def _cover_part(form, part, wishes, goods, pieces, tell, notes):
 def _sought(ground, planes, begun, wishes, goods, pieces, tell, notes):
     """The Tailored of a Ground, from scratch or from a Network begun with; pieces: a wished number or None."""
     ladder = Ladder(ground.surface, ground.price, planes, seed=int(wishes.seed), patch=ground.patch)
-    metric = 1 / ladder.factor
 
     def explicit(cut):
-        level = ladder.levels[-1]
-        if wishes.route == "edges":
-            return cut_along(level, cut, ground.polygon, ground.diagonal, metric)
-        network = cut_through(level, ground.held.evened(cut), metric)
-        return opened(network if ground.bound is None else kept_whole(network, ground.bound))
+        return ground.network(ladder.levels[-1], cut, wishes.route, 1 / ladder.factor)
 
     tailor = Tailor(ladder, explicit, goods, wishes.comfort, wishes.grain)
     if begun is not None:
@@ -119,7 +113,7 @@ def _sought(ground, planes, begun, wishes, goods, pieces, tell, notes):
         if kept:
             notes.append("Start: no better seams were found from there, so they are as they were.")
     elif wishes.thrift is None and pieces is None:
-        result = tailor.run(tell)
+        result = sized(ground, tailor, tailor.run(tell), wishes.route)
     else:
         found = seek(ladder, wishes.thrift or PLAIN_THRIFT, wishes.energy, pieces, tell)
         result = tailor.untangled(tailor.real(len(ladder.levels) - 1, found.cut))
@@ -195,6 +189,11 @@ def _unmet(pattern, wishes, prices):
     if wishes.energy != "square" and wishes.thrift is wishes.pieces is wishes.start is None:
         found.append("Energy: it had no say, as the seams were sought for the goods. It counts with thrift, pieces or "
                      "start.")
+    width = narrowest(pattern.goods, sum(piece.areas.sum() for piece in pattern.pieces))
+    strips = [piece.name for piece in pattern.pieces if is_strip(piece.flat[piece.outline], width)]
+    if strips:
+        found.append(f"Narrow: {', '.join(strips[:8])}{', ...' if len(strips) > 8 else ''} nowhere as wide as the "
+                     f"{1000 * width:.0f} mm that are easily sewn; what they could be joined to would not fit with them.")
     never = (prices >= NEVER)[pattern.form.triangles].all(axis=1)
     length = _metres_in(pattern, never)
     if length > 0:

@@ -1,13 +1,16 @@
 """The parts of a form that are covered one by one, each opened along the seams that the maker holds."""
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
 from .form.surface import Surface
 from .seams.held import Held
+from .seams.network import cut_through
+from .seams.opened import opened
+from .seams.route import cut_along
 from .seams.study import at_points, shares
-from .seams.whole import bound_faces, patches
+from .seams.whole import bound_faces, kept_whole, patches
 
 
 @dataclass
@@ -21,6 +24,33 @@ class Ground:
     patch: np.ndarray | None
     bound: np.ndarray | None
     held: Held
+
+    def network(self, level, cut, route, metric):
+        """The Network, all disks, of a Cut of its Level; metric: metres over lengths on the level."""
+        if route == "edges":
+            return cut_along(level, cut, self.polygon, self.diagonal, metric)
+        return opened(self.kept_whole(cut_through(level, self.held.evened(cut), metric), route))
+
+    def kept_whole(self, network, route):
+        """A Network on this ground in which the faces stay whole that have to."""
+        if route == "edges":
+            return replace(network, face=self.polygon[network.source])
+        return network if self.bound is None else kept_whole(network, self.bound)
+
+    def cut_out(self, network, inside):
+        """(Ground of the triangles `inside` (t,) bool of a Network of this one, which seams part from the others; (t',) the
+        triangle of this one that each of its triangles lies in)."""
+        surface, points, triangles = network.part_surface(np.flatnonzero(inside))
+        source = network.source[triangles]
+        share = shares(self.surface, network, 1.0)
+        price = at_points(network.surface, self.surface.triangles[network.source], share, self.price)[points]
+        polygon = np.unique(self.polygon[source], return_inverse=True)[1].ravel()
+        patch = bound = None
+        if self.bound is not None and (self.bound[source] >= 0).any():
+            patch = patches(surface, self.bound[source] >= 0)
+            bound = bound_faces(surface, patch, polygon)
+        held = Held(surface, np.zeros(len(surface.edges), dtype=bool))
+        return Ground(surface, price, polygon, _within(surface, polygon), patch, bound, held), source
 
 
 class Part(Ground):
@@ -54,22 +84,6 @@ class Part(Ground):
             one = np.where(self.bound < 0, self.polygon, self.polygon.max() + 1 + self.bound)
             self.polygon = np.unique(one, return_inverse=True)[1].ravel()
         self.diagonal = _within(self.surface, self.polygon)
-
-
-    def cut_out(self, network, inside):
-        """(Ground of the triangles `inside` (t,) bool of a Network of this part, which seams part from the others; (t',) the
-        part's triangle that each of its triangles lies in)."""
-        surface, points, triangles = network.part_surface(np.flatnonzero(inside))
-        source = network.source[triangles]
-        share = shares(self.surface, network, 1.0)
-        price = at_points(network.surface, self.surface.triangles[network.source], share, self.price)[points]
-        polygon = np.unique(self.polygon[source], return_inverse=True)[1].ravel()
-        patch = bound = None
-        if self.bound is not None and (self.bound[source] >= 0).any():
-            patch = patches(surface, self.bound[source] >= 0)
-            bound = bound_faces(surface, patch, polygon)
-        held = Held(surface, np.zeros(len(surface.edges), dtype=bool))
-        return Ground(surface, price, polygon, _within(surface, polygon), patch, bound, held), source
 
 
 def _within(surface, polygon):

@@ -1,5 +1,6 @@
 """The search for the cheapest network that fits: nothing of it can go, and it gives way to comfort and to the goods."""
 
+from dataclasses import replace
 from functools import cache
 
 import numpy as np
@@ -20,8 +21,9 @@ FORMS = {"sphere": icosphere(3), "torus": torus(1, 0.4, 40, 16), "egg": ellipsoi
 
 @cache
 def covered(form, name, comfort):
-    """Pattern of a form for goods at a comfort; without symmetry, so that every seam may go by itself."""
-    return sw.cover(sw.Form(*FORMS[form], name=form), sw.Wishes(goods=name, comfort=comfort, symmetry="none"))
+    """Pattern of a form for goods of any width at a comfort; without symmetry, so that every seam may go by itself."""
+    wide = replace(goods.get(name), width=50.0, length=None)
+    return sw.cover(sw.Form(*FORMS[form], name=form), sw.Wishes(goods=wide, comfort=comfort, symmetry="none"))
 
 
 def metres(pattern):

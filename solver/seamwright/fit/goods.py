@@ -69,6 +69,17 @@ class Goods:
         """True when a piece may lie in any direction: same limits all round and no nap."""
         return self.shear is None and self.stretch_warp == self.stretch_weft and not self.nap
 
+    @property
+    def narrowest(self):
+        """Metres: no strip of a piece is sewn narrower than the larger of 40 mm and three allowances (common practice)."""
+        return max(0.04, 3 * self.allowance)
+
+    @property
+    def room(self):
+        """Metres across and along the goods that the outline of a piece has, its allowance on both sides left out."""
+        both = 2 * self.allowance
+        return max(self.width - both, 1e-9), np.inf if self.length is None else max(self.length - both, 1e-9)
+
     def limits(self, comfort=0.0):
         """Log-strain limits at a comfort from 0 (hard) to 1 (comfortable), straight between the two in percent.
 

@@ -15,14 +15,14 @@ def joined(tailor, met, pieces):
     while met.network.pieces[0] > pieces:
         trials = []
         for chain in met.network.chains:
-            trials += [trial for trial in _without(tailor, met, chain) if trial.network.pieces[0] >= pieces]
+            trials += [trial for trial in without(tailor, met, chain) if trial.network.pieces[0] >= pieces]
         if not trials:
             return met
         met = min(trials, key=lambda trial: (trial.use, trial.network.length()))
     return met
 
 
-def _without(tailor, met, chain):
+def without(tailor, met, chain):
     """Tailored without a chain, or where that leaves no disk without part of it (a dart is then left)."""
     for some in ([chain], _halves(chain)):
         trials = [_trial(tailor, met, with_images(met.network, one, tailor.planes)) for one in some]

@@ -42,11 +42,7 @@ def closed(held, met):
     """The Tailored on the whole of a surface, from one on the same opened along a Held's seams: pieces stay as they are."""
     if not held.edges.any():
         return met
-    corners = np.empty((*met.network.surface.triangles.shape, 2))
-    for piece, one in enumerate(met.judged):
-        part, _, triangles = met.network.piece_surface(piece)
-        corners[triangles] = one.flat[part.triangles]
-    network, came, corners = held.sewn_together(met.network, corners)
+    network, came, corners = held.sewn_together(met.network, corner_flats(met))
     own = met.network.pieces[1]
     rank = np.empty(len(own), dtype=np.int64)  # of each triangle within its piece
     for piece in range(met.network.pieces[0]):
@@ -60,6 +56,15 @@ def closed(held, met):
         crossings = overlaps(flat, part.boundary_loops[0]) if old.crossings else []
         judged.append(replace(old, each=old.each[rank[came[triangles]]], flat=flat, crossings=crossings))
     return Tailored(network, judged)
+
+
+def corner_flats(met):
+    """(t, 3, 2) where the corners of a Tailored's triangles lie in the flat."""
+    corners = np.empty((*met.network.surface.triangles.shape, 2))
+    for piece, one in enumerate(met.judged):
+        part, _, triangles = met.network.piece_surface(piece)
+        corners[triangles] = one.flat[part.triangles]
+    return corners
 
 
 def uneven(met):

@@ -15,6 +15,7 @@ from .pairs import paired
 from .resigned import resigned
 from .search import MOST_PIECES, Search
 from .sewn import sewn, uneven
+from .sizes import excess
 from .spare import dropped, without_nearest
 from .tailored import ENOUGH, Judges, Tailored
 
@@ -155,12 +156,18 @@ class Tailor:
 def finished(met, planes, goods, comfort, grain=None):
     """The Tailored with twins about mirror Planes laid alike, and both sides of seams matched where the goods allow it.
 
-    Before, what cannot fit is laid so that as little of it as can be is beyond the hard limits.
+    Before, what cannot fit is laid so that as little of it as can be is beyond the hard limits, where the goods hold it so.
     """
     wishes = goods, comfort, grain
-    laid = Tailored(met.network, [
-        one if one.utilisation <= ENOUGH else resigned(met.network.piece_surface(piece)[0], one, *wishes)
-        for piece, one in enumerate(met.judged)])
+
+    def over(one):
+        return excess(one.flat, goods, goods.grain_free and grain is None)[0]
+
+    judged = []
+    for piece, one in enumerate(met.judged):
+        now = one if one.utilisation <= ENOUGH else resigned(met.network.piece_surface(piece)[0], one, *wishes)
+        judged.append(now if over(now) <= max(1.0, over(one)) else one)
+    laid = Tailored(met.network, judged)
     alike = paired(laid, planes, *wishes)
     found = Tailored(met.network, sewn(met.network, alike.judged, *wishes))
     if not planes or uneven(found) <= goods.mismatch[0]:

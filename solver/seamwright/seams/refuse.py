@@ -19,7 +19,6 @@ from .seen import Seen
 
 STEP = 0.02  # resampling of a seam, and the reach over which its direction is taken, as a share of the size
 STRIP = 0.035  # width under which a piece counts as narrow, as a share of the size
-NARROWEST, ALLOWANCES = 0.04, 3  # metres, and allowances: narrower strips are not sewn (common practice)
 SMALL_FORM = 0.1  # share of the size that a strip's width never counts as more than: on small forms pieces are small
 DETAILED = 8  # more tips than this make a detailed form, whose seams may wind more
 HALVED = 0.01  # share of the size within which a plane that halves a part passes its middle
@@ -225,7 +224,7 @@ def _narrow(seen, k):
 def _strip(seen, k):
     """Metres under which piece k counts as narrow."""
     size, goods = seen.size[seen.piece_part[k]], seen.goods
-    wanted = 0.0 if goods is None else max(NARROWEST, ALLOWANCES * goods.allowance)
+    wanted = 0.0 if goods is None else goods.narrowest
     return max(STRIP * size, min(wanted, SMALL_FORM * size))
 
 

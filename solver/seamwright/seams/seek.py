@@ -21,6 +21,7 @@ MOST_PIECES = 40
 SPLIT_STEPS = 12  # of flow after a split
 STEPS = ((1000, 24), (3000, 12), (12000, 6))  # points up to which a level takes so many steps; a finer one takes
 LAST_STEPS = 1
+DEAR = 1.05  # share of the score up to which seams may become dearer by running through tips
 
 
 @dataclass
@@ -146,11 +147,14 @@ def seek(ladder, thrift, energy="square", pieces=None, progress=None):
         if rung or top:  # the first rung is done, unless it is the form itself
             fields = [ladder.lift(found.fields, rung - 1) if rung else found.fields for found in pool]
             pool = [flow(level, one, thrift, energy, steps=steps_on(level), emphasis=emphasis[rung]) for one in fields]
+            if pieces is not None:  # the price of seams may dissolve what is wished: then as few steps as can be
+                pool += [flow(level, one, thrift, energy, steps=1, emphasis=emphasis[rung])
+                         for one, found in zip(fields, pool, strict=True) if found.count < pieces]
             if not top or pieces is not None:
                 pool = [simplify(level, found, thrift, energy, pieces) for found in pool]
             pool = _best(pool, pieces)[:1]
         if rung == points.rung:
-            pool[0], emphasis = through_tips(points, pool[0], thrift, energy)
+            pool[0], emphasis = through_tips(points, pool[0], thrift, energy, pieces)
         if progress:
             progress((rung + 1) / len(levels), "seams")
     found = pool[0]
@@ -159,17 +163,22 @@ def seek(ladder, thrift, energy="square", pieces=None, progress=None):
     return found
 
 
-def through_tips(points, found, thrift, energy):
-    """(Found whose seams run nearer to the tips that `found` misses, the emphasis on every level that keeps them there)."""
-    level, rung, levels = found.level, points.rung, len(points.ladder.levels)
-    emphasis, amount = [None] * levels, np.zeros(len(points.tips))
+def through_tips(points, found, thrift, energy, pieces=None):
+    """(Found whose seams run through more of the tips that `found` misses, the emphasis on every level that keeps them
+    there); where that costs too much, or a wished number of pieces, the last that does not."""
+    level, rung = found.level, points.rung
+    emphasis, amount, trial, most = [None] * len(points.ladder.levels), np.zeros(len(points.tips)), found, DEAR * found.score
     for more in MORE:
-        missed = points.missed(found.fields)
+        missed = points.missed(trial.fields)
         if not missed.any():
             break
         amount[missed] = more
-        emphasis = points.emphasis(amount)
-        found = flow(level, found.fields, thrift, energy, steps=steps_on(level), emphasis=emphasis[rung])
+        weight = points.emphasis(amount)
+        trial = flow(level, trial.fields, thrift, energy, steps=steps_on(level), emphasis=weight[rung])
+        fewer = points.missed(trial.fields).sum() < points.missed(found.fields).sum()
+        plain = settle(level, trial.cut, trial.cut.labels, thrift, energy, converged=trial.converged)
+        if fewer and plain.score <= most and (pieces is None or trial.count == found.count):
+            found, emphasis = plain, weight
     return found, emphasis
 
 

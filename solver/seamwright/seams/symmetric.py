@@ -9,6 +9,7 @@ import numpy as np
 from scipy.sparse import coo_matrix
 from scipy.sparse.csgraph import dijkstra
 
+from ..form.measure import open_points
 from ..form.mirror import drawn_in, reflection
 from .topology import make_disks, regions, split_components
 
@@ -42,8 +43,10 @@ class Mirror:
         self.image = corners[rows, share.argmax(axis=1)]
         share = np.where(self.right[corners], share, -1.0)
         self.twin = np.where(share.max(axis=1) >= 0, corners[rows, share.argmax(axis=1)], -1)
-        ends = surface.edges[self.height[surface.edges].prod(axis=1) <= 0]
-        self.near = np.unique(ends)  # the points of all edges that reach over the plane
+        # the points of all edges that reach over the plane; an open edge along it parts the sides already
+        along = open_points(surface) & (np.abs(self.height) <= 1e-6 * np.ptp(self.height))
+        over = (self.height[surface.edges].prod(axis=1) <= 0) & ~along[surface.edges].any(axis=1)
+        self.near = np.unique(surface.edges[over])
 
     def partners(self, labels, count):
         """(count,) the region where most of each region's mirror image lies; one whose partner has another stands alone."""

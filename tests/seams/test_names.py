@@ -135,7 +135,7 @@ def test_sheets_say_which_pieces_are_mirror_images(ring):
         for name in alike:
             assert name in told[name]
             others = " and ".join(other for other in alike if other != name)
-            assert f"mirror image of {others}" in told[name]
+            assert any(f"mirror image of {others}" in text for text in told[name])  # or not quite
 
 
 def test_weights_that_are_not_alike_on_both_sides_contradict_a_plane():

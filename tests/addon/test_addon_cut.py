@@ -4,7 +4,7 @@ import bpy
 import numpy as np
 import pytest
 from mathutils.bvhtree import BVHTree
-from test_addon_refusals import refusal
+from test_addon_refusals import linked_from_a_file, refusal
 from test_addon_write import check_marks, shape
 
 from addon import names, target
@@ -107,12 +107,7 @@ def test_what_would_be_harmed_is_refused(cut_ball):
 
 
 def test_a_linked_mesh_is_not_cut(cut_ball, tmp_path):
-    bpy.data.libraries.write(str(tmp_path / "props.blend"), {cut_ball})
-    bpy.data.objects.remove(cut_ball)
-    with bpy.data.libraries.load(str(tmp_path / "props.blend"), link=True) as (_, wanted):
-        wanted.objects = ["Ball"]
-    linked = wanted.objects[0]
-    bpy.context.collection.objects.link(linked)
+    linked = linked_from_a_file(cut_ball, tmp_path)
     with pytest.raises(target.Refused, match="linked from another file, so it cannot be cut"):
         target.check(linked, linked.seamwright.wishes.asked(), bpy.context.evaluated_depsgraph_get())
 

@@ -15,6 +15,17 @@ def refusal(thing, route="edges"):
     return str(caught.value)
 
 
+def linked_from_a_file(thing, folder):
+    """The object in the scene's place, its data linked from another file."""
+    name, path = thing.name, str(folder / "props.blend")
+    bpy.data.libraries.write(path, {thing})
+    bpy.data.objects.remove(thing)
+    with bpy.data.libraries.load(path, link=True) as (_, wanted):
+        wanted.objects = [name]
+    bpy.context.collection.objects.link(wanted.objects[0])
+    return wanted.objects[0]
+
+
 def test_modifiers_that_change_faces_ask_for_route_through(ball):
     ball.modifiers.new("Round", "SUBSURF")
     assert "Apply the modifiers, or choose route through" in refusal(ball)
@@ -40,12 +51,7 @@ def test_two_objects_with_one_mesh_are_told(ball):
 
 
 def test_a_linked_mesh_is_not_marked_but_may_be_covered_through(ball, tmp_path):
-    bpy.data.libraries.write(str(tmp_path / "props.blend"), {ball})
-    bpy.data.objects.remove(ball)
-    with bpy.data.libraries.load(str(tmp_path / "props.blend"), link=True) as (_, wanted):
-        wanted.objects = ["Ball"]
-    linked = wanted.objects[0]
-    bpy.context.collection.objects.link(linked)
+    linked = linked_from_a_file(ball, tmp_path)
     asked = {**linked.seamwright.wishes.asked(), "route": "edges"}
     with pytest.raises(target.Refused, match="linked from another file"):
         target.check(linked, asked, bpy.context.evaluated_depsgraph_get())

@@ -9,13 +9,12 @@ import seamwright as sw
 from forms import cylinder, globe, icosphere
 from seamwright.fit.sizes import excess, is_strip, sized, upright
 from seamwright.fit.tailor import Tailor
-from seamwright.form.measure import areas
-from seamwright.form.surface import Surface
 from seamwright.parts import parts_of
 from seamwright.seams.begun import network_of_labels
 from seamwright.seams.ladder import Ladder
 from seamwright.sheets.draft import draft
 from seamwright.sheets.lay import too_large
+from tiled import check_tiled
 
 FELT, CANVAS = (sw.goods()[name] for name in ("wool felt", "canvas"))
 CASES = {
@@ -45,13 +44,7 @@ def test_the_goods_hold_every_piece_with_its_allowance(made):
 
 def test_halved_pieces_are_disks_that_tile_the_form_and_fit(made):
     form, pattern = made
-    for piece in pattern.pieces:
-        part = Surface(piece.points, piece.triangles)
-        assert part.euler == 1 and part.triangle_components[0] == 1 and len(part.boundary_loops) == 1
-        assert piece.flat_areas.min() > 0
-    source = np.concatenate([piece.source for piece in pattern.pieces])
-    sizes = np.concatenate([piece.areas for piece in pattern.pieces])
-    np.testing.assert_allclose(np.bincount(source, sizes, minlength=len(form.triangles)), areas(form.surface), rtol=1e-9)
+    check_tiled(form, pattern)
     assert pattern.fits
     by_name = {piece.name: piece for piece in pattern.pieces}
     for seam in pattern.seams:

@@ -9,12 +9,12 @@ from forms import ellipsoid, frustum, globe, icosphere, together, torus, wrapped
 from scipy.sparse import coo_matrix
 from scipy.sparse.csgraph import dijkstra
 from seamwright.form.measure import areas
-from seamwright.form.surface import Surface
 from seamwright.seams.cut import cut_by_fields
 from seamwright.seams.fields import from_labels
 from seamwright.seams.held import ALIKE, Held
 from seamwright.seams.ladder import Ladder
 from seamwright.seams.network import cut_through
+from tiled import check_tiled
 
 BALL = icosphere(3)
 RING = torus(1.0, 0.4, 30, 16)[0], wrapped_grid(30, 16)
@@ -92,13 +92,7 @@ def test_every_held_edge_is_a_seam(made):
 
 def test_pieces_are_flat_disks_that_tile_the_form(made):
     form, _, pattern = made
-    for piece in pattern.pieces:
-        part = Surface(piece.points, piece.triangles)
-        assert part.euler == 1 and part.triangle_components[0] == 1 and len(part.boundary_loops) == 1
-        assert piece.flat_areas.min() > 0
-    source = np.concatenate([piece.source for piece in pattern.pieces])
-    sizes = np.concatenate([piece.areas for piece in pattern.pieces])
-    np.testing.assert_allclose(np.bincount(source, sizes, minlength=len(form.triangles)), areas(form.surface), rtol=1e-9)
+    check_tiled(form, pattern)
 
 
 def test_both_sides_of_a_seam_are_the_same_line_on_the_form(made):

@@ -39,8 +39,7 @@ def test_every_union_is_a_disk(start):
 
 def test_gains_match_an_evaluation_of_each_merge(start):
     level, found = start
-    merging = Merging(level, 0.1, "square")
-    merging.begin(found.count)
+    merging = Merging(level, 0.1, "square", found.count)
     for _ in range(3):  # merges keep what was learnt before them
         roots = unions(level, found.cut.labels)
         gains = merging.gains(found.cut, found.cost, roots)

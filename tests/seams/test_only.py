@@ -15,6 +15,7 @@ from seamwright.seams.ladder import Ladder
 from seamwright.seams.only import PATCH, REST, grown
 from test_held import shares_that_are_seams, way
 from test_shut import check_free
+from tiled import share_covered
 
 BALL = icosphere(3)
 GLOBE = globe(24, 12)
@@ -53,13 +54,6 @@ def covered(name, route):
 @pytest.fixture(params=[(name, route) for name in CASES for route in ("through", "edges")], name="made", ids="-".join)
 def any_pattern(request):
     return covered(*request.param)
-
-
-def share_covered(form, pattern):
-    """(t,) share of each of the form's triangles that the pieces cover."""
-    source = np.concatenate([piece.source for piece in pattern.pieces])
-    sizes = np.concatenate([piece.areas for piece in pattern.pieces])
-    return np.bincount(source, sizes, minlength=len(form.triangles)) / areas(form.surface)
 
 
 def test_the_given_faces_are_covered_once_and_little_more(made):

@@ -14,7 +14,6 @@ from seamwright.seams.topology import (
     make_disks,
     merged,
     nearer,
-    point_labels,
     regions,
     split_components,
     voronoi,
@@ -159,15 +158,6 @@ def test_voronoi_cells_are_the_nearest():
     assert sorted(set(owner.tolist())) == list(range(9))
     assert (split_components(level.surface, owner).max() + 1) == 9  # along edges every cell is connected
     assert voronoi(level, 9).tolist() == owner.tolist()
-
-
-def test_points_take_the_label_of_most_of_their_triangles():
-    surface = level_of(icosphere(2)).surface
-    labels = np.random.default_rng(0).integers(0, 3, len(surface.triangles))
-    got = point_labels(surface, labels)
-    for point in range(0, len(surface.points), 11):
-        votes = np.bincount(labels[(surface.triangles == point).any(axis=1)], minlength=3)
-        assert got[point] == votes.argmax()
 
 
 def test_points_that_no_place_reaches_go_to_the_first():

@@ -7,6 +7,7 @@ from scipy.sparse import csr_matrix
 from scipy.sparse.csgraph import connected_components, dijkstra
 
 from .measure import open_points, total_area, vertex_areas, vertex_normals
+from .nearest import closest_on_triangles
 from .surface import Surface
 
 CREASE = 1.0
@@ -42,21 +43,10 @@ class Coarse:
         row = np.repeat(np.arange(len(points)), many)
         at = (np.cumsum(around) - around)[self.owner[row]] + np.arange(len(row)) - first[row]
         chosen = triangles[corner[at] // 3]
-        share = _shares(points[row], self.surface.points[chosen])
-        off = np.linalg.norm(points[row] - np.einsum("rk,rkx->rx", share, self.surface.points[chosen]), axis=1)
+        share, off = closest_on_triangles(points[row], self.surface.points[chosen])
         best = np.lexsort((off, row))[first]
         ends = np.arange(0, share[best].size + 1, 3)
         return csr_matrix((share[best].ravel(), chosen[best].ravel(), ends), shape=(len(points), count))
-
-
-def _shares(points, corners):
-    """(r, 3) barycentric coordinates of points (r, 3) over triangles (r, 3, 3), those outside brought to their edge."""
-    b, c, p = corners[:, 1] - corners[:, 0], corners[:, 2] - corners[:, 0], points - corners[:, 0]
-    bb, bc, cc, pb, pc = ((x * y).sum(axis=1) for x, y in ((b, b), (b, c), (c, c), (p, b), (p, c)))
-    area = np.maximum(bb * cc - bc * bc, 1e-12 * bb * cc + 1e-300)
-    share = np.column_stack([cc * pb - bc * pc, bb * pc - bc * pb]) / area[:, None]
-    share = np.maximum(np.column_stack([1 - share.sum(axis=1), share]), 0.0)
-    return share / share.sum(axis=1, keepdims=True)
 
 
 def coarsen(surface, count, seed=0):

@@ -39,16 +39,13 @@ def merges(level, labels):
 class Merging:
     """What merges would cost, as their regions' numbers change from one merge to the next.
 
-    The distortion of a union is its own affair, so unions that share no region are evaluated together, and kept.
+    The distortion of a union is its own affair, so unions that share no region are evaluated together, and kept. count: of
+    regions to begin with.
     """
 
-    def __init__(self, level, thrift, energy):
+    def __init__(self, level, thrift, energy, count):
         self.level, self.thrift, self.energy = level, thrift, energy
-        self.parts, self.known = None, {}
-
-    def begin(self, count):
-        """Start with `count` regions."""
-        self.parts = [frozenset([region]) for region in range(count)]
+        self.parts, self.known = [frozenset([region]) for region in range(count)], {}
 
     def merge(self, root):
         """Tell that the merge `root` (K,) was made."""

@@ -49,7 +49,7 @@ class Found:
         return redistance(self.level, self.cut, self.count)
 
 
-def flow(level, fields, thrift, energy="square", weights=None, steps=20, emphasis=None):
+def flow(level, fields, thrift, energy="square", steps=20, emphasis=None):
     """Flow, then put the topology right (disks, no specks), and flow again as long as that changed it. Returns Found."""
     cut = cut_by_fields(level.surface, fields, level.labels(fields))
     labels = tidied(level, cut.labels)
@@ -57,26 +57,23 @@ def flow(level, fields, thrift, energy="square", weights=None, steps=20, emphasi
         if turn or not np.array_equal(labels, cut.labels):
             cut = recut(level.surface, cut, labels)
             fields = redistance(level, cut, int(labels.max()) + 1)
-        if weights is not None and len(weights) != fields.shape[1]:
-            weights = None
-        end = descend(level, fields, thrift, energy, weights, steps, emphasis=emphasis)
+        end = descend(level, fields, thrift, energy, steps=steps, emphasis=emphasis)
         cut, labels = end.cut, tidied(level, end.cut.labels)
         if np.array_equal(labels, cut.labels):
             return Found(level, cut, end.cost, end.converged)
     return settle(level, cut, labels, thrift, energy, converged=end.converged)
 
 
-def settle(level, cut, labels, thrift, energy="square", weights=None, converged=True):
+def settle(level, cut, labels, thrift, energy="square", converged=True):
     """Found for labels (n,) that differ from a cut's own in places."""
     cut = recut(level.surface, cut, labels)
-    return Found(level, cut, evaluate(level, cut, thrift, energy, weights, gradient=False), converged)
+    return Found(level, cut, evaluate(level, cut, thrift, energy, gradient=False), converged)
 
 
 def simplify(level, found, thrift, energy="square", pieces=None):
     """Merge neighbours while that lowers the score (or while there are more than the wished pieces)."""
     least = max(2 if level.free.all() else 1, pieces or 1)
-    merging = Merging(level, thrift, energy)
-    merging.begin(found.count)
+    merging = Merging(level, thrift, energy, found.count)
     while found.count > least:
         labels = found.cut.labels
         roots = [root for root in unions(level, labels) if len(np.unique(root)) >= least]
@@ -176,9 +173,10 @@ def through_tips(points, found, thrift, energy, pieces=None):
         weight = points.emphasis(amount)
         trial = flow(level, trial.fields, thrift, energy, steps=steps_on(level), emphasis=weight[rung])
         fewer = points.missed(trial.fields).sum() < points.missed(found.fields).sum()
-        plain = settle(level, trial.cut, trial.cut.labels, thrift, energy, converged=trial.converged)
-        if fewer and plain.score <= most and (pieces is None or trial.count == found.count):
-            found, emphasis = plain, weight
+        if fewer and (pieces is None or trial.count == found.count):
+            plain = settle(level, trial.cut, trial.cut.labels, thrift, energy, converged=trial.converged)
+            if plain.score <= most:
+                found, emphasis = plain, weight
     return found, emphasis
 
 
@@ -189,5 +187,7 @@ def steps_on(level):
 
 def _best(pool, pieces):
     """The networks, the best first, of those alike only one."""
-    ranked = sorted(pool, key=lambda found: (0 if pieces is None else abs(found.count - pieces), found.score))
-    return list({found.cut.labels.tobytes(): found for found in reversed(ranked)}.values())[::-1]
+    first = {}
+    for found in sorted(pool, key=lambda found: (0 if pieces is None else abs(found.count - pieces), found.score)):
+        first.setdefault(found.cut.labels.tobytes(), found)
+    return list(first.values())

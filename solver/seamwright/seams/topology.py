@@ -184,16 +184,3 @@ def _distance(graph, seeds):
     place = np.zeros(graph.shape[0], dtype=np.int64)
     place[seeds] = np.arange(len(seeds))
     return np.where(np.isfinite(gap), gap, 1e6), np.where(source >= 0, place[np.maximum(source, 0)], 0)
-
-
-def point_labels(surface, triangle_labels):
-    """(n,) for each point the label that most of its triangles bear (the smallest of equals)."""
-    count = int(triangle_labels.max()) + 1
-    n = len(surface.points)
-    key = surface.triangles.ravel() * count + np.repeat(triangle_labels, 3)
-    keys, votes = np.unique(key, return_counts=True)
-    order = np.lexsort((keys % count, -votes, keys // count))
-    first = np.unique(keys[order] // count, return_index=True)
-    labels = np.zeros(n, dtype=np.int64)
-    labels[first[0]] = keys[order][first[1]] % count
-    return labels

@@ -105,7 +105,7 @@ def _quads(function, low, high, cells):
     low = low - 0.37 * step  # no grid plane along a flat side, where the sign would be rounding
     shape = np.ceil((high - low) / step).astype(int) + 1
     axes = [low[a] + step * np.arange(shape[a]) for a in range(3)]
-    inside = function(*np.meshgrid(*axes, indexing="ij")) < 0
+    inside = _filled(function(*np.meshgrid(*axes, indexing="ij")))
     quads = []
     for axis in range(3):
         change = np.diff(inside.astype(np.int8), axis=axis)
@@ -117,6 +117,25 @@ def _quads(function, low, high, cells):
         quads.append(around)
     cell, where = np.unique(np.concatenate(quads).reshape(-1, 3), axis=0, return_inverse=True)
     return low + step * (cell + 0.5), where.reshape(-1, 4)
+
+
+def _filled(value):
+    """Which grid points count as inside: those of negative value, and more where these meet in a diagonal alone, as in a
+    crotch narrower than the grid: an edge of the surface would have four faces there."""
+    inside = value < 0
+    low, high = slice(None, -1), slice(1, None)
+    corners = (low, low), (high, high), (low, high), (high, low)
+    while True:
+        more = np.zeros_like(inside)
+        for axes in ((0, 1), (1, 2), (2, 0)):
+            near, level, added = (np.moveaxis(grid, axes, (0, 1)) for grid in (inside, value, more))
+            for a, b, c, d in (corners, corners[2:] + corners[:2]):
+                meet = near[a] & near[b] & ~near[c] & ~near[d]
+                added[c] |= meet & (level[c] <= level[d])
+                added[d] |= meet & (level[d] < level[c])
+        if not more.any():
+            return inside
+        inside |= more
 
 
 def _drawn(function, points, step, turns=8):

@@ -33,7 +33,7 @@ class Job:
         request = {"path": sys.path, "name": reading.name, "wishes": asked, "save": save}
         (folder / "request.json").write_text(json.dumps(request), encoding="utf-8")
         np.savez(folder / "form.npz", points=reading.points, corners=reading.corners, sizes=reading.sizes,
-                 keep_clear=reading.keep_clear, held=reading.held)
+                 **{name: getattr(reading, name) for name in worker.DRAWN})
         command = [sys.executable, *bpy.app.python_args, worker.__file__, str(folder)]
         # messages go through a file, which every system can read without waiting
         with open(folder / "messages.txt", "wb") as out, open(self._errors, "wb") as errors:

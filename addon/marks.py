@@ -4,7 +4,7 @@ import numpy as np
 
 from . import names
 from .lay import lay
-from .read import edges, faces, held
+from .read import edges, faces, flags
 
 
 def mark(mesh, pattern):
@@ -59,23 +59,25 @@ def set_seams(mesh, flags):
     mesh.update()
 
 
-def set_held(mesh, flags):
-    """Make (e,) bool the edges' attribute of held seams; None takes it off."""
-    old = mesh.attributes.get(names.HELD)
-    if old is not None:
-        mesh.attributes.remove(old)
-    if flags is not None:
-        mesh.attributes.new(names.HELD, "BOOLEAN", "EDGE").data.foreach_set("value", flags)
+def set_flags(mesh, name, domain, values):
+    """Make (k,) bool the attribute `name` of the mesh's edges (domain "EDGE") or faces ("FACE")."""
+    forget(mesh, name)
+    mesh.attributes.new(name, "BOOLEAN", domain).data.foreach_set("value", values)
+
+
+def forget(mesh, name):
+    """Take an attribute off the mesh, where it has one of that name."""
+    if attribute := mesh.attributes.get(name):
+        mesh.attributes.remove(attribute)
 
 
 def clear(mesh):
     """Take off everything `mark` puts on; held seams stay marked."""
-    set_seams(mesh, held(mesh))
+    set_seams(mesh, flags(mesh, names.HELD, "EDGE"))
     if layer := mesh.uv_layers.get(names.UV_MAP):
         mesh.uv_layers.remove(layer)
     for name in (names.PIECE, names.STRETCH):
-        if attribute := mesh.attributes.get(name):
-            mesh.attributes.remove(attribute)
+        forget(mesh, name)
 
 
 def _spots(form):
@@ -101,7 +103,7 @@ def _by_face(form, values, count, missing):
 
 
 def _seam_edges(mesh, pattern):
-    """(e,) bool: the mesh's edges where two edges of pieces are joined."""
+    """(e,) bool: the mesh's edges where two edges of pieces are joined, or where a piece ends before faces not covered."""
     form = pattern.form
     spot_of, count = _spots(form)
 

@@ -11,6 +11,8 @@ UV_MAP = "Seamwright"
 PIECE = "seamwright_piece"
 STRETCH = "seamwright_stretch"
 HELD = "seamwright_held"
+SHUT = "seamwright_shut"
+ONLY = "seamwright_only"
 
 # materials of the covered copy, followed by a number
 MATERIAL = "Seamwright"
@@ -23,6 +25,10 @@ SAVE = "seamwright.save_sheets"
 CLEAR = "seamwright.clear"
 HOLD = "seamwright.hold_seams"
 LET_GO = "seamwright.let_go_seams"
+SHUT_EDGES = "seamwright.shut_edges"
+OPEN_EDGES = "seamwright.open_edges"
+COVER_ONLY = "seamwright.cover_only"
+COVER_ALL = "seamwright.cover_all"
 
 # panels and lists
 FORM_PANEL = "SEAMWRIGHT_PT_form"

@@ -70,10 +70,14 @@ class SEAMWRIGHT_PT_wishes(_Tab, bpy.types.Panel):
             layout.prop(wishes, "cut_itself")
         layout.prop(wishes, "symmetry")
         layout.prop_search(wishes, "keep_clear", context.object, "vertex_groups")
-        row = layout.row(align=True)
-        row.operator(names.HOLD, icon="PINNED")
-        if names.HELD in context.object.data.attributes:
-            row.operator(names.LET_GO, text="", icon="X")
+        for attribute, draw, icon, forget in (
+                (names.HELD, names.HOLD, "PINNED", names.LET_GO),
+                (names.SHUT, names.SHUT_EDGES, "LOCKED", names.OPEN_EDGES),
+                (names.ONLY, names.COVER_ONLY, "FACESEL", names.COVER_ALL)):
+            row = layout.row(align=True)
+            row.operator(draw, icon=icon)
+            if attribute in context.object.data.attributes:
+                row.operator(forget, text="", icon="X")
         self._chosen(layout, wishes, "choose_pieces", "pieces")
         self._chosen(layout, wishes, "choose_thrift", "thrift")
         row = layout.row()

@@ -12,7 +12,7 @@ class Reading:
     """One object's surface as the solver wants it.
 
     points (n, 3) metres; corners (c,) point indices of all faces, face after face; sizes (f,) corners of each face;
-    keep_clear (n,) and held (k, 2) the wishes of these names, empty where nothing is painted or held.
+    keep_clear (n,), held (k, 2), shut (k, 2) and only (f,) the wishes of these names, empty where nothing is wished.
     """
 
     name: str
@@ -21,6 +21,8 @@ class Reading:
     sizes: np.ndarray
     keep_clear: np.ndarray
     held: np.ndarray
+    shut: np.ndarray
+    only: np.ndarray
 
     @property
     def faces(self):
@@ -46,14 +48,15 @@ def read(thing, scene, depsgraph, keep_clear=""):
         points = positions(mesh).astype(float)
         corners, sizes = faces(mesh)
         clear = _keep_clear(mesh, evaluated.vertex_groups.get(keep_clear))
-        kept = edges(mesh)[held(mesh)]
+        held, shut = (edges(mesh)[flags(mesh, name, "EDGE")] for name in (names.HELD, names.SHUT))
+        only = flags(mesh, names.ONLY, "FACE") if names.ONLY in mesh.attributes else np.zeros(0, bool)
     finally:
         evaluated.to_mesh_clear()
     matrix = np.array(evaluated.matrix_world)
     points = (points @ matrix[:3, :3].T + matrix[:3, 3]) * scene.unit_settings.scale_length
     if thing.matrix_world.is_negative:
         corners = _turned(corners, sizes)
-    return Reading(thing.name, points, corners, sizes, clear, kept)
+    return Reading(thing.name, points, corners, sizes, clear, held, shut, only)
 
 
 def positions(mesh):
@@ -79,12 +82,20 @@ def seams(mesh):
     return flags
 
 
-def held(mesh):
-    """(e,) bool: edges that are held seams."""
-    flags, attribute = np.zeros(len(mesh.edges), bool), mesh.attributes.get(names.HELD)
-    if attribute is not None and (attribute.domain, attribute.data_type) == ("EDGE", "BOOLEAN"):
-        attribute.data.foreach_get("value", flags)
-    return flags
+def flags(mesh, name, domain):
+    """(k,) bool: the attribute `name` of the mesh's edges (domain "EDGE") or faces ("FACE"); False where there is none."""
+    found = np.zeros(len(mesh.edges if domain == "EDGE" else mesh.polygons), bool)
+    attribute = mesh.attributes.get(name)
+    if attribute is not None and (attribute.domain, attribute.data_type) == (domain, "BOOLEAN"):
+        attribute.data.foreach_get("value", found)
+    return found
+
+
+def selected(things):
+    """(k,) bool: which of a mesh's edges or faces are selected."""
+    found = np.empty(len(things), bool)
+    things.foreach_get("select", found)
+    return found
 
 
 def faces(mesh):

@@ -56,6 +56,9 @@ def _check_cut(thing):
     if mesh.shape_keys is not None:
         raise Refused(f"{thing.name}: its shape keys would be lost with the points they move. "
                       f"Apply them first (Object Data > Shape Keys > Apply All Shape Keys), {copy}")
+    if names.ONLY in mesh.attributes:
+        raise Refused(f"{thing.name}: only some of its faces are to be covered, and the others would be lost. "
+                      f"Cover all of them, {copy}")
     if len(thing.modifiers):
         raise Refused(f"{thing.name}: its modifiers would work on the cut mesh once more. "
                       f"Apply them first (Object > Apply > Visual Geometry to Mesh), {copy}")

@@ -88,7 +88,7 @@ class WishesGroup(bpy.types.PropertyGroup):
         """The wishes as plain data, ready for JSON: keyword arguments of the solver's Wishes, and of our own
         `own_goods`, a path, and `cut_itself`.
 
-        Only the weights to keep clear and the held seams are not among them: they come with the Reading.
+        Those drawn on the mesh (worker.DRAWN) are not among them: they come with the Reading.
         """
         axis = {"x": 0, "y": 1, "z": 2}.get(self.grain)
         return {

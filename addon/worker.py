@@ -14,9 +14,12 @@ import sys
 import threading
 from pathlib import Path
 
+DRAWN = ("keep_clear", "held", "shut", "only")
+"""Wishes that are drawn on the mesh; they come as arrays, empty where there is none."""
 
-def wishes_of(asked, keep_clear=(), held=()):
-    """The solver's Wishes from plain data as `WishesGroup.asked` gives it, weights and edges. Raises WishError."""
+
+def wishes_of(asked, drawn=None):
+    """The solver's Wishes from plain data as `WishesGroup.asked` gives it, and those DRAWN by name. Raises WishError."""
     import seamwright as sw
 
     plain = dict(asked)
@@ -24,7 +27,7 @@ def wishes_of(asked, keep_clear=(), held=()):
     plain.pop("cut_itself", None)  # where the answer goes is the host's affair
     if own:
         plain["goods"] = sw.read_goods(own)
-    return sw.Wishes(**plain, keep_clear=keep_clear if len(keep_clear) else None, held=held if len(held) else None)
+    return sw.Wishes(**plain, **{name: values for name, values in (drawn or {}).items() if len(values)})
 
 
 def say(**message):
@@ -42,10 +45,10 @@ def work(folder):
     try:
         with np.load(folder / "form.npz") as arrays:
             points, corners, sizes = (arrays[key] for key in ("points", "corners", "sizes"))
-            wished = arrays["keep_clear"], arrays["held"]
+            drawn = {name: arrays[name] for name in DRAWN}
         faces = corners.reshape(-1, 3) if (sizes == 3).all() else np.split(corners, np.cumsum(sizes)[:-1])
         form = sw.Form(points, faces, name=request["name"])
-        wishes = wishes_of(request["wishes"], *wished)
+        wishes = wishes_of(request["wishes"], drawn)
         pattern = sw.cover(form, wishes, lambda share, words: say(share=float(share), words=words))
         if request["save"]:
             pattern.save(**request["save"])

@@ -78,6 +78,7 @@ class SEAMWRIGHT_PT_wishes(_Tab, bpy.types.Panel):
             row.operator(draw, icon=icon)
             if attribute in context.object.data.attributes:
                 row.operator(forget, text="", icon="X")
+        layout.prop(wishes, "improve")
         self._chosen(layout, wishes, "choose_pieces", "pieces")
         self._chosen(layout, wishes, "choose_thrift", "thrift")
         row = layout.row()

@@ -12,7 +12,7 @@ class Reading:
     """One object's surface as the solver wants it.
 
     points (n, 3) metres; corners (c,) point indices of all faces, face after face; sizes (f,) corners of each face;
-    keep_clear (n,), held (k, 2), shut (k, 2) and only (f,) the wishes of these names, empty where nothing is wished.
+    keep_clear (n,), held, shut and start (k, 2), only (f,): the wishes of these names, empty where nothing is wished.
     """
 
     name: str
@@ -23,6 +23,7 @@ class Reading:
     held: np.ndarray
     shut: np.ndarray
     only: np.ndarray
+    start: np.ndarray
 
     @property
     def faces(self):
@@ -37,10 +38,10 @@ class Reading:
                 and np.array_equal(self.sizes, other.sizes))
 
 
-def read(thing, scene, depsgraph, keep_clear=""):
+def read(thing, scene, depsgraph, keep_clear="", improve=False):
     """The Reading of object `thing`: modifiers and shape keys applied, in the world, scaled by the scene's units.
 
-    keep_clear: name of the vertex group that is painted where seams are unwelcome.
+    keep_clear: name of the vertex group that is painted where seams are unwelcome; improve: the seams marked are a start.
     """
     evaluated = thing.evaluated_get(depsgraph)
     mesh = evaluated.to_mesh()
@@ -49,6 +50,7 @@ def read(thing, scene, depsgraph, keep_clear=""):
         corners, sizes = faces(mesh)
         clear = _keep_clear(mesh, evaluated.vertex_groups.get(keep_clear))
         held, shut = (edges(mesh)[flags(mesh, name, "EDGE")] for name in (names.HELD, names.SHUT))
+        start = edges(mesh)[seams(mesh) & improve]
         only = flags(mesh, names.ONLY, "FACE") if names.ONLY in mesh.attributes else np.zeros(0, bool)
     finally:
         evaluated.to_mesh_clear()
@@ -56,7 +58,7 @@ def read(thing, scene, depsgraph, keep_clear=""):
     points = (points @ matrix[:3, :3].T + matrix[:3, 3]) * scene.unit_settings.scale_length
     if thing.matrix_world.is_negative:
         corners = _turned(corners, sizes)
-    return Reading(thing.name, points, corners, sizes, clear, held, shut, only)
+    return Reading(thing.name, points, corners, sizes, clear, held, shut, only, start)
 
 
 def positions(mesh):

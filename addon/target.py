@@ -33,6 +33,9 @@ def check(thing, asked, depsgraph):
     painted = group(thing).wishes.keep_clear
     if painted and painted not in thing.vertex_groups:
         raise Refused(f"{thing.name}: it has no vertex group {painted!r} to keep clear; choose another, or none.")
+    if group(thing).wishes.improve and not read.seams(thing.data).any():
+        raise Refused(f"{thing.name}: no edge is marked as a seam, so there is nothing to improve. Mark some (Edge > Mark "
+                      "Seam), or have seams found (Improve Marked Seams off).")
     if asked["goods"] == OWN and not asked["own_goods"]:
         raise Refused(f"{thing.name}: choose the file of your own goods.")
     if asked["cut_itself"] and asked["route"] == "through":
@@ -98,8 +101,9 @@ def take_off(thing):
 
 
 def read_form(thing, scene, depsgraph):
-    """The read.Reading of a form, with the weights its wishes name."""
-    return read.read(thing, scene, depsgraph, group(thing).wishes.keep_clear)
+    """The read.Reading of a form, with the wishes drawn on it."""
+    wishes = group(thing).wishes
+    return read.read(thing, scene, depsgraph, wishes.keep_clear, wishes.improve)
 
 
 def lay_in(thing, pattern, path, asked, scene):

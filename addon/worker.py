@@ -14,7 +14,7 @@ import sys
 import threading
 from pathlib import Path
 
-DRAWN = ("keep_clear", "held", "shut", "only")
+DRAWN = ("keep_clear", "held", "shut", "only", "start")
 """Wishes that are drawn on the mesh; they come as arrays, empty where there is none."""
 
 

@@ -39,6 +39,9 @@ def _check_start(form, start):
             raise WishError(f"start: the pattern is of another form ('{start.form.name}'). Give one of this form, or labels "
                             "of its faces.")
         return
+    if np.ndim(start) == 2:
+        edges_asked(form, "start", start)
+        return
     labels = np.asarray(start)
     if labels.shape != (form.face_count,):
         raise WishError(f"start: {labels.size} labels for a form of {form.face_count} faces. Give one for each face.")

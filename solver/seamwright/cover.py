@@ -5,7 +5,7 @@ from dataclasses import replace
 import numpy as np
 from threadpoolctl import threadpool_limits
 
-from .asked import check, held_edges, patches_allow, planes_of, prices_allow, shared_out, shut_edges
+from .asked import check, edges_asked, held_edges, patches_allow, planes_of, prices_allow, shared_out, shut_edges
 from .assemble import assemble
 from .errors import CoverError
 from .fit.foresee import reach, stretch_weight
@@ -22,6 +22,7 @@ from .parts import parts_of
 from .pattern import Pattern
 from .seams.begun import network_of_labels, network_of_pattern, triangle_labels
 from .seams.ladder import Ladder
+from .seams.network import Network
 from .seams.only import BORDER, along_edges, grown, through_faces
 from .seams.opened import opened
 from .seams.prices import NEVER, seam_prices
@@ -167,6 +168,11 @@ def _begun(form, part, wishes, notes):
         network = replace(network, surface=Surface(points, network.surface.triangles))
         if part.held.edges.any():
             network = opened(part.held.opened_network(network))
+    elif np.ndim(wishes.start) == 2:
+        marked = np.zeros(len(form.surface.edges), dtype=bool)
+        marked[edges_asked(form, "start", wishes.start)] = True
+        seam = part.edges_of(form, marked) & ~part.surface.open_edges
+        network = opened(Network(part.surface, seam, np.arange(len(part.triangles))), ~part.diagonal)
     else:
         labels = np.unique(wishes.start, return_inverse=True)[1].ravel()[form.polygon][part.triangles]
         network = network_of_labels(part.surface, labels, ~part.diagonal)

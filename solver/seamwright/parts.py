@@ -75,7 +75,7 @@ class Part(Ground):
         self.points = points[self.held.origin]
         self.price = prices[self.points]
         self.polygon = np.unique(form.polygon[triangles], return_inverse=True)[1].ravel()
-        self.shut = self.held.at_opened(_edges_of_part(form, triangles, whole, shut))
+        self.shut = self.edges_of(form, shut)
         self.patch = self.bound = None
         if self.shut.any():
             beside = self.polygon[self.surface.edge_triangles[self.shut]]
@@ -84,6 +84,10 @@ class Part(Ground):
             one = np.where(self.bound < 0, self.polygon, self.polygon.max() + 1 + self.bound)
             self.polygon = np.unique(one, return_inverse=True)[1].ravel()
         self.diagonal = _within(self.surface, self.polygon)
+
+    def edges_of(self, form, values):
+        """(e,) of this part's surface: what values (k,) say of the edges of the form's own."""
+        return self.held.at_opened(_edges_of_part(form, self.triangles, self.held.surface, values))
 
 
 def _within(surface, polygon):

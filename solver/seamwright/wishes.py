@@ -24,7 +24,8 @@ class Wishes:
     "hencky" or (j, dj/du), functions of an array; it counts where thrift, pieces or start is given. symmetry: "auto",
     "none" or a list of planes (point, normal), metres, at right angles. keep_clear: (n,) weights of the caller's points, 0
     free, 1 twice the price, inf never. held, shut: (k, 2) point pairs that are, or may not be, seams. start: a Pattern of
-    the form or (m,) face labels, improved: with thrift the total never rises, without it neither length nor distortion does.
+    the form, (m,) face labels or (k, 2) point pairs that are its seams, improved: with thrift the total never rises, without
+    it neither length nor distortion does.
     only: (m,) bool of the faces to cover, with as little more as serves. pieces: a wished number. route: "through" faces or
     along "edges". grain: a direction on the form. thickness_side: "outside" where the goods lie on the outside of the form,
     "inside" where its surface is to be their outer face: pieces are then measured in the middle of the goods' thickness;
@@ -76,6 +77,8 @@ class Wishes:
         for name in ("held", "shut"):
             if getattr(self, name) is not None:
                 _check_pairs(name, getattr(self, name))
+        if _depth("start", self.start) == 2:
+            _check_pairs("start", self.start)
 
 
 def _number(name, value, low, high):
@@ -94,6 +97,14 @@ def _numbers(name, value, wanted):
         return np.asarray(value, dtype=float)
     except (TypeError, ValueError) as error:
         raise WishError(f"{name}: {value!r:.60} is not {wanted}.") from error
+
+
+def _depth(name, value):
+    """Number of dimensions of the value as an array."""
+    try:
+        return np.ndim(value)
+    except ValueError as error:
+        raise WishError(f"{name}: {value!r:.60} is neither a label for each face nor pairs of point numbers.") from error
 
 
 def _check_pairs(name, value):

@@ -156,6 +156,34 @@ def test_only_selected_faces_are_covered(ball, route):
         assert sum(face.area for face in result.copy.data.polygons) == pytest.approx(covered, rel=1e-5)
 
 
+def test_marked_seams_are_improved(ball, reading):
+    """A crooked ring, without a thrift: neither length nor stretch grows; on route edges again and again."""
+    wishes = ball.seamwright.wishes
+    wishes.route, wishes.improve, wishes.choose_thrift = "edges", True, False
+    with pytest.raises(RuntimeError, match="Ball: no edge is marked as a seam, so there is nothing to improve"):
+        bpy.ops.seamwright.cover()
+    points = [vertex.co for vertex in ball.data.vertices]
+    upper = [face.center.z + 0.5 * face.center.x > 0.06 for face in ball.data.polygons]
+    sides = {}
+    for face in ball.data.polygons:
+        for key in face.edge_keys:
+            sides.setdefault(key, set()).add(upper[face.index])
+    border = {key for key, both in sides.items() if len(both) == 2}
+    for edge in ball.data.edges:
+        edge.use_seam = edge.key in border
+    assert set(map(tuple, np.sort(reading(ball).start, axis=1).tolist())) == border
+
+    def metres():
+        return sum((points[a] - points[b]).length for a, b in seams(ball.data))
+
+    before = metres()
+    bpy.ops.seamwright.cover()
+    assert len(ball.seamwright.result.pieces) == 2
+    assert metres() <= before * (1 + 1e-6)
+    wishes.improve = False
+    assert reading(ball).start.shape == (0, 2)
+
+
 def test_a_mesh_of_which_only_a_part_is_covered_is_not_cut_itself(ball):
     select(ball.data, faces=top_of(ball.data))
     cover_only()

@@ -11,7 +11,8 @@ from seamwright.seams.cut import cut_by_fields
 from seamwright.seams.energy import evaluate
 from seamwright.seams.fields import from_labels
 from seamwright.seams.ladder import Ladder
-from seamwright.seams.network import cut_through
+from seamwright.seams.network import Network, cut_through
+from seamwright.seams.opened import opened
 from seamwright.seams.seek import PIECE_PRICE
 from seamwright.seams.study import network_cost
 
@@ -120,6 +121,25 @@ def test_a_family_by_thrift(name, longer, less):
     distortions, lengths = np.array(family).T
     assert (np.diff(lengths) > -0.01 * lengths[1:]).all() and lengths[-1] > longer * lengths[0]
     assert (np.diff(distortions) < 0.01 * distortions[1:]).all() and distortions[-1] < less * distortions[0]
+
+
+def test_marked_edges_are_a_start():
+    """Edges between labels begin where the labels do; a slit is a start as well."""
+    surface, labels = egg().surface, oblique()
+    a, b = surface.edge_triangles.T
+    between = surface.edges[labels[a] != labels[b]]
+    by_labels, by_edges = covered(start=tuple(labels)), covered(start=tuple(map(tuple, between.tolist())))
+    assert len(by_edges.pieces) == len(by_labels.pieces)
+    for one, other in zip(by_edges.pieces, by_labels.pieces, strict=True):
+        np.testing.assert_array_equal(one.flat, other.flat)
+    upper = between[surface.points[between].mean(axis=1)[:, 0] > 0]
+    slit = sw.cover(egg(), sw.Wishes(goods="spandex", start=upper, thrift=0.3))
+    begun = opened(Network(surface, np.isin(surface.edge_index(surface.edges), surface.edge_index(upper)),
+                           np.arange(len(surface.triangles))))
+    before = network_cost(Ladder(surface), begun, 0.3)
+    assert begun.pieces[0] == 1
+    distortion, length = cost(slit)
+    assert distortion + 0.3 * length + PIECE_PRICE * (len(slit.pieces) - 1) <= before.total
 
 
 def test_a_wished_number_from_a_start():

@@ -11,8 +11,9 @@ from itertools import tee
 
 import numpy as np
 from seamwright.seams.fields import from_labels
+from seamwright.seams.flow import flow
 from seamwright.seams.ladder import Ladder
-from seamwright.seams.seek import flow, simplify
+from seamwright.seams.seek import simplify
 from seamwright.seams.study import network_cost
 from seamwright.seams.topology import voronoi
 

@@ -41,26 +41,42 @@ def middle_of(*cuts):
 
 
 def cut_mesh(surface, cut):
-    """(points, triangles, region of each triangle, seam segments), built face by face: every cut edge a new point, a middle
-    where three regions meet."""
+    """(points, triangles, region of each triangle, seam segments, the cuts around each middle), built face by face.
+
+    Every cut edge is a new point, and there is a middle where three regions meet.
+    """
     points = surface.points.tolist()
     at_edge = {}
     for edge, place in zip(cut.edge.tolist(), cut.place.tolist(), strict=True):
         a, b = surface.edges[edge].tolist()
         at_edge[a, b] = len(points)
         points.append(((1 - place) * surface.points[a] + place * surface.points[b]).tolist())
-    triangles, regions, segments = [], [], []
+    triangles, regions, segments, around = [], [], [], {}
 
     def between(a, b):
         return at_edge[min(a, b), max(a, b)]
 
+    def sewn(one, other):
+        return one != other and (cut.uncut is None or not cut.uncut[one, other])
+
     for face in surface.triangles.tolist():
         marks = [int(cut.labels[p]) for p in face]
-        if len(set(marks)) == 1:
+        seams = [sewn(marks[k], marks[(k + 1) % 3]) for k in range(3)]
+        if not any(seams):
             triangles.append(face)
             regions.append(marks[0])
-        elif len(set(marks)) == 2:
-            k = next(k for k in range(3) if marks.count(marks[k]) == 1)
+        elif seams.count(True) == 1:  # a dart's end in the middle
+            k = seams.index(True)
+            a, b, c = face[k], face[(k + 1) % 3], face[(k + 2) % 3]
+            p, q, r = between(a, b), between(b, c), between(c, a)
+            middle = len(points)
+            points.append(middle_of(*(np.array(points[k]) for k in (p, q, r))).tolist())
+            triangles += [[a, p, middle], [p, b, middle], [b, c, middle], [c, a, middle]]
+            regions += [int(cut.labels[a]), int(cut.labels[b]), int(cut.labels[b]), int(cut.labels[a])]
+            segments.append((p, middle))
+            around[middle] = p, q, r
+        elif seams.count(True) == 2:
+            k = (seams.index(False) + 2) % 3
             a, b, c = face[k], face[(k + 1) % 3], face[(k + 2) % 3]
             p, q = between(a, b), between(a, c)
             triangles += [[a, p, q], [p, b, c], [p, c, q]]
@@ -74,7 +90,8 @@ def cut_mesh(surface, cut):
             triangles += [[a, p, middle], [a, middle, r], [b, q, middle], [b, middle, p], [c, r, middle], [c, middle, q]]
             regions += [marks[0], marks[0], marks[1], marks[1], marks[2], marks[2]]
             segments += [(p, middle), (q, middle), (r, middle)]
-    return np.array(points), np.array(triangles), np.array(regions), segments
+            around[middle] = p, q, r
+    return np.array(points), np.array(triangles), np.array(regions), segments, around
 
 
 def dense(points, triangles):
@@ -136,7 +153,7 @@ def slow_cost(level, cut, thrift, pair, weights):
     """
     surface = level.surface
     n = len(surface.points)
-    points, triangles, regions, segments = cut_mesh(surface, cut)
+    points, triangles, regions, segments, around = cut_mesh(surface, cut)
     stiffness, mass, parts = dense(points, triangles)
     rim = open_rim(surface.triangles)
     held = rim | set(range(n, len(points)))
@@ -155,11 +172,7 @@ def slow_cost(level, cut, thrift, pair, weights):
     for edge, place in zip(cut.edge.tolist(), cut.place.tolist(), strict=True):
         a, b = surface.edges[edge]
         price.append((1 - place) * level.price[a] + place * level.price[b])
-    meets = {}
-    for p, q in segments:
-        for one, other in ((p, q), (q, p)):
-            meets.setdefault(one, []).append(other)
     for middle in range(len(price), len(points)):
-        price.append(np.mean([price[p] for p in meets[middle]]))
+        price.append(np.mean([price[p] for p in around[middle]]))
     length = sum(0.5 * (price[p] + price[q]) * np.linalg.norm(points[q] - points[p]) for p, q in segments)
     return distortion, length, distortion + thrift * length, u[:n]

@@ -21,16 +21,31 @@ FORMS = {
 ENERGIES = {"square": "square", "dirichlet": "dirichlet", "hencky": "hencky", "the caller's own": OWN}
 
 
-@pytest.fixture(params=FORMS, name="case")
+@pytest.fixture(params=[*FORMS, "limbs with a dart", "torus with a dart"], name="case")
 def any_case(request):
-    """(level, fields, cut, weights): five cells with junctions, prices and weights at random."""
+    """(level, fields, cut, weights): five cells with junctions, prices and weights at random; some of one piece."""
+    name, _, dart = request.param.partition(" with ")
     chance = np.random.default_rng(7)
-    level = level_of(FORMS[request.param])
+    level = level_of(FORMS[name])
     level.price = chance.uniform(0.5, 2.0, len(level.price))
     fields = fields_of_cells(level, 5)
     cut = cut_by_fields(level.surface, fields)
     assert len(cut.three.face) >= 2
-    return level, fields, cut, chance.uniform(0.5, 2.0, 5)
+    weights = chance.uniform(0.5, 2.0, 5)
+    if dart:
+        uncut = beyond(level, cut, cut.three.face[:1])
+        cut = cut_by_fields(level.surface, fields, uncut=uncut)
+        assert len(cut.end.face) >= 1
+        weights[(uncut.any(axis=1))] = 1.3  # one piece, one weight
+    return level, fields, cut, weights
+
+
+def beyond(level, cut, faces):
+    """(K, K) bool: in each face, where three regions meet, the third is of one piece with the first two."""
+    uncut = np.zeros((int(cut.labels.max()) + 1,) * 2, dtype=bool)
+    for a, b, c in cut.labels[level.surface.triangles[faces]].tolist():
+        uncut[[a, c, b, c], [c, a, c, b]] = True
+    return uncut
 
 
 @pytest.mark.parametrize("energy", ENERGIES)
@@ -92,7 +107,7 @@ def test_slope_through_the_fields(case, energy):
         direction = np.random.default_rng(seed).normal(size=fields.shape) * np.abs(fields).mean()
         ends = []
         for step in (-1e-6, 1e-6):
-            moved = cut_by_fields(level.surface, fields + step * direction)
+            moved = cut_by_fields(level.surface, fields + step * direction, uncut=cut.uncut)
             assert (moved.labels == cut.labels).all()
             ends.append(evaluate(level, moved, 0.3, ENERGIES[energy], weights, gradient=False).total)
         assert (gradient * direction).sum() == pytest.approx((ends[1] - ends[0]) / 2e-6, rel=1e-6, abs=1e-7)

@@ -10,10 +10,10 @@ from seamwright.seams.begun import network_of_labels, network_of_pattern, point_
 from seamwright.seams.cut import cut_by_fields
 from seamwright.seams.energy import evaluate
 from seamwright.seams.fields import from_labels
+from seamwright.seams.flow import PIECE_PRICE
 from seamwright.seams.ladder import Ladder
 from seamwright.seams.network import Network, cut_through
 from seamwright.seams.opened import opened
-from seamwright.seams.seek import PIECE_PRICE
 from seamwright.seams.study import network_cost
 
 EGG = ellipsoid(1.0, 0.7, 0.5, 3)

@@ -6,8 +6,9 @@ from forms import ellipsoid, starfish, torus
 from parted import fields_of_cells, level_of
 from seamwright.seams.cut import cut_by_fields
 from seamwright.seams.energy import borders, evaluate
+from seamwright.seams.flow import PIECE_PRICE, settle
 from seamwright.seams.merging import Merging, joined, unions
-from seamwright.seams.seek import PIECE_PRICE, settle, simplify
+from seamwright.seams.seek import simplify
 from seamwright.seams.topology import regions
 
 FORMS = {"egg": ellipsoid(1.0, 0.7, 0.5, 4), "torus": torus(1.0, 0.4, 60, 30), "starfish": starfish(40)}

@@ -5,10 +5,10 @@ import pytest
 from forms import icosphere, limbs
 from seamwright.form.form import Form
 from seamwright.seams.cut import cut_by_fields
-from seamwright.seams.fields import redistance
+from seamwright.seams.flow import settle
 from seamwright.seams.ladder import Ladder
 from seamwright.seams.pointed import Points
-from seamwright.seams.seek import seek, settle, through_tips
+from seamwright.seams.seek import seek, through_tips
 
 CROSS = limbs([(1, 0, 0), (-1, 0, 0), (0, 1, 0), (0, -1, 0.0)], 0.22, 0.12, 0.06, 48)
 ENDS = np.array([(1, 0, 0), (-1, 0, 0), (0, 1, 0), (0, -1, 0)], dtype=float)
@@ -21,7 +21,7 @@ def cross_ladder():
 
 def test_a_sphere_has_no_tips():
     points = Points(Ladder(Form(*icosphere(4)).surface))
-    assert len(points.tips) == 0 and not points.missed(np.zeros((len(points.ladder.levels[points.rung].mass), 2))).any()
+    assert len(points.tips) == 0
 
 
 def test_the_corners_of_an_open_edge_are_no_tips():
@@ -48,9 +48,9 @@ def test_a_seam_beside_the_tips_is_brought_through_them(ladder):
     beside = np.column_stack([z - z.max() * 0.45, -z + z.max() * 0.45])  # a cut above the middle misses every tip
     cut = cut_by_fields(level.surface, beside)
     found = settle(level, cut, cut.labels, 0.1)
-    before = points.missed(redistance(level, cut, 2))
+    before = points.missed(found)
     after, emphasis = through_tips(points, found, 0.1, "square")
-    assert before.any() and points.missed(after.fields).sum() < before.sum()
+    assert before.any() and points.missed(after).sum() < before.sum()
     for level, weight in zip(ladder.levels, emphasis, strict=True):
         assert weight.min() >= 1 and weight.max() > 3
         tip = level.surface.points[weight.argmax()] / np.linalg.norm(level.surface.points[weight.argmax()])
@@ -62,4 +62,4 @@ def test_a_seam_beside_the_tips_is_brought_through_them(ladder):
 def test_the_whole_way_no_tip_is_missed(ladder):
     found, points = seek(ladder, 0.1), Points(ladder)
     assert points.rung == len(ladder.levels) - 1  # a small form: its tips are found on itself
-    assert not points.missed(redistance(found.level, found.cut, found.count)).any()
+    assert not points.missed(found).any()

@@ -44,7 +44,7 @@ def any_level(request):
 def surfaces_of(level, labels):
     """The Surface of every region of the mesh cut along the borders of labels, by plain loops."""
     one_hot = np.eye(int(labels.max()) + 1)[labels]
-    points, triangles, region, _ = cut_mesh(level.surface, cut_by_fields(level.surface, one_hot, labels))
+    points, triangles, region = cut_mesh(level.surface, cut_by_fields(level.surface, one_hot, labels))[:3]
     found = []
     for number in range(int(labels.max()) + 1):
         own = triangles[region == number]

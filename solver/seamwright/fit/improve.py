@@ -4,7 +4,8 @@ import numpy as np
 
 from ..seams.begun import point_shares
 from ..seams.fields import from_labels, smoothed
-from ..seams.seek import PIECE_PRICE, enriched, flow, simplify, steps_on
+from ..seams.flow import PIECE_PRICE, flow
+from ..seams.seek import enriched, simplify, steps_on
 from ..seams.starts import tidied
 from ..seams.study import network_cost
 

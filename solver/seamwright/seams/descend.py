@@ -26,17 +26,18 @@ class Descent:
     history: list
 
 
-def descend(level, fields, thrift, energy="square", weights=None, steps=30, tolerance=1e-4, emphasis=None):
+def descend(level, fields, thrift, energy="square", weights=None, steps=30, tolerance=1e-4, emphasis=None, uncut=None):
     """Flow until a step gains less than `tolerance` of the total twice running, or for `steps` steps. Returns a Descent.
 
+    uncut (K, K) bool: pairs of regions that are of one piece, None for none.
     Nocedal, Wright: Numerical Optimization, 7.2 (two-loop recursion); the metric is (M + l^2 L)^-1 on each field.
     """
     count = fields.shape[1]
-    cut = cut_by_fields(level.surface, fields, level.labels(fields))
+    cut = cut_by_fields(level.surface, fields, level.labels(fields), uncut)
     history, taken, small, stuck = [], 0, 0, 0
     while taken < steps and small < 2 and stuck < 2:
         fields, twins = _fields(level, cut, count)
-        cut = cut_by_fields(level.surface, fields, level.labels(fields))
+        cut = cut_by_fields(level.surface, fields, level.labels(fields), uncut)
         cost = evaluate(level, cut, thrift, energy, weights, emphasis=emphasis)
         history.append(cost.total)
         gradient = _gradient(level, cut, fields, cost, twins)
@@ -49,7 +50,7 @@ def descend(level, fields, thrift, energy="square", weights=None, steps=30, tole
             if twins is not None:
                 direction = level.symmetry.project_move(direction, twins)
             direction *= _allowed(level, cut, direction, first=not pairs)
-            step = _backtrack(level, fields, direction, gradient, cost, thrift, energy, weights, emphasis)
+            step = _backtrack(level, fields, direction, gradient, cost, thrift, energy, weights, emphasis, uncut)
             if step is None:
                 stuck += 1
                 break
@@ -113,12 +114,12 @@ def _allowed(level, cut, direction, first):
     return min(limit, 0.5 * level.edge_length / move) if first else min(limit, 1.0)
 
 
-def _backtrack(level, fields, direction, gradient, cost, thrift, energy, weights, emphasis):
+def _backtrack(level, fields, direction, gradient, cost, thrift, energy, weights, emphasis, uncut):
     slope = (direction * gradient).sum()
     share = 1.0
     for _ in range(8):
         trial = fields + share * direction
-        cut = cut_by_fields(level.surface, trial, level.labels(trial))
+        cut = cut_by_fields(level.surface, trial, level.labels(trial), uncut)
         new = evaluate(level, cut, thrift, energy, weights, emphasis=emphasis)
         if new.total <= cost.total + 1e-4 * share * slope:
             return trial, cut, new

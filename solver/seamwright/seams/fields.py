@@ -1,10 +1,13 @@
 """Per-region fields: signed distances from each region's border, so that every region can move against every other."""
 
+from dataclasses import replace
+
 import numpy as np
 from scipy.sparse import coo_matrix
 from scipy.sparse.csgraph import dijkstra
 
-from .nodes import seam_nodes
+from .cut import cut_faces
+from .nodes import seam_nodes, seam_sides
 
 REACH = 8.0  # edge lengths beyond which a distance no longer matters within one round
 
@@ -26,13 +29,12 @@ def redistance(level, cut, count):
     """
     n, reach = len(cut.labels), REACH * level.edge_length
     points, regions, near = [], [], []
-    for kind in (cut.two, cut.three):
-        if not len(kind.face):
-            continue
+    if cut.uncut is not None:  # borders that are no seams count like others
+        cut = replace(cut, **dict(zip(("two", "three", "end"), cut_faces(level.surface, cut.labels), strict=True)))
+    for kind in cut.kinds:
         nodes, whole = seam_nodes(level, cut, kind)
         around = cut.labels[whole]
-        for a, b in kind.seams:
-            sides = [0, 1] if len(kind.seams) == 1 else [a - 3, (a - 2) % 3]
+        for (a, b), sides in zip(kind.seams, seam_sides(kind), strict=True):
             for corner in range(3):
                 gap = _segment_distance(nodes[:, corner], nodes[:, a], nodes[:, b])
                 for side in sides:

@@ -150,15 +150,19 @@ def cut_through(level, cut, metric):
     number[cut.edge[cuts]] = len(surface.points) + np.arange(len(cuts))
     points = np.concatenate([
         surface.points, (surface.points[a] + place[:, None] * (surface.points[b] - surface.points[a]))[cuts]])
-    middle = _middles(surface, cut, number, len(points))
-    points = np.concatenate([points, middles(points[number[cut.three.edges]], NEAREST)])
+    middle = {}
+    for kind in (cut.three, cut.end):
+        middle[len(kind.seams)] = _middles(surface, kind, number, len(points))
+        points = np.concatenate([points, middles(points[number[kind.edges]], NEAREST)])
     keep = np.ones(len(surface.triangles), dtype=bool)
     triangles, source, owner = [], [], []
-    for kind in (cut.two, cut.three):
+    seamed = np.zeros(len(points), dtype=bool)  # points that a seam may run through
+    for kind in cut.kinds:
         keep[kind.face] = False
         whole = surface.triangles[kind.face[:, None], kind.corners]
-        nodes = [whole, number[kind.edges]] + ([middle[:, None]] if kind is cut.three else [])
+        nodes = [whole, number[kind.edges]] + ([] if kind is cut.two else [middle[len(kind.seams)][:, None]])
         nodes = np.concatenate(nodes, axis=1)
+        seamed[nodes[:, kind.seams]] = True
         parts = nodes[:, kind.table]
         if mirrors and kind is cut.two:
             other = _by_other_diagonal(surface, kind, points[nodes], mirrors)
@@ -178,16 +182,19 @@ def cut_through(level, cut, metric):
     triangles, source, region = triangles[whole], source[whole], region[whole]
     used, triangles = np.unique(triangles, return_inverse=True)
     fine = Surface(points[used] * metric, triangles.reshape(-1, 3))
-    sides = fine.edge_triangles
-    return Network(fine, ~fine.open_edges & (region[sides[:, 0]] != region[sides[:, 1]]), source)
+    one, other = region[fine.edge_triangles].T
+    seam = ~fine.open_edges & (one != other)
+    if cut.uncut is not None:
+        seam &= ~cut.uncut[one, other] & seamed[used][fine.edges].all(axis=1)
+    return Network(fine, seam, source)
 
 
-def _middles(surface, cut, number, first):
-    """(k,) number of the point where the three regions of a face meet: `first` and on, or that of a cut already there.
+def _middles(surface, kind, number, first):
+    """(k,) number of the point in the middle of each of a kind's faces: `first` and on, or that of a cut already there.
 
     Where one of the seams lies on a plane, the other two are one seam, and meet it where that reaches the plane.
     """
-    middle, edges = first + np.arange(len(cut.three.face)), cut.three.edges
+    middle, edges = first + np.arange(len(kind.face)), kind.edges
     for k in range(3):
         on = number[edges[:, k]] < len(surface.points)
         for other in (edges[:, (k + 1) % 3], edges[:, (k + 2) % 3]):
@@ -222,7 +229,7 @@ def _one_sided(level, cut):
         partner = mirror.partners(labels, count)
         right = np.where(lean[partner] > lean, partner, np.arange(count))
         labels = np.where(mirror.on, right[labels], labels)
-    cut = recut(level.surface, cut, labels)
+    cut = recut(level.surface, cut, labels, cut.uncut)
     for mirror in level.symmetry.mirrors if level.symmetry is not None else ():
         cut.place = _as_on_the_right(level.surface, cut, mirror)
     return cut

@@ -16,9 +16,8 @@ class Nodes:
     """
 
     def __init__(self, level, cut):
-        kinds = [kind for kind in (cut.two, cut.three) if len(kind.face)]
         parts, count = [], 0
-        for kind in kinds:
+        for kind in cut.kinds:
             parts.append(_laid_out(level, cut, kind, count))
             count += parts[-1]["point"].size
         for name, shape in SHAPES.items():
@@ -57,13 +56,13 @@ def _laid_out(level, cut, kind, first):
     place, whole = seam_nodes(level, cut, kind)
     faces, nodes = place.shape[:2]
     cuts = kind.edges.shape[1]
-    middle = nodes > 3 + cuts
+    middle = cuts == 3
     base = first + nodes * np.arange(faces)[:, None]
     point = np.full((faces, nodes), len(level.mass))
     point[:, :3] = whole
     corner = np.full((faces, nodes), 3)
     corner[:, :3] = kind.corners
-    sides = [[a - 3, (a - 2) % 3] for a, _ in kind.seams] if middle else [[0, 1]]
+    sides = seam_sides(kind)
     return {
         "place": place, "point": point, "corner": corner, "faces": kind.face,
         "face": np.repeat(kind.face, len(kind.table)), "table": base[:, :, None] + kind.table,
@@ -85,14 +84,19 @@ def seam_nodes(level, cut, kind):
     start, end = cut_ends(kind)
     points = corners[:, start] + share[:, :, None] * (corners[:, end] - corners[:, start])
     nodes = np.concatenate([corners, points], axis=1)
-    if len(kind.seams) == 3:
+    if kind.edges.shape[1] == 3:
         nodes = np.concatenate([nodes, middles(points)[:, None]], axis=1)
     return nodes, whole
 
 
+def seam_sides(kind):
+    """(s, 2) a corner on either side of each seam."""
+    return [[a - 3, (a - 2) % 3] for a, _ in kind.seams] if kind.edges.shape[1] == 3 else [[0, 1]]
+
+
 def cut_ends(kind):
     """(start, end) node of the corner each cut's share counts from and to."""
-    return ([0, 0], [1, 2]) if len(kind.seams) == 1 else ([0, 1, 2], [1, 2, 0])
+    return ([0, 0], [1, 2]) if kind.edges.shape[1] == 2 else ([0, 1, 2], [1, 2, 0])
 
 
 def place_on_edges(level, cut):

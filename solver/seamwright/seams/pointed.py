@@ -42,9 +42,14 @@ class Points:
         graph = coo_matrix((surface.edge_lengths, tuple(surface.edges.T)), shape=shape).tocsr()
         return dijkstra(graph, directed=False, indices=self.tips, limit=5 * REACH)
 
-    def missed(self, fields):
-        """(k,) bool: tips too far from the seams of fields (N, K) on the rung, signed distances from their borders."""
-        return fields[self.tips].max(axis=1) > MISSED
+    def missed(self, found):
+        """(k,) bool: tips too far from the seams of a Found on the rung."""
+        labels, uncut = found.cut.labels, found.cut.uncut
+        if uncut is None:  # the fields are signed distances from the regions' borders
+            return found.fields[self.tips].max(axis=1) > MISSED
+        ends = found.level.surface.edges[found.cut.edge]
+        beside = np.unique(ends[~uncut[tuple(labels[ends].T)]])
+        return self._gaps[:, beside].min(axis=1) > MISSED
 
     def emphasis(self, amount):
         """List with (N,) for every level: 1, and up to 1 + amount (k,) at the tips."""

@@ -40,9 +40,7 @@ def face_labels(level, cut, polygon):
     count, faces = int(cut.labels.max()) + 1, int(polygon.max()) + 1
     share = np.zeros((faces, count))
     whole = np.ones(len(polygon), dtype=bool)
-    for kind in (cut.two, cut.three):
-        if not len(kind.face):
-            continue
+    for kind in cut.kinds:
         whole[kind.face] = False
         nodes, corners = seam_nodes(level, cut, kind)
         lead = cut.labels[corners]

@@ -1,21 +1,16 @@
 """The network for a given thrift: several coarse starts, each flowed and simplified, the best carried up the ladder."""
 
-from dataclasses import dataclass
-from functools import cached_property
-
 import numpy as np
 
-from .cut import cut_by_fields, recut
-from .descend import descend
-from .energy import evaluate
-from .fields import from_labels, redistance
+from .cut import cut_by_fields
+from .darts import closed_up, opened_up
+from .fields import from_labels
+from .flow import COARSE, PIECE_PRICE, flow, settle
 from .merging import Merging, joined, unions
 from .pointed import MORE, Points
 from .starts import starts, tidied
 from .topology import through
 
-REPAIRS = 3  # flows, as long as regions had to be put right after the last
-PIECE_PRICE = 0.02  # fixed price of a piece, or specks pay
 TRIALS = ((0, 7), (6, 3))  # on the first rung: steps of flow for every network, then how many of the best go on
 MOST_PIECES = 40
 SPLIT_STEPS = 12  # of flow after a split
@@ -24,54 +19,13 @@ LAST_STEPS = 1
 DEAR = 1.05  # share of the score up to which seams may become dearer by running through tips
 
 
-@dataclass
-class Found:
-    """cut and cost on a level; score = total + the price of the pieces; converged: the flow came to rest."""
-
-    level: object
-    cut: object
-    cost: object
-    converged: bool = True
-
-    @property
-    def count(self):
-        """Number of regions."""
-        return int(self.cut.labels.max()) + 1
-
-    @property
-    def score(self):
-        """Total and the price of the pieces."""
-        return self.cost.total + PIECE_PRICE * self.count
-
-    @cached_property
-    def fields(self):
-        """(n, K) signed distances from the regions' borders."""
-        return redistance(self.level, self.cut, self.count)
-
-
-def flow(level, fields, thrift, energy="square", steps=20, emphasis=None):
-    """Flow, then put the topology right (disks, no specks), and flow again as long as that changed it. Returns Found."""
-    cut = cut_by_fields(level.surface, fields, level.labels(fields))
-    labels = tidied(level, cut.labels)
-    for turn in range(REPAIRS):
-        if turn or not np.array_equal(labels, cut.labels):
-            cut = recut(level.surface, cut, labels)
-            fields = redistance(level, cut, int(labels.max()) + 1)
-        end = descend(level, fields, thrift, energy, steps=steps, emphasis=emphasis)
-        cut, labels = end.cut, tidied(level, end.cut.labels)
-        if np.array_equal(labels, cut.labels):
-            return Found(level, cut, end.cost, end.converged)
-    return settle(level, cut, labels, thrift, energy, converged=end.converged)
-
-
-def settle(level, cut, labels, thrift, energy="square", converged=True):
-    """Found for labels (n,) that differ from a cut's own in places."""
-    cut = recut(level.surface, cut, labels)
-    return Found(level, cut, evaluate(level, cut, thrift, energy, gradient=False), converged)
-
-
 def simplify(level, found, thrift, energy="square", pieces=None):
-    """Merge neighbours while that lowers the score (or while there are more than the wished pieces)."""
+    """Merge neighbours while that lowers the score (or while there are more than the wished pieces).
+
+    Where there are darts already, they are left out while that lowers the score.
+    """
+    if found.cut.uncut is not None:
+        return closed_up(level, found, thrift, energy)
     least = max(2 if level.free.all() else 1, pieces or 1)
     merging = Merging(level, thrift, energy, found.count)
     while found.count > least:
@@ -82,7 +36,7 @@ def simplify(level, found, thrift, energy="square", pieces=None):
         gains = merging.gains(found.cut, found.cost, roots)
         rise = [gain + PIECE_PRICE * len(np.unique(root)) for gain, root in zip(gains, roots, strict=True)]
         best = roots[int(np.argmin(rise))]
-        trial = settle(level, found.cut, joined(labels, best), thrift, energy, converged=found.converged)
+        trial = settle(level, found.cut, joined(labels, best), thrift, energy, found.converged)
         if trial.score >= found.score and (pieces is None or found.count <= pieces):
             return found
         found = trial
@@ -139,24 +93,28 @@ def seek(ladder, thrift, energy="square", pieces=None, progress=None):
     if pieces is not None and all(found.count < pieces for found in pool):
         pool = [enriched(level, pool[0], thrift, energy, pieces)]
     points, emphasis = Points(ladder), [None] * len(levels)
+    darts = max(rung for rung, level in enumerate(levels) if rung == 0 or len(level.mass) <= COARSE)
     for rung, level in enumerate(levels):
         top = rung == len(levels) - 1
         if rung or top:  # the first rung is done, unless it is the form itself
-            fields = [ladder.lift(found.fields, rung - 1) if rung else found.fields for found in pool]
-            pool = [flow(level, one, thrift, energy, steps=steps_on(level), emphasis=emphasis[rung]) for one in fields]
+            begun = [(ladder.lift(found.fields, rung - 1) if rung else found.fields, found.cut.uncut) for found in pool]
+            common = dict(thrift=thrift, energy=energy, emphasis=emphasis[rung])
+            pool = [flow(level, fields, steps=steps_on(level), uncut=uncut, **common) for fields, uncut in begun]
             if pieces is not None:  # the price of seams may dissolve what is wished: then as few steps as can be
-                pool += [flow(level, one, thrift, energy, steps=1, emphasis=emphasis[rung])
-                         for one, found in zip(fields, pool, strict=True) if found.count < pieces]
+                pool += [flow(level, fields, steps=1, uncut=uncut, **common)
+                         for (fields, uncut), found in zip(begun, pool, strict=True) if found.count < pieces]
             if not top or pieces is not None:
                 pool = [simplify(level, found, thrift, energy, pieces) for found in pool]
             pool = _best(pool, pieces)[:1]
+        if rung == darts:
+            pool = [opened_up(level, pool[0], thrift, energy, pieces)]
         if rung == points.rung:
             pool[0], emphasis = through_tips(points, pool[0], thrift, energy, pieces)
         if progress:
             progress((rung + 1) / len(levels), "seams")
     found = pool[0]
     if emphasis[-1] is not None:  # the cost without it
-        found = settle(found.level, found.cut, found.cut.labels, thrift, energy, converged=found.converged)
+        found = settle(found.level, found.cut, found.cut.labels, thrift, energy, found.converged, found.cut.uncut)
     return found
 
 
@@ -166,15 +124,15 @@ def through_tips(points, found, thrift, energy, pieces=None):
     level, rung = found.level, points.rung
     emphasis, amount, trial, most = [None] * len(points.ladder.levels), np.zeros(len(points.tips)), found, DEAR * found.score
     for more in MORE:
-        missed = points.missed(trial.fields)
+        missed = points.missed(trial)
         if not missed.any():
             break
         amount[missed] = more
         weight = points.emphasis(amount)
-        trial = flow(level, trial.fields, thrift, energy, steps=steps_on(level), emphasis=weight[rung])
-        fewer = points.missed(trial.fields).sum() < points.missed(found.fields).sum()
+        trial = flow(level, trial.fields, thrift, energy, steps_on(level), weight[rung], trial.cut.uncut)
+        fewer = points.missed(trial).sum() < points.missed(found).sum()
         if fewer and (pieces is None or trial.count == found.count):
-            plain = settle(level, trial.cut, trial.cut.labels, thrift, energy, converged=trial.converged)
+            plain = settle(level, trial.cut, trial.cut.labels, thrift, energy, trial.converged, trial.cut.uncut)
             if plain.score <= most:
                 found, emphasis = plain, weight
     return found, emphasis

@@ -112,6 +112,11 @@ class Seen:
         bits = {(int(part), int(self._nodes[2][node[0]])) for part, node in zip(owner, self._nodes[0], strict=True)}
         return len(bits) - len({part for part, _ in bits})
 
+    @property
+    def lone_pieces(self):
+        """How many pieces cover a part without a hem alone."""
+        return int((np.bincount(self.piece_part, ~self.hemmed)[self.piece_part[~self.hemmed]] == 1).sum())
+
     @cached_property
     def hemmed(self):
         """(K,) bool: pieces with an open edge."""

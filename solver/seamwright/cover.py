@@ -116,9 +116,18 @@ def _sought(ground, planes, begun, wishes, goods, pieces, tell, notes):
     elif wishes.thrift is None and pieces is None:
         result = sized(ground, tailor, tailor.run(tell), wishes.route)
     else:
-        found = seek(ladder, wishes.thrift or PLAIN_THRIFT, wishes.energy, pieces, tell)
-        result = tailor.untangled(tailor.real(len(ladder.levels) - 1, found.cut))
+        result = _for_thrift(ladder, tailor, wishes, pieces, tell)
     return result if pieces is None else joined(tailor, result, pieces)
+
+
+def _for_thrift(ladder, tailor, wishes, pieces, tell):
+    """The Tailored of the best network for a thrift; without darts, where they make a piece lie over itself."""
+    for darts in (True, False):
+        found = seek(ladder, wishes.thrift or PLAIN_THRIFT, wishes.energy, pieces, tell, darts)
+        met = tailor.real(len(ladder.levels) - 1, found.cut)
+        if found.cut.uncut is None or not any(one.crossings for one in met.judged):
+            break
+    return tailor.untangled(met)
 
 
 def _given(form, part, wishes):

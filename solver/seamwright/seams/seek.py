@@ -78,8 +78,11 @@ def _splits(level, found):
             yield trial
 
 
-def seek(ladder, thrift, energy="square", pieces=None, progress=None):
-    """Best Found on the ladder's last level, from several starts. pieces: a wished number, come as near to as can be."""
+def seek(ladder, thrift, energy="square", pieces=None, progress=None, darts=True):
+    """Best Found on the ladder's last level, from several starts.
+
+    pieces: a wished number, come as near to as can be; darts: whether seams may end inside a piece.
+    """
     levels = ladder.levels
     level = levels[0]
     cells = sorted({*(2, 3, 4, 5, 7, 10), *((pieces, pieces + 2) if pieces else ())})
@@ -93,7 +96,7 @@ def seek(ladder, thrift, energy="square", pieces=None, progress=None):
     if pieces is not None and all(found.count < pieces for found in pool):
         pool = [enriched(level, pool[0], thrift, energy, pieces)]
     points, emphasis = Points(ladder), [None] * len(levels)
-    darts = max(rung for rung, level in enumerate(levels) if rung == 0 or len(level.mass) <= COARSE)
+    for_darts = max(rung for rung, level in enumerate(levels) if rung == 0 or len(level.mass) <= COARSE)
     for rung, level in enumerate(levels):
         top = rung == len(levels) - 1
         if rung or top:  # the first rung is done, unless it is the form itself
@@ -106,7 +109,7 @@ def seek(ladder, thrift, energy="square", pieces=None, progress=None):
             if not top or pieces is not None:
                 pool = [simplify(level, found, thrift, energy, pieces) for found in pool]
             pool = _best(pool, pieces)[:1]
-        if rung == darts:
+        if darts and rung == for_darts:
             pool = [opened_up(level, pool[0], thrift, energy, pieces)]
         if rung == points.rung:
             pool[0], emphasis = through_tips(points, pool[0], thrift, energy, pieces)

@@ -75,7 +75,7 @@ def test_pieces_are_disks(made):
 @pytest.mark.parametrize("route", ["through", "edges"])
 def test_a_seam_moves_off_where_it_was(route):
     form = sw.Form(*BALL)
-    wishes = {"goods": "spandex", "thrift": 0.1, "route": route}
+    wishes = {"goods": "spandex", "thrift": 0.1, "route": route, "pieces": 2}
     held_by, (first, second) = pieces_of_faces(form, sw.cover(form, sw.Wishes(**wishes))), form.surface.edge_triangles.T
     sides = zip(first, second, strict=True)
     parted = [edge for edge, (i, j) in enumerate(sides) if held_by[i] != held_by[j] or len(held_by[i]) > 1]

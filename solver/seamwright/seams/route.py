@@ -22,8 +22,10 @@ def cut_along(level, cut, polygon, diagonal, metric):
     gap = np.abs(redistance(level, cut, int(cut.labels.max()) + 1)).min(axis=1) * metric
     cost, near = corridor(surface, ~diagonal, level.price, gap)
     labels = shortened(surface, face_labels(level, cut, polygon), polygon, cost)
-    sides = surface.edge_triangles
-    seam = ~surface.open_edges & (labels[polygon[sides[:, 0]]] != labels[polygon[sides[:, 1]]])
+    one, other = labels[polygon[surface.edge_triangles]].T
+    seam = ~surface.open_edges & (one != other)
+    if cut.uncut is not None:
+        seam &= ~cut.uncut[one, other]
     network = Network(surface, seam, np.arange(len(surface.triangles)))
     network = opened(_without_specks(network, level), ~diagonal)
     a, b = surface.edges[cut.edge].T

@@ -56,7 +56,8 @@ def stage(form, thrift, symmetry="auto", seed=0):
     """(Ladder, Found, planes) of the seam stage as `cover` runs it for a Form of one part."""
     planes = planes_of_symmetry(form.surface) if symmetry == "auto" else []
     ladder = Ladder(form.surface, planes=planes, seed=seed)
-    return ladder, seek(ladder, thrift), planes
+    found = seek(ladder, thrift)
+    return ladder, found, ladder.planes
 
 
 def measured_row(name, count, thrift, symmetry):
@@ -72,7 +73,7 @@ def measured_row(name, count, thrift, symmetry):
     pattern.details["thrift"] = thrift
     refused, values = refusals(measured(pattern))
     row = Row(name, count, len(form.points), thrift, bool(planes), seconds, wall, seconds / unit, peak, found.score,
-              found.fields.shape[1], found.cost.length / ladder.factor, found.converged, refused, values)
+              found.count, found.cost.length / ladder.factor, found.converged, refused, values)
     return row, pattern
 
 

@@ -92,17 +92,17 @@ def _cover_part(form, part, wishes, goods, pieces, tell, notes):
     planes = planes_of(part, wishes, begun, _given(form, part, wishes))
     if wishes.only is None:
         prices_allow(form, part, NEVER)
-        result = _sought(part, planes, begun, wishes, goods, pieces, tell, notes)
+        result, planes = _sought(part, planes, begun, wishes, goods, pieces, tell, notes)
     else:
         ground, source = _only(form, part, planes, wishes, goods)
-        result = _sought(ground, planes, None, wishes, goods, pieces, tell, notes)
+        result, planes = _sought(ground, planes, None, wishes, goods, pieces, tell, notes)
         result.network = replace(result.network, source=source[result.network.source])
     _check_shut(part, result.network)
     return _placed(finished(closed(part.held, result), planes, goods, wishes.comfort, wishes.grain), part), planes
 
 
 def _sought(ground, planes, begun, wishes, goods, pieces, tell, notes):
-    """The Tailored of a Ground, from scratch or from a Network begun with; pieces: a wished number or None."""
+    """(Tailored of a Ground, the planes it keeps), from scratch or from a Network begun with; pieces: a wished number."""
     ladder = Ladder(ground.surface, ground.price, planes, seed=int(wishes.seed), patch=ground.patch)
 
     def explicit(cut):
@@ -117,7 +117,7 @@ def _sought(ground, planes, begun, wishes, goods, pieces, tell, notes):
         result = sized(ground, tailor, tailor.run(tell), wishes.route)
     else:
         result = _for_thrift(ladder, tailor, wishes, pieces, tell)
-    return result if pieces is None else joined(tailor, result, pieces)
+    return (result if pieces is None else joined(tailor, result, pieces)), ladder.planes
 
 
 def _for_thrift(ladder, tailor, wishes, pieces, tell):

@@ -64,7 +64,7 @@ def test_seam_stage_json_and_page(tmp_path, monkeypatch, capsys):
         assert row["refused"] == [name for name in row["measures"] if name in row["refused"]]
         pattern = sw.cover(sw.Form(*gallery.FORMS[row["form"]](row["asked"])), sw.Wishes(goods="spandex", thrift=0.5))
         assert row["pieces"] == len(pattern.pieces)
-        assert row["metres"] == pytest.approx(seam_metres(pattern), rel=0.01)  # cuts near points are moved off them
+        assert row["metres"] == pytest.approx(seam_metres(pattern), rel=0.02)  # cuts near points are moved off them
     page = (tmp_path / "index.html").read_text()
     assert page.count("<img") == 16
     for name in ("00-bowl-seams-front.png", "03-shade-u-back.png"):
@@ -94,7 +94,7 @@ def test_fit_table(tmp_path, monkeypatch, capsys):
 
 def test_u_on_the_page_is_that_of_the_pieces():
     """On a ball in halves u is ln((1 + cos) / 1) about each half's middle: 0 on the seam, ln 2 at the pole."""
-    pattern = sw.cover(sw.Form(*gallery.FORMS["ball"](1500)), sw.Wishes(goods="spandex", thrift=2.0))
+    pattern = sw.cover(sw.Form(*gallery.FORMS["ball"](1500)), sw.Wishes(goods="spandex", thrift=2.0, pieces=2))
     scales = portraits.log_scales(pattern)
     assert [len(u) for u in scales] == [len(piece.points) for piece in pattern.pieces]
     for u, piece in zip(scales, pattern.pieces, strict=True):
@@ -119,7 +119,7 @@ def test_pictures_are_read_back():
 
 def test_a_portrait_shows_the_pieces():
     """A ball in two halves: a round patch in the two pieces' colours, black between, white around."""
-    pattern = sw.cover(sw.Form(*gallery.FORMS["ball"](300)), sw.Wishes(goods="spandex", thrift=2.0))
+    pattern = sw.cover(sw.Form(*gallery.FORMS["ball"](300)), sw.Wishes(goods="spandex", thrift=2.0, pieces=2))
     picture = portraits.portrait(pattern, portraits.FRONT)
     covered = (picture < 1).any(axis=2)
     assert covered.mean() == pytest.approx(np.pi / 4 * 0.94**2, rel=0.02)

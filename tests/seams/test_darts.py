@@ -2,10 +2,10 @@
 
 import numpy as np
 import pytest
-from forms import cap, ellipsoid, icosphere, torus
+from forms import cap, ellipsoid, frustum, icosphere, torus
 from parted import fields_of_cells, level_of
 from seamwright.form.form import Form
-from seamwright.form.mirror import planes
+from seamwright.form.mirror import Plane, planes
 from seamwright.seams.cut import cut_by_fields, recut
 from seamwright.seams.darts import closed_up, lies_flat, opened_up
 from seamwright.seams.flow import DART_PRICE, PIECE_PRICE, flow, settle
@@ -132,3 +132,16 @@ def test_loose_bits_of_seam_go():
     labels = attached(level.surface, cut)
     again = recut(level.surface, cut, labels, BEYOND)
     assert len(again.end.face) == 2 and panels(level.surface, labels, BEYOND).disk.all()
+
+
+def test_a_lampshade_needs_one_seam():
+    """Two planes of symmetry would have it twice; it keeps the one that it lies on."""
+    form = Form(*frustum(0.2, 0.1, 0.2, 48))
+    normals = np.eye(3)[:2]
+    ladder = Ladder(form.surface, planes=[Plane(np.zeros(3), normal, 0.0) for normal in normals])
+    found = seek(ladder, 0.1)
+    assert len(ladder.planes) == 1 and found.count == 1 and found.cost.distortion < 1e-3
+    network = cut_through(found.level, found.cut, 1 / ladder.factor)
+    plane, = ladder.planes
+    height = (network.surface.points[network.surface.edges[network.seam]] - plane.point) @ plane.normal
+    assert np.abs(height).max() < 0.004 and network.length() < 1.02 * np.hypot(0.2, 0.1)

@@ -36,8 +36,11 @@ class Tailor:
         self.ladder, self.explicit = ladder, explicit
         self.judges = Judges(goods, comfort, grain)
         self.search = Search(ladder, reach(goods, comfort))
-        symmetry = ladder.levels[-1].symmetry
-        self.planes = [] if symmetry is None else [mirror.plane.scaled(1 / ladder.factor) for mirror in symmetry.mirrors]
+
+    @property
+    def planes(self):
+        """The planes of symmetry that seams keep, in metres."""
+        return self.ladder.planes
 
     def run(self, tell):
         """The cheapest Tailored found whose pieces fit, or the least strained one met. tell(share, words) as it goes."""

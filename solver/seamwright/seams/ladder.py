@@ -20,13 +20,14 @@ class Ladder:
 
     surface: a Surface. price (n,) factor on seam length. planes: list of Planes of symmetry that networks are to keep, at
     right angles. seed: of the coarse levels. patch (n,) number of the patch that each point stays in one region with, -1 for
-    none. `factor`: lengths on the levels over lengths in metres.
+    none. `factor`: lengths on the levels over lengths in metres; planes: those that are kept.
     """
 
     def __init__(self, surface, price=None, planes=(), rungs=RUNGS, seed=0, patch=None):
         fine, self.factor = scaled(surface, total_area(surface))
         n = len(fine.points)
         price = np.ones(n) if price is None else price
+        self.planes = list(planes)
         smoother = smoothing(fine)  # the metric in which seams move there, too: one factorisation less
         load = smoothed_defects(fine, smoother=smoother)
         self.levels = [Level(fine, load, price, _symmetry(fine, planes, self.factor), patch, smoother)]
@@ -44,6 +45,12 @@ class Ladder:
                                             _symmetry(surface, planes, self.factor * scale),
                                             None if patch is None else on_rung(surface, owner, patch)))
                 self.owners.insert(0, owner)
+
+    def keep(self, number):
+        """From now on networks keep but one of the planes."""
+        self.planes = [self.planes[number]]
+        for level in self.levels:
+            level.symmetry = level.symmetry.only(number)
 
     def lift(self, fields, source):
         """(N, K) fields on the level after `source` from those on it."""

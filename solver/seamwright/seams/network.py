@@ -11,6 +11,7 @@ from scipy.sparse import coo_matrix
 from scipy.sparse.csgraph import connected_components
 
 from ..form.measure import total_area
+from ..form.nearest import closest_on_triangles
 from ..form.surface import Surface, components_through
 from .cut import recut
 from .middle import middles
@@ -154,6 +155,7 @@ def cut_through(level, cut, metric):
     for kind in (cut.three, cut.end):
         middle[len(kind.seams)] = _middles(surface, kind, number, len(points))
         points = np.concatenate([points, middles(points[number[kind.edges]], NEAREST)])
+    points = _ends_alike(level, cut, middle[len(cut.end.seams)], points)
     keep = np.ones(len(surface.triangles), dtype=bool)
     triangles, source, owner = [], [], []
     seamed = np.zeros(len(points), dtype=bool)  # points that a seam may run through
@@ -187,6 +189,20 @@ def cut_through(level, cut, metric):
     if cut.uncut is not None:
         seam &= ~cut.uncut[one, other] & seamed[used][fine.edges].all(axis=1)
     return Network(fine, seam, source)
+
+
+def _ends_alike(level, cut, middle, points):
+    """Points (n, 3) with the ends of darts, `middle` (k,), where their mirror images are, as far as their faces reach."""
+    corners = level.surface.points[level.surface.triangles[cut.end.face]]
+    for mirror in level.symmetry.mirrors if level.symmetry is not None and len(middle) else ():
+        images = mirror.plane.mirrored(points[middle])
+        gap = np.linalg.norm(points[middle][:, None] - images, axis=2)
+        twin = gap.argmin(axis=1)
+        near = gap.min(axis=1) < 2 * level.edge_length
+        wanted = np.where(near[:, None], 0.5 * (points[middle] + images[twin]), points[middle])
+        share = np.maximum(closest_on_triangles(wanted, corners)[0], NEAREST / 2)
+        points[middle] = np.einsum("kc,kcd->kd", share / share.sum(axis=1, keepdims=True), corners)
+    return points
 
 
 def _middles(surface, kind, number, first):

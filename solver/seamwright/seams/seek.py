@@ -16,6 +16,7 @@ MOST_PIECES = 40
 SPLIT_STEPS = 12  # of flow after a split
 STEPS = ((1000, 24), (3000, 12), (12000, 6))  # points up to which a level takes so many steps; a finer one takes
 LAST_STEPS = 1
+LOPSIDED = 0.95  # share of the score down to which seams may become cheaper by keeping but one plane of two
 DEAR = 1.05  # share of the score up to which seams may become dearer by running through tips
 
 
@@ -110,7 +111,7 @@ def seek(ladder, thrift, energy="square", pieces=None, progress=None, darts=True
                 pool = [simplify(level, found, thrift, energy, pieces) for found in pool]
             pool = _best(pool, pieces)[:1]
         if darts and rung == for_darts:
-            pool = [opened_up(level, pool[0], thrift, energy, pieces)]
+            pool = [_with_darts(ladder, rung, pool[0], thrift, energy, pieces)]
         if rung == points.rung:
             pool[0], emphasis = through_tips(points, pool[0], thrift, energy, pieces)
         if progress:
@@ -119,6 +120,23 @@ def seek(ladder, thrift, energy="square", pieces=None, progress=None, darts=True
     if emphasis[-1] is not None:  # the cost without it
         found = settle(found.level, found.cut, found.cut.labels, thrift, energy, found.converged, found.cut.uncut)
     return found
+
+
+def _with_darts(ladder, rung, found, thrift, energy, pieces):
+    """The Found opened up, as symmetric as pays: the seam of a lampshade need not be there twice."""
+    level = ladder.levels[rung]
+    whole = level.symmetry
+    best, kept = opened_up(level, found, thrift, energy, pieces), None
+    most = LOPSIDED * best.score
+    for number in range(len(whole.mirrors)) if whole is not None and len(whole.mirrors) > 1 else ():
+        level.symmetry = whole.only(number)
+        trial = opened_up(level, found, thrift, energy, pieces)
+        if trial.score < most and (pieces is None or abs(trial.count - pieces) <= abs(best.count - pieces)):
+            best, kept, most = trial, number, trial.score
+    level.symmetry = whole
+    if kept is not None:
+        ladder.keep(kept)
+    return best
 
 
 def through_tips(points, found, thrift, energy, pieces=None):

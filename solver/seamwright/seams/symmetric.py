@@ -5,6 +5,8 @@ partner's mirror image, F_i = R F_partner(i). Then a seam between partners lies 
 has its mirror image; so the flow needs no rule for the plane. Several planes are at right angles: their mirrors commute.
 """
 
+from copy import copy
+
 import numpy as np
 from scipy.sparse import coo_matrix
 from scipy.sparse.csgraph import dijkstra
@@ -76,6 +78,12 @@ class Symmetry:
 
     def __init__(self, surface, planes):
         self.mirrors = [Mirror(surface, plane) for plane in planes]
+
+    def only(self, number):
+        """The Symmetry about one of the planes alone."""
+        fewer = copy(self)
+        fewer.mirrors = [self.mirrors[number]]
+        return fewer
 
     def partners(self, labels, count):
         """List with the (count,) partners of the regions of labels (n,), one array for each mirror."""

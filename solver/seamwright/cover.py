@@ -8,6 +8,7 @@ from threadpoolctl import threadpool_limits
 from .asked import check, edges_asked, held_edges, patches_allow, planes_of, prices_allow, shared_out, shut_edges
 from .assemble import assemble
 from .errors import CoverError
+from .fit.darts import shortest, without_stubs
 from .fit.foresee import reach, stretch_weight
 from .fit.goods import get
 from .fit.improve import improve
@@ -15,7 +16,7 @@ from .fit.join import joined
 from .fit.sewn import closed
 from .fit.sizes import is_strip, narrowest, sized
 from .fit.tailor import Tailor, finished
-from .form.measure import areas
+from .form.measure import areas, total_area
 from .form.offset import carried, offset
 from .form.surface import Surface
 from .parts import parts_of
@@ -26,10 +27,13 @@ from .seams.network import Network
 from .seams.only import BORDER, along_edges, grown, through_faces
 from .seams.opened import opened
 from .seams.prices import NEVER, seam_prices
+from .seams.refuse import mirror_error
 from .seams.seek import seek
+from .seams.seen import Seen
 from .seams.whole import kept_whole, united
 from .wishes import Wishes
 
+MIRRORED = 0.005  # share of the form's size within which seams are symmetric
 PLAIN_THRIFT = 0.1  # price of a metre of seam where a number of pieces is wished and no thrift
 
 
@@ -64,7 +68,7 @@ def _covered(form, wishes, progress):
             where = f"{form.name}, part {number + 1} of {len(parts)}" if len(parts) > 1 else form.name
             raise CoverError(f"{where}: {error}") from error
     pattern = assemble(form, neutral, goods, wishes, covered, notes)
-    pattern.notes += _unmet(pattern, wishes, prices)
+    pattern.notes += _unmet(pattern, wishes, prices) + _lopsided(pattern, covered, wishes.route)
     if progress:
         progress(1.0, "done")
     return pattern
@@ -114,7 +118,7 @@ def _sought(ground, planes, begun, wishes, goods, pieces, tell, notes):
         if kept:
             notes.append("Start: no better seams were found from there, so they are as they were.")
     elif wishes.thrift is None and pieces is None:
-        result = sized(ground, tailor, tailor.run(tell), wishes.route)
+        result = without_stubs(tailor.judges, sized(ground, tailor, tailor.run(tell), wishes.route), tailor.planes)
     else:
         result = _for_thrift(ladder, tailor, wishes, pieces, tell)
     return (result if pieces is None else joined(tailor, result, pieces)), ladder.planes
@@ -209,12 +213,27 @@ def _unmet(pattern, wishes, prices):
     if strips:
         found.append(f"Narrow: {', '.join(strips[:8])}{', ...' if len(strips) > 8 else ''} nowhere as wide as the "
                      f"{1000 * width:.0f} mm that are easily sewn; what they could be joined to would not fit with them.")
+    least = shortest(sum(piece.areas.sum() for piece in pattern.pieces))
+    stubs = [seam for seam in pattern.seams if seam.dart and max(seam.lengths) < least]
+    if stubs:
+        found.append(f"Short darts: {', '.join(seam.name for seam in stubs[:8])}{', ...' if len(stubs) > 8 else ''} shorter "
+                     f"than {1000 * least:.0f} mm; the fullness there may be eased in instead.")
     never = (prices >= NEVER)[pattern.form.triangles].all(axis=1)
     length = _metres_in(pattern, never)
     if length > 0:
         found.append(f"Keep clear: {1000 * length:.0f} mm of seam run where there should never be any, as without them the "
                      "form could not be covered so.")
     return found
+
+
+def _lopsided(pattern, covered, route):
+    """Sentences on seams that are not their own mirror image about the planes that they should keep, by more than meshes
+    whose triangles are not alike on the two sides make of it: a quarter of an edge through faces, an edge along them."""
+    planes = [plane for _, kept in covered for plane in kept]
+    edge = pattern.form.surface.edge_lengths.mean() / np.sqrt(total_area(pattern.form.surface))
+    limit = max(MIRRORED, (1.0 if route == "edges" else 0.25) * edge)
+    found = [mirror_error(Seen(pattern), plane, limit) for plane in planes]
+    return [f"Symmetry: the two sides are not sewn alike. {one.sentence}" for one in found if one.refused]
 
 
 def _metres_in(pattern, triangles):

@@ -9,9 +9,11 @@ import seamwright as sw
 from forms import cylinder, globe, icosphere
 from seamwright.fit.sizes import excess, is_strip, sized, upright
 from seamwright.fit.tailor import Tailor
+from seamwright.form.measure import total_area
 from seamwright.parts import parts_of
 from seamwright.seams.begun import network_of_labels
 from seamwright.seams.ladder import Ladder
+from seamwright.seams.refuse import measured
 from seamwright.sheets.draft import draft
 from seamwright.sheets.lay import too_large
 from tiled import check_tiled
@@ -93,6 +95,18 @@ def test_a_piece_is_turned_where_that_is_how_the_goods_hold_it():
     assert a[0] * b[1] - a[1] * b[0] == pytest.approx(0.2)  # the face side stays up
     np.testing.assert_array_equal(upright(STRIP, LEAST, False), STRIP)
     np.testing.assert_array_equal(upright(STRIP * 0.4, LEAST, True), STRIP * 0.4)
+
+
+def test_a_symmetric_form_is_cut_across_alike_on_both_sides():
+    """An ellipsoid wider than the goods: its seams are their own mirror image, to 0.5 % of its size or a quarter edge."""
+    form = sw.Form(*globe(24, 17, (0.30, 0.22, 0.20)))
+    narrow = replace(sw.goods()["spandex"], width=0.5)
+    pattern = sw.cover(form, sw.Wishes(goods=narrow, comfort=0.0, symmetry=[((0, 0, 0), (1, 0, 0))]))
+    wide = sw.cover(form, sw.Wishes(goods=replace(narrow, width=5.0), comfort=0.0, symmetry=[((0, 0, 0), (1, 0, 0))]))
+    assert len(pattern.pieces) > len(wide.pieces) or len(pattern.seams) > len(wide.seams)
+    off, edge = measured(pattern)[-1], form.surface.edge_lengths.mean() / np.sqrt(total_area(form.surface))
+    assert off.name == "mirror error" and off.value < 0.25 * edge
+    assert not any(note.startswith("Symmetry") for note in pattern.notes)
 
 
 def test_strips_by_hand():

@@ -5,12 +5,14 @@ from dataclasses import replace
 import numpy as np
 from shapely.geometry import Polygon
 
+from ..form.mirror import reflection
 from ..form.surface import Surface
 from ..seams.cut import cut_by_fields, recut
 from ..seams.held import Held
 from ..seams.level import Level
 from ..seams.network import Network
 from ..seams.starts import tidied
+from ..seams.twins import twin_pieces
 from .darts import darted
 from .join import without
 from .sewn import closed, corner_flats
@@ -63,7 +65,17 @@ def sized(ground, tailor, met, route):
             break
         piece = next(k for k, one in enumerate(met.judged) if excess(one.flat, judges.goods, free)[0] == over)
         met = _parted(ground, tailor, met, piece, axis, int(np.ceil(over / SPARE)), route)
-    return met if met is held else darted(judges, _merged(tailor, met, free))
+    return met if met is held else darted(judges, _merged(tailor, met, free), tailor.planes)
+
+
+def _alike(surface, along, planes):
+    """(n,) values that run along a surface, made symmetric about the planes that it lies across: even or odd, as they are
+    nearer to."""
+    along = along - along.mean()
+    for plane in planes:
+        image = reflection(surface, plane) @ along
+        along = 0.5 * (along + np.sign(image @ along) * image)
+    return along
 
 
 def _legal(trial, met, goods, free):
@@ -117,7 +129,9 @@ def _parted(ground, tailor, met, piece, axis, count, route):
     judges, network, own = tailor.judges, met.network, met.network.pieces[1]
     part, source = ground.cut_out(network, own == piece)
     level = Level(part.surface, np.zeros(len(part.surface.points)), part.price, patch=part.patch)
-    along = met.judged[piece].flat @ axis
+    twins = [twin_pieces(network, plane)[0][piece] for plane in tailor.planes]
+    own_planes = [plane for plane, twin in zip(tailor.planes, twins, strict=True) if twin == piece]
+    along = _alike(part.surface, met.judged[piece].flat @ axis, own_planes)
     middles = along.min() + np.ptp(along) * (np.arange(count) + 0.5) / count
     fields = -np.abs(along[:, None] - middles)
     cut = cut_by_fields(part.surface, fields, level.labels(fields))

@@ -119,6 +119,16 @@ def _places(network, chain):
     return np.array([points[0], middle, points[-1]])
 
 
+def put_back(spare, at, planes):
+    """The list `spare` of places (3, 3) without the one at an index, nor its mirror images."""
+    back = [spare[at]]
+    for plane in planes:
+        back += [plane.mirrored(places) for places in back]
+    near = NEAR * max(np.ptp(spare[at], axis=0).max(), 1e-9)
+    return [places for places in spare
+            if not any(min(np.abs(places - one).max(), np.abs(places[::-1] - one).max()) < near for one in back)]
+
+
 def without_nearest(network, places):
     """The network without the stretch of seam nearest to places (3, 3) met on another rung, if a disk is left."""
     points = network.surface.points

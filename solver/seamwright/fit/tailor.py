@@ -16,7 +16,7 @@ from .resigned import resigned
 from .search import MOST_PIECES, Search
 from .sewn import sewn, uneven
 from .sizes import excess
-from .spare import dropped, without_nearest
+from .spare import dropped, put_back, without_nearest
 from .tailored import ENOUGH, Judges, Tailored
 
 FINE_ENOUGH = 1200  # points of the rung on which the foresight learns: coarser ones strain where the form does not
@@ -61,7 +61,7 @@ class Tailor:
                 tell(0.4 + 0.1 * (rung - learning), "refining seams")
                 state = self.search.lifted(rung, state)
             tell(0.8, "flattening pieces")
-            met = darted(self.judges, self.confirmed(top, state, spare))
+            met = darted(self.judges, self.confirmed(top, state, spare), self.planes)
             best = met if best is None else min(best, met, key=_fits_first)
             if best.fits:
                 break
@@ -105,14 +105,14 @@ class Tailor:
 
     def with_needed(self, rung, state, spare):
         """(Tailored without the spare seams, what of them was spare indeed): where a piece does not fit for want of a seam
-        that was dropped, the last such one is put back."""
+        that was dropped, the last such one is put back, and what is its mirror image."""
         met = self.real(rung, state.cut, spare)
         while True:
             wanting = [one.utilisation > ENOUGH or bool(one.crossings) for one in met.judged]
             needed = [at for at, places in enumerate(spare) if wanting[_piece_at(met.network, places[1])]]
             if not needed:
                 return met, spare
-            fewer = [places for at, places in enumerate(spare) if at != needed[-1]]
+            fewer = put_back(spare, needed[-1], self.planes)
             trial = self.real(rung, state.cut, fewer)
             if _fits_first(trial) > _fits_first(met):
                 return met, spare

@@ -177,7 +177,7 @@ def mirror_error(seen, plane, limit=0.005):
         gap = min([gap, *others], key=np.max)
     worst = int(gap.argmax())
     return _most("mirror error", gap[worst] / size, limit, f"The seam at {_place(samples[worst])} is {_mm(gap[worst])} off "
-                 "its mirror image. Make both sides alike.")
+                 "its mirror image. Hold seams alike on both sides.")
 
 
 def _mirror_gaps(samples, plane):

@@ -5,7 +5,7 @@ import numpy as np
 from ..form.measure import areas, triangle_normals
 from ..form.nearest import Nearest
 
-ALIKE = 0.6
+ALIKE = 0.85
 """Share of a piece's area that has to lie on the other, mirrored, for the two to be twins."""
 CLOSE = 0.02
 """Mean distance from a seam's mirror image to another under which they are twins, as a share of the form's size."""

@@ -158,15 +158,30 @@ def _worst_place(part, each):
 
 def _ways_from_edge(part, places, allowed, least):
     """List of (q,): for each place (3,) the points of the shortest way along the allowed edges (e,) from the piece's edge to
-    the point nearest to it of those that are `least` metres away from that edge; empty where there is none."""
-    n = len(part.points)
-    graph = coo_matrix((part.edge_lengths[allowed], tuple(part.edges[allowed].T)), shape=(n, n)).tocsr()
-    gap, before, _ = dijkstra(graph, directed=False, indices=np.flatnonzero(open_points(part)), min_only=True,
-                              return_predecessors=True)
-    far, ways = np.isfinite(gap) & (gap >= least), []
-    for place in places:
-        way = [int(np.where(far, np.linalg.norm(part.points - place, axis=1), np.inf).argmin())] if far.any() else []
-        while way and before[way[-1]] >= 0:
-            way.append(int(before[way[-1]]))
-        ways.append(np.array(way[::-1], dtype=np.int64))
-    return ways
+    the point nearest to it; where that is no `least` metres away from that edge, on to one that is. Empty without one."""
+    rim, ends = open_points(part), part.edges[allowed]
+    inside = ~rim[ends].any(axis=1)
+    every, inner = (_graph(len(rim), one, length) for one, length in
+                    ((ends, part.edge_lengths[allowed]), (ends[inside], part.edge_lengths[allowed][inside])))
+    gap, back, _ = dijkstra(every, directed=False, indices=np.flatnonzero(rim), min_only=True, return_predecessors=True)
+    far, reached = np.isfinite(gap) & (gap >= least), np.isfinite(gap) & ~rim
+    ways = []
+    for place in places if far.any() else ():
+        point = np.where(reached, np.linalg.norm(part.points - place, axis=1), np.inf).argmin()
+        on, before = dijkstra(inner, directed=False, indices=point, return_predecessors=True)
+        tip = np.where(far, on, np.inf).argmin()
+        way = _followed(back, point)[::-1] + _followed(before, tip)[::-1][1:]
+        ways.append(np.array(way if len(set(way)) == len(way) else _followed(back, tip)[::-1]))
+    return ways or [np.zeros(0, dtype=np.int64)]
+
+
+def _graph(count, ends, lengths):
+    return coo_matrix((lengths, tuple(ends.T)), shape=(count, count)).tocsr()
+
+
+def _followed(before, point):
+    """List of points from one on, each the one before the last; a negative number ends it."""
+    way = [int(point)]
+    while before[way[-1]] >= 0:
+        way.append(int(before[way[-1]]))
+    return way

@@ -13,6 +13,9 @@ from .naming import named
 from .seams.sides import joints
 from .sheets.order import sewing_order
 
+FAR = 2.0  # times the hard limits from which a place is told of, though its piece may not be strained by it
+SPOT = 1e-6  # m2 of such places in a piece under which it is not
+
 
 def assemble(form, neutral, goods, wishes, parts, notes):
     """Pattern from (Tailored, planes of symmetry) of every part of the form; neutral: the Surface their networks lie on."""
@@ -30,7 +33,7 @@ def assemble(form, neutral, goods, wishes, parts, notes):
         seams += [_seam(joint, on_form, own, by_name, goods.ease) for joint in joints(network)]
     pieces = [pieces[k] for k in order]
     _number(seams)
-    notes += _strain(pieces, goods) + _ease(seams, goods)
+    notes += _strain(pieces, goods) + _far_beyond(pieces, goods) + _ease(seams, goods)
     from . import __version__
 
     details = _details(wishes, [plane for _, planes in parts for plane in planes], alike)
@@ -65,6 +68,28 @@ def _strain(pieces, goods):
     return [
         f"{head} strained: {100 * worst.beyond:.1f} % of {worst.name} is beyond what {goods.name} takes, most near "
         f"({x:.0f}, {y:.0f}, {z:.0f}) mm. Goods that take more would help, or a rounder form there, or a seam of your own."
+    ]
+
+
+def _far_beyond(pieces, goods):
+    """List with a sentence on places that ask more than FAR times what the goods take, however small; or none."""
+    found = {piece.name: piece for piece in pieces if piece.areas[piece.utilisation > FAR].sum() > SPOT}
+    if not found:
+        return []
+    worst = max(found.values(), key=lambda piece: piece.utilisation.max())
+    at = int(worst.utilisation.argmax())
+    x, y, z = 1000 * worst.points[worst.triangles[at]].mean(axis=0)
+    small = 1e6 * sum(piece.areas[piece.utilisation > FAR].sum() for piece in found.values())
+    others = [name for name in found if name != worst.name]
+    more = f", on {', '.join(others[:8])}{', ...' if len(others) > 8 else ''} too" if others else ""
+    threads = worst.warp_weft_shear[at]
+    asked = f"{100 * max(worst.stretch[at] if goods.shear is None else threads[:2], key=abs):+.0f} %"
+    if goods.shear is not None:
+        asked += f" along the threads and {np.degrees(abs(threads[2])):.0f} degrees of shear"
+    return [
+        f"Worst place: near ({x:.0f}, {y:.0f}, {z:.0f}) mm piece {worst.name} asks for {asked}, {worst.utilisation[at]:.1f} "
+        f"times what {goods.name} takes. {small:.0f} mm2 ask for more than twice that{more}. Expect a pucker there: clip or "
+        "ease it by hand, round the form, or run a seam there."
     ]
 
 

@@ -4,6 +4,7 @@
     python3 scripts/bench.py --points 5000,20000,80000,320000           # ... and how it grows; about an hour
     python3 scripts/bench.py --seeds 64                                 # scores against the best of many; hours
     python3 scripts/bench.py --rivals                                   # against partitions and trees of equal length
+    python3 scripts/bench.py --edges                                    # along edges against through faces
     python3 scripts/bench.py --goods felt,canvas --comfort 0 --picture  # the whole cover; `--goods all` for every goods
 
 What is asked for is measured and nothing else. The unit of time is one factorisation of the form's own cotangent Laplacian,
@@ -42,6 +43,7 @@ def parser():
     options.add_argument("--seeds", type=int, help="score of the seam stage over the best of so many seeds, at --thrift "
                          "or three of them")
     options.add_argument("--rivals", action="store_true", help="distortion at equal seam length against other ways to seam")
+    options.add_argument("--edges", action="store_true", help="the seam stage along edges against through faces")
     options.add_argument("--slim", action="store_true", help="laying a piece flat, against libigl's SLIM")
     options.add_argument("--symmetry", default="auto", choices=("auto", "none"))
     options.add_argument("--goods", default=[], type=several(str), help="goods to cover in, comma between, or all")
@@ -54,13 +56,15 @@ def parser():
 def wanted(options):
     """List of (table, its rows) for what the options ask for; rows yield (Row, Pattern or None)."""
     import seamwright as sw
-    from tables import against, best, fits, slim, stage
+    from tables import against, best, edges, fits, slim, stage
 
     goods = list(sw.goods()) if options.goods == ["all"] else options.goods
     asked = []
-    compared = options.seeds or options.rivals or options.slim
+    compared = options.seeds or options.rivals or options.slim or options.edges
     if options.rivals:
         asked.append((against, against.rows(options.forms, options.points, options.thrift or THRIFTS)))
+    if options.edges:
+        asked.append((edges, edges.rows(options.forms, options.points, options.thrift or [0.1])))
     if options.slim:
         asked.append((slim, slim.rows(options.forms, options.points)))
     if options.seeds:

@@ -16,7 +16,8 @@ from seamwright.seams.refuse import measured
 
 sys.path.insert(0, str(Path(__file__).resolve().parents[2] / "scripts"))
 import bench  # noqa: E402
-from tables import against, best, rivals, slim, stage  # noqa: E402
+from tables import against, best, edges, rivals, slim, stage  # noqa: E402
+from tables.unit import form_of  # noqa: E402
 from tables.geodesics import Heat, exact  # noqa: E402
 from tables.rivals import Rival  # noqa: E402
 
@@ -103,6 +104,19 @@ def test_flattening_against_slim():
     assert row.near_ratio > 0 and row.nearer_ratio > 0 and row.reached
     assert slim.line(row).startswith("cap") and "over 1 pieces" in slim.summary([row])[0]
     assert row.energy == pytest.approx(flatten(Surface(points, faces)).energy, rel=1e-3)
+
+
+@pytest.mark.parametrize("name", ["pear", "crate"])
+def test_along_edges_against_through_faces(name):
+    """No quad is split; length and distortion over those through faces, the length anew from the pattern's own pieces."""
+    row, pattern = edges.measured_row(form_of(name, 1500), 0.1)
+    assert row.split == 0 and 0.9 < row.longer < 1.3 and 0.5 < row.more < 2
+    triangles = np.concatenate([piece.source for piece in pattern.pieces])
+    faces = np.concatenate([np.full(len(piece.source), k) for k, piece in enumerate(pattern.pieces)])
+    pairs = np.unique(np.column_stack([pattern.form.polygon[triangles], faces]), axis=0)
+    assert len(pairs) == pattern.form.face_count  # every quad lies in one piece
+    assert edges.line(row).startswith(name)
+    assert edges.summary([row])[0].startswith(f"along edges over through faces: seam {row.longer:.3f}")
 
 
 @pytest.mark.parametrize("name", ["ball", "egg", "pear", "crate", "buoy", "worm", "shade", "bowl"])

@@ -33,7 +33,7 @@ def cut_along(level, cut, polygon, diagonal, metric):
     network = straightened(network, ~diagonal, cost, near, wished)
     network = opened(_without_specks(network, level), ~diagonal)
     for mirror in level.symmetry.mirrors if level.symmetry is not None else ():
-        network = mirrored(network, mirror)
+        network = mirrored(network, mirror, ~diagonal)
     return replace(network, face=polygon)
 
 

@@ -276,14 +276,14 @@ def _back(at, before):
     return np.array(path)
 
 
-def mirrored(network, mirror):
-    """The network whose seams left of a Mirror's plane are the images of those right of it, where the mesh has such edges
-    and as many pieces, all disks, come of it; else as it is."""
+def mirrored(network, mirror, allowed):
+    """The network whose seams left of a Mirror's plane are the images of those right of it, where the mesh has such edges,
+    allowed (e,) bool to be seams, and as many pieces, all disks, come of it; else as it is."""
     surface, image = network.surface, mirror.image
     height = mirror.height[surface.edges].sum(axis=1)
     right = network.seam & (height > -1e-6 * np.ptp(height))
     images = surface.edge_index(image[surface.edges[right]])
-    if (images < 0).any():
+    if (images < 0).any() or not allowed[images].all():
         return network
     seam = right.copy()
     seam[images] = True

@@ -17,9 +17,9 @@ from seamwright.seams.refuse import measured
 sys.path.insert(0, str(Path(__file__).resolve().parents[2] / "scripts"))
 import bench  # noqa: E402
 from tables import against, best, edges, rivals, slim, stage  # noqa: E402
-from tables.unit import form_of  # noqa: E402
 from tables.geodesics import Heat, exact  # noqa: E402
 from tables.rivals import Rival  # noqa: E402
+from tables.unit import form_of  # noqa: E402
 
 
 def first(family, form, count):

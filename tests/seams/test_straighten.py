@@ -5,13 +5,14 @@ import pytest
 from forms import icosphere, starfish, torus, wrapped_grid
 from parted import cells
 from seamwright.form.form import Form
-from seamwright.form.mirror import planes
+from seamwright.form.mirror import Plane, planes
 from seamwright.seams.cut import cut_by_fields
 from seamwright.seams.fields import from_labels
 from seamwright.seams.ladder import Ladder
 from seamwright.seams.network import Network, cut_through
 from seamwright.seams.route import cut_along
-from seamwright.seams.straighten import corridor, straightened
+from seamwright.seams.straighten import corridor, mirrored, straightened
+from seamwright.seams.symmetric import Mirror
 from seamwright.seams.topology import make_disks
 
 
@@ -129,3 +130,17 @@ def test_symmetric_seams_on_a_symmetric_mesh():
     network = cut_along(level, cut, form.polygon, form.diagonal, 1 / ladder.factor)
     images = network.surface.edge_index(mirror.image[network.surface.edges[network.seam]])
     assert network.seam[images].all()
+
+
+def test_a_mirror_image_is_taken_only_where_seams_may_be():
+    """Two seams straight over a sheet, not alike: the left one becomes the right one's image, unless edges there are barred."""
+    form = Form(*sheet(8))
+    column = {k: np.arange(9) * 9 + k for k in (1, 2, 6)}
+    seam = network_along(form, column[1]).seam | network_along(form, column[6]).seam
+    network = Network(form.surface, seam, np.arange(len(form.triangles)))
+    mirror = Mirror(form.surface, Plane(np.array([0.5, 0, 0]), np.array([1.0, 0, 0]), 1e-9))
+    allowed = ~form.diagonal
+    wanted = network_along(form, column[2]).seam | network_along(form, column[6]).seam
+    np.testing.assert_array_equal(mirrored(network, mirror, allowed).seam, wanted)
+    allowed[np.flatnonzero(network_along(form, column[2]).seam)[0]] = False
+    assert mirrored(network, mirror, allowed) is network

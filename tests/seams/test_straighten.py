@@ -133,7 +133,7 @@ def test_symmetric_seams_on_a_symmetric_mesh():
 
 
 def test_a_mirror_image_is_taken_only_where_seams_may_be():
-    """Two seams straight over a sheet, not alike: the left one becomes the right one's image, unless edges there are barred."""
+    """Two seams straight over a sheet, not alike: the left becomes the image of the right, unless edges there are barred."""
     form = Form(*sheet(8))
     column = {k: np.arange(9) * 9 + k for k in (1, 2, 6)}
     seam = network_along(form, column[1]).seam | network_along(form, column[6]).seam

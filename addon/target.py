@@ -35,7 +35,7 @@ def check(thing, asked, depsgraph):
         raise Refused(f"{thing.name}: it has no vertex group {painted!r} to keep clear; choose another, or none.")
     if group(thing).wishes.improve and not read.seams(thing.data).any():
         raise Refused(f"{thing.name}: no edge is marked as a seam, so there is nothing to improve. Mark some (Edge > Mark "
-                      "Seam), or have seams found (Improve Marked Seams off).")
+                      "Seam), or have seams found (Improve Seams off).")
     if asked["goods"] == OWN and not asked["own_goods"]:
         raise Refused(f"{thing.name}: choose the file of your own goods.")
     if asked["cut_itself"] and asked["route"] == "through":

@@ -76,7 +76,7 @@ class WishesGroup(bpy.types.PropertyGroup):
         name="Keep Clear", description="Vertex group painted where seams are unwelcome: a seam costs twice at weight 0.5, "
         "ten times at 0.9, and is never laid at 1")
     improve: bpy.props.BoolProperty(
-        name="Improve Marked Seams", description="Start from the edges that are marked as seams now, and make them shorter "
+        name="Improve Seams", description="Start from the edges that are marked as seams now, and make them shorter "
         "and the stretch less; with a thrift chosen, the sum of both")
     choose_pieces: bpy.props.BoolProperty(name="Choose Pieces", description="Wish for a number of pieces")
     pieces: bpy.props.IntProperty(name="Pieces", description="Wished number of pieces", default=4, min=1, soft_max=50)

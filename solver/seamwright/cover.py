@@ -107,7 +107,8 @@ def _cover_part(form, part, wishes, goods, pieces, tell, notes):
 
 def _sought(ground, planes, begun, wishes, goods, pieces, tell, notes):
     """(Tailored of a Ground, the planes it keeps), from scratch or from a Network begun with; pieces: a wished number."""
-    ladder = Ladder(ground.surface, ground.price, planes, seed=int(wishes.seed), patch=ground.patch)
+    ladder = Ladder(ground.surface, ground.price, planes, seed=int(wishes.seed), patch=ground.patch,
+                    strict=not isinstance(wishes.symmetry, str))
 
     def explicit(cut):
         return ground.network(ladder.levels[-1], cut, wishes.route, 1 / ladder.factor)
@@ -131,7 +132,7 @@ def _for_thrift(ladder, tailor, wishes, pieces, tell):
         met = tailor.real(len(ladder.levels) - 1, found.cut)
         if found.cut.uncut is None or not any(one.crossings for one in met.judged):
             break
-    return tailor.untangled(met)
+    return without_stubs(tailor.judges, tailor.untangled(met), tailor.planes)
 
 
 def _given(form, part, wishes):

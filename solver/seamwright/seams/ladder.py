@@ -20,14 +20,15 @@ class Ladder:
 
     surface: a Surface. price (n,) factor on seam length. planes: list of Planes of symmetry that networks are to keep, at
     right angles. seed: of the coarse levels. patch (n,) number of the patch that each point stays in one region with, -1 for
-    none. `factor`: lengths on the levels over lengths in metres; planes: those that are kept.
+    none. strict: all planes are kept, whatever that costs. `factor`: lengths on the levels over lengths in metres; planes:
+    those that are kept.
     """
 
-    def __init__(self, surface, price=None, planes=(), rungs=RUNGS, seed=0, patch=None):
+    def __init__(self, surface, price=None, planes=(), rungs=RUNGS, seed=0, patch=None, strict=False):
         fine, self.factor = scaled(surface, total_area(surface))
         n = len(fine.points)
         price = np.ones(n) if price is None else price
-        self.planes = list(planes)
+        self.planes, self.strict = list(planes), strict
         smoother = smoothing(fine)  # the metric in which seams move there, too: one factorisation less
         load = smoothed_defects(fine, smoother=smoother)
         self.levels = [Level(fine, load, price, _symmetry(fine, planes, self.factor), patch, smoother)]

@@ -128,7 +128,8 @@ def _with_darts(ladder, rung, found, thrift, energy, pieces):
     whole = level.symmetry
     best, kept = opened_up(level, found, thrift, energy, pieces), None
     most = LOPSIDED * best.score
-    for number in range(len(whole.mirrors)) if whole is not None and len(whole.mirrors) > 1 else ():
+    fewer = whole is not None and len(whole.mirrors) > 1 and not ladder.strict
+    for number in range(len(whole.mirrors)) if fewer else ():
         level.symmetry = whole.only(number)
         trial = opened_up(level, found, thrift, energy, pieces)
         if trial.score < most and (pieces is None or abs(trial.count - pieces) <= abs(best.count - pieces)):

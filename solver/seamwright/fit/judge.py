@@ -32,7 +32,8 @@ def judge(surface, goods, comfort=0.0, grain=None, stages=1, start=None, done=0,
 
     A piece that fits by this fits: more shaping only helps. Stops as soon as it does. Begins from `start`, a flip-free flat
     (n, 2) that has been through the first `done` exponents, where that is known. A piece that then lies over itself is
-    shaped again within a fence, and left as it was only where that asks more than `senseless` of the limits.
+    shaped again within a fence, and left as it was only where that asks more than `senseless` of the limits; with a
+    `senseless` of 0 it is not shaped at all once its flattening does.
     """
     outline = surface.boundary_loops[0]
 
@@ -41,7 +42,9 @@ def judge(surface, goods, comfort=0.0, grain=None, stages=1, start=None, done=0,
         each = utilisation(warp_weft_shear(surface.points, surface.triangles, flat), goods, comfort)
         return Judged(area_quantile(each, areas(surface.points, surface.triangles)), each, flat, overlaps(flat, outline))
 
-    free = judged(flatten(surface).flat if start is None else start, done)
+    start = flatten(surface).flat if start is None else start
+    stages = 0 if senseless <= 0 and overlaps(start, outline) else stages
+    free = judged(start, done)
     if not free.crossings or free.utilisation > senseless:
         return free
     apart = untangled(surface, free.flat)

@@ -75,10 +75,10 @@ class Search:
             pool = sorted((self.rounds(0, state, count) for state in pool), key=lambda state: state.rank)
         return pool
 
-    def lifted(self, rung, state):
-        """The State one rung up."""
+    def lifted(self, rung, state, rests=RESTS):
+        """The State one rung up, after so many flow steps and weighing anew, time after time."""
         fields = self.ladder.lift(state.fields, rung - 1)
-        for steps in RESTS:
+        for steps in rests:
             state = self._after(rung, state, self._flow(rung, fields, state, steps).cut)
             state.weights = state.weights * np.clip(state.use**HURRY, *SWAY)
             fields = state.fields

@@ -7,7 +7,7 @@ from ..seams.twins import twin_stretch
 from .foresee import piece_use
 from .tailored import ENOUGH, Tailored
 
-HOPELESS = 1.4  # use without a chain above which half of it is not tried either, and foreseen, above which none is
+HOPELESS = 1.2  # use without a chain above which half of it is not tried either, and foreseen, above which none is
 NEAR = 0.15  # a chain on another rung is the same one when its middle is this near, as a share of the form's size
 
 

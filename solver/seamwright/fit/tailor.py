@@ -20,11 +20,16 @@ from .spare import dropped, put_back, without_nearest
 from .tailored import ENOUGH, Judges, Tailored
 
 FINE_ENOUGH = 1200  # points of the rung on which the foresight learns: coarser ones strain where the form does not
+DECIDING = 3000  # points of the rung on which the network is settled: on a finer one it fits as well, or nearly
 FINALISTS = 2  # networks that have learnt, of which spare seams are dropped
-NEARLY = 0.93  # a network that fits and has a piece this near its limits is not worth another lesson
+NEARLY = 0.93  # a network that fits, up to MARGIN, and has a piece this near its limits is not worth another lesson
+DEAR = 1.5  # nor one whose rank is so many times that of the best one after its lessons
+FAR = 1.25  # nor is it worth a try on a finer rung where it still is so many times the best one's
 LESSONS = 3  # most flattenings of a network on a rung
 ROUNDS = 5  # rounds after each
-CONFIRMATIONS = 4  # most flattenings of the form itself, with a lesson between
+CONFIRMATIONS = 4  # most flattenings of a network on the rung that decides, with a lesson between
+LAST_CONFIRMATIONS = 3  # and of the form itself, where that is finer
+CARRIED = (3,)  # flow steps on rungs finer than the one that decides
 MARGIN = 1.03  # use under which a seam is dropped on the learning rung: what the form itself needs is put back
 MOST_SPLITS = 12  # of pieces that still lie over themselves at the end
 
@@ -44,28 +49,44 @@ class Tailor:
 
     def run(self, tell):
         """The cheapest Tailored found whose pieces fit, or the least strained one met. tell(share, words) as it goes."""
-        levels = self.ladder.levels
-        top = len(levels) - 1
-        learning = next((rung for rung, level in enumerate(levels) if len(level.free) >= FINE_ENOUGH), top)
+        top = len(self.ladder.levels) - 1
+        learning, deciding = self.rung_with(FINE_ENOUGH), self.rung_with(DECIDING)
         tell(0.0, "trying seams")
         pool = self.search.begin()
         for rung in range(1, learning + 1):
             pool = [self.search.lifted(rung, state) for state in pool]
         tell(0.2, "fitting pieces")
-        pool = sorted((self.schooled(learning, state) for state in pool), key=_rank)
+        schooled = []
+        for state in pool:
+            dear = DEAR * min((met.rank for _, met in schooled), default=np.inf)
+            schooled.append(self.schooled(learning, state, dear))
+        schooled = sorted(schooled, key=_rank)[:FINALISTS]
         tell(0.4, "dropping spare seams")
-        finals = [(state, *self.dropped(met, MARGIN)) for state, met in pool[:FINALISTS]]
+        finals = [(state, *self.dropped(met, MARGIN)) for state, met in schooled if met.rank <= FAR * schooled[0][1].rank]
+        tell(0.5, "refining seams")
         best = None
         for state, _, spare in sorted(finals, key=_rank):
-            for rung in range(learning + 1, top + 1):
-                tell(0.4 + 0.1 * (rung - learning), "refining seams")
+            for rung in range(learning + 1, deciding + 1):
                 state = self.search.lifted(rung, state)
-            tell(0.8, "flattening pieces")
-            met = darted(self.judges, self.confirmed(top, state, spare), self.planes)
-            best = met if best is None else min(best, met, key=_fits_first)
-            if best.fits:
+            found = self.confirmed(deciding, state, spare, CONFIRMATIONS)
+            best = found if best is None else min(best, found, key=_fits_first)
+            if best[0].fits:
                 break
-        return self.dropped(best, halves=False)[0]  # what the coarse rung thought needed, the form itself may not
+        met, state, spare = best
+        if deciding < top:
+            spare = spare + self.dropped(met, halves=False)[1]
+            for rung in range(deciding + 1, top + 1):
+                state = self.search.lifted(rung, state, CARRIED)
+            tell(0.8, "flattening pieces")
+            met = self.confirmed(top, state, spare, LAST_CONFIRMATIONS)[0]
+        met = darted(self.judges, self.untangled(met), self.planes)
+        # what a coarser rung thought needed, the form itself may not
+        return met if deciding < top else self.dropped(met, halves=False)[0]
+
+    def rung_with(self, points):
+        """The first rung of so many points, or the last."""
+        levels = self.ladder.levels
+        return next((rung for rung, level in enumerate(levels) if len(level.free) >= points), len(levels) - 1)
 
     def dropped(self, met, limit=ENOUGH, halves=True):
         """(Tailored, places of what was left out): see `spare.dropped`."""
@@ -81,27 +102,29 @@ class Tailor:
             network = without_nearest(network, places)
         return self.judges.all(network)
 
-    def schooled(self, rung, state):
-        """(State, Tailored) best met while the foresight learns from real flattening."""
+    def schooled(self, rung, state, dear):
+        """(State, Tailored) best met while the foresight learns from real flattening. What begins with a rank beyond `dear`
+        learns nothing."""
         best, vain = None, 0
         for lesson in range(LESSONS):
             met = self.real(rung, state.cut)
             better = best is None or met.rank < best[1].rank
             best, vain = ((state, met), 0) if better else (best, vain + 1)
-            done = (met.fits and met.use > NEARLY) or vain == 2 or len(met.judged) >= MOST_PIECES
+            near = NEARLY < met.use <= MARGIN and not any(one.crossings for one in met.judged)
+            done = near or vain == 2 or len(met.judged) >= MOST_PIECES or best[1].rank > dear
             if done or lesson == LESSONS - 1:
                 return best
             state = self.taught(rung, state, met, ROUNDS)
 
-    def confirmed(self, rung, state, spare):
-        """The best Tailored on the form itself, corrected while it does not fit."""
+    def confirmed(self, rung, state, spare, most):
+        """(Tailored, its State, the places left out), the best of at most so many, corrected while it does not fit."""
         best = None
-        for turn in range(CONFIRMATIONS):
+        for turn in range(most):
             met, spare = self.with_needed(rung, state, spare)
-            best = met if best is None else min(best, met, key=_fits_first)
-            if best.fits or turn == CONFIRMATIONS - 1 or len(met.judged) >= MOST_PIECES:
-                return self.untangled(best)
-            state = self.taught(rung, state, met, 2, insist=turn == CONFIRMATIONS - 2)
+            best = (met, state, spare) if best is None else min(best, (met, state, spare), key=_fits_first)
+            if best[0].fits or turn == most - 1 or len(met.judged) >= MOST_PIECES:
+                return best
+            state = self.taught(rung, state, met, 2, insist=turn == most - 2)
 
     def with_needed(self, rung, state, spare):
         """(Tailored without the spare seams, what of them was spare indeed): where a piece does not fit for want of a seam
@@ -114,7 +137,7 @@ class Tailor:
                 return met, spare
             fewer = put_back(spare, needed[-1], self.planes)
             trial = self.real(rung, state.cut, fewer)
-            if _fits_first(trial) > _fits_first(met):
+            if _fits_first([trial]) > _fits_first([met]):
                 return met, spare
             met, spare = trial, fewer
 
@@ -184,8 +207,9 @@ def _rank(found):
     return found[1].rank
 
 
-def _fits_first(met):
-    return not met.fits, met.rank
+def _fits_first(found):
+    """The rank of a (Tailored, ...), those that fit first."""
+    return not found[0].fits, found[0].rank
 
 
 def _piece_at(network, place):

@@ -59,10 +59,10 @@ class Judges:
         if key not in self.known:
             woven = self.goods.shear is not None
             common = surface, self.goods, self.comfort, self.grain
-            one = judge(*common, stages=1, senseless=limit)
+            one = judge(*common, stages=1, senseless=min(limit, senseless))
             if one.utilisation > limit * (MENDED_WOVEN if woven else MENDED):
                 one = replace(one, utilisation=one.utilisation * (SHAPED_WOVEN if woven else SHAPED))
-            elif one.crossings or one.utilisation > limit:
+            elif one.utilisation > limit and not (one.crossings and senseless <= 0):
                 one = judge(*common, stages=None, start=one.flat, done=1, senseless=senseless)
             self.known[key] = one
         return self.known[key]

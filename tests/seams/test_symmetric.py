@@ -2,7 +2,8 @@
 
 import numpy as np
 import pytest
-from forms import dumbbell, ellipsoid, icosphere, torus
+import seamwright as sw
+from forms import dumbbell, ellipsoid, globe, icosphere, torus
 from parted import level_of
 from scipy.spatial import cKDTree
 from seamwright.form.measure import total_area
@@ -13,6 +14,7 @@ from seamwright.seams.energy import evaluate, field_gradient
 from seamwright.seams.fields import from_labels
 from seamwright.seams.merging import joined
 from seamwright.seams.network import cut_through
+from seamwright.seams.refuse import measured
 from seamwright.seams.symmetric import Symmetry, alike, symmetrised
 from seamwright.seams.topology import make_disks, regions, voronoi
 from seamwright.seams.twins import twin_pieces, twin_stretch
@@ -128,6 +130,17 @@ def test_the_gradient_is_that_of_the_projected_fields(level):
     slope = (symmetry.pull_back(gradient, partners) * step).sum()
     h = 1e-6
     assert slope == pytest.approx((total(h).total - total(-h).total) / (2 * h), rel=1e-4)
+
+
+@pytest.mark.parametrize("made", [globe(24, 16, (0.2, 0.2, 0.2)), torus(0.3, 0.12, 40, 20)], ids=["ball", "ring"])
+def test_what_is_sought_for_goods_is_alike_on_both_sides(made):
+    """Seams for the goods alone: their own mirror image within 0.5 % of the form's size, or a quarter of a coarse edge."""
+    form = sw.Form(*made)
+    pattern = sw.cover(form, sw.Wishes(goods="wool felt"))
+    assert pattern.fits and len(pattern.details["planes"]) == 1
+    off, edge = measured(pattern)[-1], form.surface.edge_lengths.mean() / np.sqrt(total_area(form.surface))
+    assert off.name == "mirror error" and off.value < max(0.005, 0.25 * edge)
+    assert not any(note.startswith("Symmetry") for note in pattern.notes)
 
 
 def test_seams_of_projected_fields_are_mirrored():

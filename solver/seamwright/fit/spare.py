@@ -8,6 +8,7 @@ from .foresee import piece_use
 from .tailored import ENOUGH, Tailored
 
 HOPELESS = 1.2  # use without a chain above which half of it is not tried either, and foreseen, above which none is
+LOPSIDED = 0.05  # share of all seam from which one of two that are mirror images goes, where both cannot
 NEAR = 0.15  # a chain on another rung is the same one when its middle is this near, as a share of the form's size
 
 
@@ -25,7 +26,8 @@ def dropped(judges, met, planes, reach, limit=ENOUGH, halves=True):
                 continue
             group = with_images(met.network, chain, planes)
             trial, use = _without(judges, met, group, limit, most)
-            if use == np.inf and len(group) > 1:  # of the two seams of a sleeve one has to stay
+            alone = _length(met.network, chain) > LOPSIDED * met.network.length()
+            if use == np.inf and len(group) > 1 and alone:  # of the two seams of a sleeve one has to stay
                 group = [chain]
                 trial, use = _without(judges, met, group, limit, most)
             refused.update((_key(one), use) for one in group)

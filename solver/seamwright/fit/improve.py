@@ -3,6 +3,7 @@
 import numpy as np
 
 from ..seams.begun import point_shares
+from ..seams.darts import opened_up
 from ..seams.fields import from_labels, smoothed
 from ..seams.flow import PIECE_PRICE, flow
 from ..seams.seek import enriched, simplify, steps_on
@@ -73,10 +74,10 @@ def _less_in_all(ladder, begin, thrift, energy, pieces):
     np.add.at(votes, (ladder.owners[rung], begin), levels[top].mass)
     coarse = flow(level, from_labels(level, tidied(level, votes.argmax(axis=1))), thrift, energy, steps=steps_on(level))
     coarse = simplify(level, coarse, thrift, energy, pieces)
-    richer = enriched(level, coarse, thrift, energy, pieces)
+    richer = opened_up(level, enriched(level, coarse, thrift, energy, pieces), thrift, energy, pieces)
     if richer is not coarse:
         for higher in range(rung + 1, top + 1):
             fields = ladder.lift(richer.fields, higher - 1)
-            richer = flow(levels[higher], fields, thrift, energy, steps=TRY)
+            richer = flow(levels[higher], fields, thrift, energy, steps=TRY, uncut=richer.cut.uncut)
         pool.append(simplify(levels[top], richer, thrift, energy, pieces))
     return min(pool, key=lambda one: (0 if pieces is None else abs(one.count - pieces), one.score))

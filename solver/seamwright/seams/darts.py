@@ -17,8 +17,9 @@ BLUR = 0.4  # length over which u is evened out to tell how useful a stretch of 
 OPENED = 0.12  # share of half a ring of seam that is left out at first; the flow widens it
 LEAST = 12  # points on both sides of a seam under which it is too short to leave out part of it
 WORSE = 1.1  # times the score, above which a trial is not worth a flow
-TRIED = 2  # trials that flow
-STEPS = 12  # of their flow
+TRIED = 4  # most trials that flow
+ENOUGH = 2  # of them that serve
+STEPS = 8  # of their flow
 
 
 def opened_up(level, found, thrift, energy="square", pieces=None):
@@ -32,12 +33,16 @@ def opened_up(level, found, thrift, energy="square", pieces=None):
         trials = [settle(level, found.cut, labels, thrift, energy, uncut=uncut)
                   for labels, uncut in openings(level, found.cut, use)]
         trials = sorted((trial for trial in trials if trial.score < WORSE * found.score), key=lambda trial: trial.score)
-        trials = [flow(level, trial.fields, thrift, energy, steps=STEPS, uncut=trial.cut.uncut) for trial in trials[:TRIED]]
-        trials = sorted((trial for trial in trials if rank(trial) < rank(found)), key=rank)
-        best = next((trial for trial in trials if lies_flat(level, trial.cut)), None)
-        if best is None:
+        better = []
+        for trial in trials[:TRIED]:
+            flowed = flow(level, trial.fields, thrift, energy, steps=STEPS, uncut=trial.cut.uncut)
+            if rank(flowed) < rank(found) and lies_flat(level, flowed.cut):
+                better.append(flowed)
+            if len(better) == ENOUGH:
+                break
+        if not better:
             return found
-        found = best
+        found = min(better, key=rank)
 
 
 def lies_flat(level, cut):
@@ -121,7 +126,11 @@ def _stretches(level, labels, band, use):
             yield band[own[way > 0.5 * way.max()]]
             yield band[own[way < 0.5 * way.max()]]
         else:
-            for middle in {int(own[use[band[own]].argmin()]), *_on_planes(level, graph, band, own, use)}:
+            first = int(own[use[band[own]].argmin()])
+            way = dijkstra(graph, directed=False, indices=first)[own]
+            second = int(own[np.abs(way - 2 / 3 * way.max()).argmin()])
+            third = int(own[np.minimum(way, dijkstra(graph, directed=False, indices=second)[own]).argmax()])
+            for middle in dict.fromkeys([first, second, third, *_on_planes(level, graph, band, own, use)]):
                 way = dijkstra(graph, directed=False, indices=middle)[own]
                 yield band[own[way < OPENED * way.max()]]
 

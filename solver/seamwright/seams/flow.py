@@ -13,7 +13,7 @@ from .panels import attached, carried, fused, panels
 from .starts import tidied
 
 SLIDES = (4.0, -4.0, 2.0, -2.0)  # edge lengths that a dart's end is moved on in a trial
-MOST_SLIDES = 6  # of each kind
+MOST_SLIDES = 10  # of each end
 COARSE = 3000  # most points of a level where that is tried: on a finer one the ends are about right
 REPAIRS = 3  # flows, as long as regions had to be put right after the last
 PIECE_PRICE = 0.02  # fixed price of a piece, or specks pay
@@ -53,43 +53,43 @@ def flow(level, fields, thrift, energy="square", steps=20, emphasis=None, uncut=
     uncut (K, K) bool: pairs of regions that are of one piece, None for none.
     """
     cut, changed = in_order(level, cut_by_fields(level.surface, fields, level.labels(fields), uncut))
+    sliding = len(level.mass) <= COARSE
     for _ in range(REPAIRS):
         if changed:
             fields = redistance(level, cut, int(cut.labels.max()) + 1)
         end = descend(level, fields, thrift, energy, steps=steps, emphasis=emphasis, uncut=cut.uncut)
         cut, changed = in_order(level, end.cut)
-        if len(cut.end.face) and len(level.mass) <= COARSE:
-            cut, cost = slid(level, cut, thrift, energy, emphasis)
-            changed = changed or cost is not None
+        if sliding and len(cut.end.face):
+            cut, moved = slid(level, cut, thrift, energy, emphasis)
+            changed, sliding = changed or moved, False
         if not changed:
             return Found(level, cut, end.cost, end.converged)
     return settle(level, cut, cut.labels, thrift, energy, end.converged, cut.uncut)
 
 
 def slid(level, cut, thrift, energy, emphasis=None):
-    """(Cut with the ends of darts moved on or back, its total or None if none moved).
+    """(Cut with the ends of darts moved on or back, whether any was).
 
     From face to face the total has small steps, as the mesh does not resolve what happens around an end; the descent stops
     at them, so here an end is tried a little farther on and a little farther back, for as long as that gains.
     """
-    best, moved = evaluate(level, cut, thrift, energy, gradient=False, emphasis=emphasis).total, None
-    for number in range(len(cut.end.face)):
-        for slide in SLIDES:
-            for _ in range(MOST_SLIDES):
-                if number >= len(cut.end.face):
-                    break
-                fields = redistance(level, cut, len(cut.uncut))
-                for beyond, gap in _ends(level, cut, number):
-                    length = slide * level.edge_length
-                    fields[:, beyond] -= length * np.exp(-0.5 * (gap / length) ** 2)
-                trial, _ = in_order(level, cut_by_fields(level.surface, fields, level.labels(fields), cut.uncut))
-                if trial.uncut is None or len(trial.end.face) != len(cut.end.face):
-                    break
-                total = evaluate(level, trial, thrift, energy, gradient=False, emphasis=emphasis).total
-                if total >= best:
-                    break
-                cut, best, moved = trial, total, total
-    return cut, moved
+    def total(cut):
+        return evaluate(level, cut, thrift, energy, gradient=False, emphasis=emphasis).total
+
+    least, number, slides = total(cut), 0, 0
+    while number < len(cut.end.face):
+        fields, ends = redistance(level, cut, len(cut.uncut)), _ends(level, cut, number)
+        for slide in SLIDES if slides < MOST_SLIDES * (number + 1) else ():
+            shifted, length = fields.copy(), slide * level.edge_length
+            for beyond, gap in ends:
+                shifted[:, beyond] -= length * np.exp(-0.5 * (gap / length) ** 2)
+            trial = in_order(level, cut_by_fields(level.surface, shifted, level.labels(shifted), cut.uncut))[0]
+            if len(trial.end.face) == len(cut.end.face) and total(trial) < least:
+                cut, least, slides = trial, total(trial), slides + 1
+                break
+        else:
+            number += 1
+    return cut, slides > 0
 
 
 def _ends(level, cut, number):

@@ -69,11 +69,12 @@ def measured_row(name, count, thrift, symmetry):
     seconds, wall = np.subtract(spent(), begin)
     peak = resource.getrusage(resource.RUSAGE_SELF).ru_maxrss * MAXRSS
     unit = (before + one_factorisation(form.surface)) / 2  # a busy machine's pace drifts
-    pattern = drawn(form, network_of(ladder, found.cut), planes)
+    network = network_of(ladder, found.cut)
+    pattern = drawn(form, network, planes)
     pattern.details["thrift"] = thrift
     refused, values = refusals(measured(pattern))
     row = Row(name, count, len(form.points), thrift, bool(planes), seconds, wall, seconds / unit, peak, found.score,
-              found.count, found.cost.length / ladder.factor, found.converged, refused, values)
+              found.count, network.length(), found.converged, refused, values)
     return row, pattern
 
 

@@ -188,7 +188,7 @@ def test_seams_keep_clear():
     def there(middle):
         return middle[:, 2] > 0.1
 
-    assert metres(before, there) > 0.3 * metres(before)
+    assert metres(before, there) > 0.25 * metres(before)
     assert metres(after, there) < 0.05 * metres(after)
 
 
@@ -197,7 +197,7 @@ def test_a_start_is_improved(energy):
     """The start's own energy, on its own scale, is never less than that of what is made of it."""
     (points, faces), _ = CASES["egg in spandex"]
     labels = (points[faces].mean(axis=1) @ [0.3, 0.2, 1.0] > 0.15).astype(int)
-    form, pattern = covered("egg in spandex", "through", thrift=0.2, energy=energy, start=tuple(labels))
+    form, pattern = covered("egg in spandex", "through", thrift=0.2, energy=energy, start=tuple(labels), pieces=2)
     home = np.zeros(len(form.triangles), dtype=int)
     for number, piece in enumerate(pattern.pieces):
         home[piece.source] = number

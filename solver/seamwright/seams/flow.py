@@ -47,13 +47,14 @@ class Found:
         return redistance(self.level, self.cut, int(self.cut.labels.max()) + 1)
 
 
-def flow(level, fields, thrift, energy="square", steps=20, emphasis=None, uncut=None):
+def flow(level, fields, thrift, energy="square", steps=20, emphasis=None, uncut=None, slides=False):
     """Flow, then put the topology right (disks, no specks), and flow again as long as that changed it. Returns Found.
 
-    uncut (K, K) bool: pairs of regions that are of one piece, None for none.
+    uncut (K, K) bool: pairs of regions that are of one piece, None for none; slides: the ends of darts are slid on a fine
+    level too.
     """
     cut, changed = in_order(level, cut_by_fields(level.surface, fields, level.labels(fields), uncut))
-    sliding = len(level.mass) <= COARSE
+    sliding = slides or len(level.mass) <= COARSE
     for _ in range(REPAIRS):
         if changed:
             fields = redistance(level, cut, int(cut.labels.max()) + 1)

@@ -18,6 +18,7 @@ from .middle import middles
 
 OTHER_DIAGONAL = np.array([[0, 3, 4], [3, 1, 4], [1, 2, 4]])
 """The sub-triangles of a face with two regions, its four-sided part cut along the diagonal that `cut.TWO` leaves."""
+TURNS = 8  # of bringing the ends of darts to their mirror images
 NEAREST = 0.1  # share of an edge that a cut keeps from its ends: less makes needles, more makes the seam zigzag
 
 
@@ -192,16 +193,19 @@ def cut_through(level, cut, metric):
 
 
 def _ends_alike(level, cut, middle, points):
-    """Points (n, 3) with the ends of darts, `middle` (k,), where their mirror images are, as far as their faces reach."""
+    """Points (n, 3) with the ends of darts, `middle` (k,), where their mirror images are, as far as their faces reach.
+
+    By turns each goes to the place of its face that is nearest to half the way to the other's image.
+    """
     corners = level.surface.points[level.surface.triangles[cut.end.face]]
     for mirror in level.symmetry.mirrors if level.symmetry is not None and len(middle) else ():
-        images = mirror.plane.mirrored(points[middle])
-        gap = np.linalg.norm(points[middle][:, None] - images, axis=2)
-        twin = gap.argmin(axis=1)
-        near = gap.min(axis=1) < 2 * level.edge_length
-        wanted = np.where(near[:, None], 0.5 * (points[middle] + images[twin]), points[middle])
-        share = np.maximum(closest_on_triangles(wanted, corners)[0], NEAREST / 2)
-        points[middle] = np.einsum("kc,kcd->kd", share / share.sum(axis=1, keepdims=True), corners)
+        gap = np.linalg.norm(points[middle][:, None] - mirror.plane.mirrored(points[middle]), axis=2)
+        twin, near = gap.argmin(axis=1), gap.min(axis=1) < 2 * level.edge_length
+        for _ in range(TURNS):
+            wanted = 0.5 * (points[middle] + mirror.plane.mirrored(points[middle[twin]]))
+            share = np.maximum(closest_on_triangles(wanted, corners)[0], NEAREST / 2)
+            place = np.einsum("kc,kcd->kd", share / share.sum(axis=1, keepdims=True), corners)
+            points[middle] = np.where(near[:, None], place, points[middle])
     return points
 
 

@@ -151,7 +151,7 @@ def through_tips(points, found, thrift, energy, pieces=None):
             break
         amount[missed] = more
         weight = points.emphasis(amount)
-        trial = flow(level, trial.fields, thrift, energy, steps_on(level), weight[rung], trial.cut.uncut)
+        trial = flow(level, trial.fields, thrift, energy, steps_on(level), weight[rung], trial.cut.uncut, slides=True)
         fewer = points.missed(trial).sum() < points.missed(found).sum()
         if fewer and (pieces is None or trial.count == found.count):
             plain = settle(level, trial.cut, trial.cut.labels, thrift, energy, trial.converged, trial.cut.uncut)

@@ -122,7 +122,8 @@ def test_along_edges_against_through_faces(name):
 @pytest.mark.parametrize("name", ["ball", "egg", "pear", "crate", "buoy", "worm", "shade", "bowl"])
 def test_nothing_to_refuse(name):
     """Seams for a thrift are such as a patternmaker would sew, limbs and all."""
-    row, pattern = stage.measured_row(name, 5000, 0.1, "auto")
+    points = 5000 if name == "egg" else 3000  # on its uneven mesh half an edge is what mirror images are off by
+    row, pattern = stage.measured_row(name, points, 0.1, "auto")
     assert row.refused == [], [one.sentence for one in measured(pattern) if one.refused]
     assert row.symmetric == (name != "worm")  # which is twisted
 

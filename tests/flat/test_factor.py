@@ -5,7 +5,7 @@ import pytest
 from forms import cap
 from scipy.sparse import csc_matrix, diags, random
 from seamwright.errors import CoverError
-from seamwright.flat.factor import factor
+from seamwright.flat.factor import across, factor
 from seamwright.flat.rest import Rest
 from seamwright.form.laplacian import Factor
 from seamwright.form.surface import Surface
@@ -33,6 +33,16 @@ def test_a_wide_band_goes_to_general_factors():
     assert isinstance(factors, Factor)
     load = np.random.default_rng(0).standard_normal(matrix.shape[0])
     np.testing.assert_allclose(matrix @ factors.solve(load), load, atol=1e-9)
+
+
+@pytest.mark.parametrize("rings", [3, 8])
+def test_the_inverse_between_rows_is_a_dense_solvers(rings):
+    rng = np.random.default_rng(rings)
+    matrix = laplacian(*cap(1.0, rings))
+    rows = rng.standard_normal((7, matrix.shape[0]))
+    wanted = rows @ np.linalg.solve(matrix.toarray(), rows.T)
+    for factors in (factor(matrix), Factor(matrix)):
+        np.testing.assert_allclose(across(factors, rows), wanted, rtol=1e-9, atol=1e-9 * np.abs(wanted).max())
 
 
 def test_matrices_that_cannot_be_solved_are_refused():

@@ -17,6 +17,8 @@ from .springs import EXACT, Gaps, Springs
 
 STEPS = 12
 """Most Newton steps for each exponent."""
+LOOK = 2
+"""Steps after which is looked whether the seams match already."""
 STIFFNESS = 100.0
 """Of the springs along the seams, per area of the pieces; that of a piece's energy at its limits is under 1e-4."""
 GROWTH = np.geomspace(1e-6, 1e-1, 6)
@@ -55,19 +57,23 @@ def match(surfaces, flats, joints, goods, comfort=0.0, wanted=None):
     table.gaps.wanted = table.gaps.ease(table.free, np.log1p(goods.ease))
     exponents, now, steps = exponents_for(goods), table.free, 0
     wished, hard = _Limits(table, goods, comfort), _Limits(table, goods, 0.0)
+
+    def done(flat):
+        return table.largest_gap(flat) <= EXACT and wished.kept(flat) and hard.kept(flat)
+
     for limits in (wished, hard):
         damping = DAMPING
         for exponent in exponents:
             if limits.kept(now) and hard.kept(now) and table.largest_gap(now) <= EXACT:
                 break
-            now, taken, damping = table.pulled(now, limits, exponent, 1.0, damping)
+            now, taken, damping = table.pulled(now, limits, exponent, 1.0, damping, done)
             steps += taken
         if limits.kept(now) and hard.kept(now):
             break
     else:
         now, trial, damping = table.free, table.free, DAMPING
         for share in GROWTH:
-            trial, taken, damping = table.pulled(trial, hard, exponents[-1], share, damping)
+            trial, taken, damping = table.pulled(trial, hard, exponents[-1], share, damping, done)
             now, steps = trial if hard.kept(trial) else now, steps + taken
     mismatch = table.gaps.sizes(now)[0]
     return Matched([as_points(part) for part in table.stack.split(now)], wished.used(now).tolist(),
@@ -90,14 +96,17 @@ class _Table:
         """Of all stretches."""
         return np.abs(self.gaps.sizes(flat)[0]).max()
 
-    def pulled(self, flat, limits, exponent, share, damping):
-        """(flat, steps, damping) after some steps with springs of this share of their stiffness."""
+    def pulled(self, flat, limits, exponent, share, damping, done):
+        """(flat, steps, damping) after some steps with springs of this share of their stiffness, until it is done(flat)."""
         energy = GoodsEnergy(limits.goods, limits.comfort, exponent, limits.levels(flat))
         beside = [Springs(self.gaps, share * STIFFNESS * self.stack.total), *self.held]
         if self.fence.outlines:
             beside.append(Push(self.fence, self.stack.area @ energy.density(*self.stack.maps(flat))))
         state = State(self.stack, energy, flat, beside)
-        steps, damping = settle(state, STEPS, damping)
+        steps, taken = 0, LOOK
+        while steps < STEPS and taken == LOOK and not done(state.flat):
+            taken, damping = settle(state, LOOK, damping)
+            steps += taken
         return state.flat, steps, damping
 
 

@@ -10,8 +10,6 @@ from ..form.laplacian import Factor
 
 WIDEST = 320
 """Bandwidth beyond which general sparse factors are quicker; measured, a round piece reaches it at some 16 000 points."""
-MANY = 8
-"""Loads from which they are solved for block by block."""
 
 
 class Pattern:
@@ -63,6 +61,14 @@ def _narrow_order(row, column, count):
     return reverse_cuthill_mckee(graph.tocsr(), symmetric_mode=True)
 
 
+def across(factors, rows):
+    """(m, m) rows @ A^-1 @ rows.T of the matrix A with these factors, for dense rows (m, n)."""
+    if isinstance(factors, _Banded):
+        half = factors.half(rows.T)
+        return half.T @ half
+    return rows @ factors.solve(rows.T)
+
+
 class _Banded:
     def __init__(self, band, order):
         self._band, self._order = band, order
@@ -70,31 +76,25 @@ class _Banded:
     def solve(self, load):
         load = np.asarray(load, dtype=float)
         answer = np.empty_like(load)
-        if load.ndim == 2 and load.shape[1] >= MANY:
-            answer[self._order] = self._by_blocks(load[self._order])
-        else:
-            answer[self._order] = cho_solve_banded((self._band, True), load[self._order], check_finite=False)
+        answer[self._order] = cho_solve_banded((self._band, True), load[self._order], check_finite=False)
         return answer
 
-    def _by_blocks(self, load):
-        """Forwards and backwards through blocks as large as the band is wide: a block has to do with its neighbours alone,
-        above the diagonal of what lies between them."""
+    def half(self, loads):
+        """(n, m) in the factors' order: the factor's inverse times loads (n, m).
+
+        Through blocks as large as the band is wide: a block has to do with the one before alone, above the diagonal of what
+        lies between them.
+        """
+        half = loads[self._order]
         wide, count = self._band.shape
         down, along = self._band.strides
         entries = as_strided(self._band, (count, count), (down, along - down), writeable=False)  # right within the band
         above = np.arange(wide)[:, None] < np.arange(wide)
-        blocks = [slice(begin, min(begin + wide, count)) for begin in range(0, count, wide)]
-        for before, own in zip([None, *blocks], blocks, strict=False):
-            if before:
-                load[own] -= _kept(entries[own, before], above) @ load[before]
-            load[own] = solve_triangular(entries[own, own], load[own], lower=True, check_finite=False)
-        for own, after in reversed(list(zip(blocks, [*blocks[1:], None], strict=True))):
-            if after:
-                load[own] -= _kept(entries[after, own], above).T @ load[after]
-            load[own] = solve_triangular(entries[own, own], load[own], trans=1, lower=True, check_finite=False)
-        return load
-
-
-def _kept(block, mask):
-    """The block where the mask is, 0 elsewhere; the last block may have fewer rows."""
-    return np.where(mask[: len(block)], block, 0.0)
+        before = slice(0, 0)
+        for begin in range(0, count, wide):
+            own = slice(begin, min(begin + wide, count))
+            if begin:
+                half[own] -= np.where(above[: own.stop - begin], entries[own, before], 0.0) @ half[before]
+            half[own] = solve_triangular(entries[own, own], half[own], lower=True, check_finite=False)
+            before = own
+        return half

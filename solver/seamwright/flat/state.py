@@ -3,6 +3,8 @@
 import numpy as np
 from scipy.sparse import vstack
 
+from .factor import across
+
 
 class State:
     """Flat points (n,) complex with their maps, energy (`value`, not per area) and gradient (n,) complex.
@@ -60,18 +62,17 @@ class State:
 
     def _resisted(self, direction, blocks, rows, give):
         """The direction with the resistance of the rows (Woodbury's formula), block by block."""
-        matrix, right, answers = np.diag(give), np.zeros(len(give)), []
+        matrix, right, parts = np.diag(give), np.zeros(len(give)), []
         for own, factors in blocks:
             part = rows[:, own].tocsr()
             touched = np.flatnonzero(np.diff(part.indptr))
             part = part[touched].toarray().view(float)
-            answer = factors.solve(part.T)
-            matrix[np.ix_(touched, touched)] += part @ answer
+            matrix[np.ix_(touched, touched)] += across(factors, part)
             right[touched] += part @ direction[own].view(float)
-            answers.append((own, touched, answer))
+            parts.append((own, factors, touched, part))
         pulls = np.linalg.solve(matrix, right)
-        for own, touched, answer in answers:
-            direction[own] -= (answer @ pulls[touched]).view(complex)
+        for own, factors, touched, part in parts:
+            direction[own] -= factors.solve(pulls[touched] @ part).view(complex)
         return direction
 
     def settle(self, most, damping, least_gain):

@@ -4,7 +4,6 @@ So two pieces become one with a seam that ends inside it, and where it ends is t
 """
 
 import numpy as np
-from scipy.sparse import coo_matrix
 from scipy.sparse.csgraph import connected_components, dijkstra
 
 from ..errors import CoverError
@@ -12,6 +11,7 @@ from ..flat import flatten, overlaps
 from .flow import flow, settle
 from .network import cut_through
 from .panels import fused, panels
+from .topology import graph_within
 
 BLUR = 0.4  # length over which u is evened out to tell how useful a stretch of seam is, on the levels' scale
 OPENED = 0.12  # share of half a ring of seam that is left out at first; the flow widens it
@@ -93,8 +93,7 @@ def openings(level, cut, use):
         inside = np.flatnonzero((labels == i) | (labels == j))
         between = surface.edges[(ends == (i, j)).all(axis=1)]
         for far in _stretches(level, labels, np.unique(between), use):
-            opened = _nearest(surface, inside, np.unique(between), far)
-            yield _opened(level, labels, old, opened)
+            yield _opened(level, labels, old, _nearest(level, inside, np.unique(between), far))
 
 
 def _seen_before(level, labels, i, j):
@@ -108,7 +107,7 @@ def _seen_before(level, labels, i, j):
 def _stretches(level, labels, band, use):
     """Yield points (k,) of the `band` (q,) beside a seam along which it is left out."""
     surface = level.surface
-    graph = _graph(surface, band)
+    graph = graph_within(level, band)
     component = connected_components(graph, directed=False)[1]
     touched = np.zeros(len(labels), dtype=bool)  # beside a third region or an open edge
     ends = labels[surface.edges]
@@ -145,19 +144,11 @@ def _on_planes(level, graph, band, own, use):
             yield int(there[use[band[there]].argmin()])
 
 
-def _graph(surface, points):
-    number = np.full(len(surface.points), -1)
-    number[points] = np.arange(len(points))
-    ends = number[surface.edges]
-    kept = (ends >= 0).all(axis=1)
-    return coo_matrix((surface.edge_lengths[kept], tuple(ends[kept].T)), shape=(len(points),) * 2).tocsr()
-
-
-def _nearest(surface, inside, band, far):
+def _nearest(level, inside, band, far):
     """(k,) points of `inside` that are nearer to the points `far` than to others of the band."""
-    number = np.full(len(surface.points), -1)
+    number = np.full(len(level.mass), -1)
     number[inside] = np.arange(len(inside))
-    _, _, source = dijkstra(_graph(surface, inside), directed=False, indices=number[band], min_only=True,
+    _, _, source = dijkstra(graph_within(level, inside), directed=False, indices=number[band], min_only=True,
                             return_predecessors=True)
     return inside[np.isin(source, number[far])]
 

@@ -120,7 +120,7 @@ def absorb(level, labels, smallest):
 def voronoi(level, count, inside=None):
     """(k,) cell of each point of `inside` (all by default): farthest points by distance along edges, two Lloyd sweeps."""
     inside = np.arange(len(level.surface.points)) if inside is None else inside
-    graph = _graph(level, inside)
+    graph = graph_within(level, inside)
     points, mass = level.surface.points[inside], np.maximum(level.mass[inside], 1e-30)
     middle = (points * mass[:, None]).sum(0) / mass.sum()
     seeds = [int(np.argmax(np.linalg.norm(points - middle, axis=1)))]
@@ -143,7 +143,7 @@ def nearer(level, inside, places):
     """(k,) which of the places (c, 3) each point of `inside` is nearest to, by distance along edges."""
     points = level.surface.points[inside]
     seeds = [int(np.argmin(np.linalg.norm(points - place, axis=1))) for place in places]
-    return _nearest(level, inside, _graph(level, inside), seeds)
+    return _nearest(level, inside, graph_within(level, inside), seeds)
 
 
 def through(level, inside, peak):
@@ -158,7 +158,7 @@ def through(level, inside, peak):
     return (off @ normal > 0).astype(np.int64)
 
 
-def _graph(level, inside):
+def graph_within(level, inside):
     """(k, k) csr of edge lengths among the points `inside`."""
     surface = level.surface
     number = np.full(len(surface.points), -1)

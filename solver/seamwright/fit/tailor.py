@@ -69,6 +69,8 @@ class Tailor:
             for rung in range(learning + 1, deciding + 1):
                 state = self.search.lifted(rung, state)
             found = self.confirmed(deciding, state, spare, CONFIRMATIONS)
+            if deciding == top:  # with its darts the dearer one may be the one that fits
+                found = darted(self.judges, self.untangled(found[0]), self.planes), *found[1:]
             best = found if best is None else min(best, found, key=_fits_first)
             if best[0].fits:
                 break
@@ -79,7 +81,7 @@ class Tailor:
                 state = self.search.lifted(rung, state, CARRIED)
             tell(0.8, "flattening pieces")
             met = self.confirmed(top, state, spare, LAST_CONFIRMATIONS)[0]
-        met = darted(self.judges, self.untangled(met), self.planes)
+            met = darted(self.judges, self.untangled(met), self.planes)
         # what a coarser rung thought needed, the form itself may not
         return met if deciding < top else self.dropped(met, halves=False)[0]
 

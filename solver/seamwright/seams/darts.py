@@ -16,7 +16,7 @@ from .topology import graph_within
 BLUR = 0.4  # length over which u is evened out to tell how useful a stretch of seam is, on the levels' scale
 OPENED = 0.12  # share of half a ring of seam that is left out at first; the flow widens it
 LEAST = 12  # points on both sides of a seam under which it is too short to leave out part of it
-WORSE = 1.1  # times the score, above which a trial is not worth a flow
+WORSE = 1.05  # times the score, above which a trial is not worth a flow
 TRIED = 4  # most trials that flow
 ENOUGH = 2  # of them that serve
 STEPS = 8  # of their flow

@@ -17,6 +17,7 @@ SPLIT_STEPS = 12  # of flow after a split
 STEPS = ((1000, 24), (3000, 12), (12000, 6))  # points up to which a level takes so many steps; a finer one takes
 LAST_STEPS = 1
 LOPSIDED = 0.95  # share of the score down to which seams may become cheaper by keeping but one plane of two
+TWINS = 0.98  # times the score with a left and a right piece: of a seam between them part can be left out alone
 DEAR = 1.05  # share of the score up to which seams may become dearer by running through tips
 
 
@@ -166,8 +167,16 @@ def steps_on(level):
 
 
 def _best(pool, pieces):
-    """The networks, the best first, of those alike only one."""
+    """The networks, the best first, of those alike only one; a seam on a plane of symmetry is worth a little."""
+    def rank(found):
+        labels, symmetry, score = found.cut.labels, found.level.symmetry, found.score
+        if symmetry is not None:
+            regions = np.arange(int(labels.max()) + 1)
+            if any((partner != regions).any() for partner in symmetry.partners(labels, len(regions))):
+                score *= TWINS
+        return 0 if pieces is None else abs(found.count - pieces), score
+
     first = {}
-    for found in sorted(pool, key=lambda found: (0 if pieces is None else abs(found.count - pieces), found.score)):
+    for found in sorted(pool, key=rank):
         first.setdefault(found.cut.labels.tobytes(), found)
     return list(first.values())

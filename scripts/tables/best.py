@@ -1,5 +1,5 @@
 """Scores against the best known: that of the default run over the best of many differently seeded ones, and symmetric
-against free. A score is the energy with its seam and the price of its pieces, as the seam stage minimises it."""
+against free. A score is the energy with its seam and the price of its pieces and darts, as the seam stage takes it."""
 
 from dataclasses import dataclass
 

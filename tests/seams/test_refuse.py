@@ -68,9 +68,8 @@ SHEETS = {
     "four quarters": (sheet([(20, 0), (20, 40)], [(0, 20), (40, 20)]), set()),
     "a speck": (sheet([(0, 3), (3, 3), (3, 0)]), {"smallest piece", "sharp bend"}),
     "a strip": (sheet([(20, 0), (20, 40)], [(21, 0), (21, 40)]), {"narrow share"}),
-    "two darts": (sheet([(20, 0), (20, 15)], [(20, 40), (20, 25)]), set()),
-    "three darts": (sheet([(20, 0), (20, 15)], [(20, 40), (20, 25)], [(0, 20), (12, 20)]), {"dart ends"}),
-    "a slit": (sheet([(20, 10), (20, 30)]), {"pieces that are no disks", "loose bits of seam"}),
+    "two darts": (sheet([(20, 0), (20, 15)], [(20, 40), (20, 25)]), {"dart ends"}),
+    "a slit": (sheet([(20, 10), (20, 30)]), {"pieces that are no disks", "loose bits of seam", "dart ends"}),
     "a ring": (sheet([(10, 10), (30, 10), (30, 30), (10, 30), (10, 10)]),
                {"pieces that are no disks", "loose bits of seam", "sharp bend"}),
     "a bend": (sheet([(10, 0), (10, 10), (30, 30), (30, 40)]), set()),
@@ -105,7 +104,7 @@ def test_values_by_hand():
     assert value(SHEETS["a sharp junction"][0], "junction angle") == pytest.approx(45, abs=1e-9)
     assert value(SHEETS["a sharp corner"][0], "tip angle") == pytest.approx(np.degrees(np.arctan(1 / 2.5)), abs=1e-9)
     assert value(SHEETS["a short link"][0], "link between junctions") == pytest.approx(1 / N)
-    assert value(SHEETS["three darts"][0], "dart ends") == 3
+    assert value(SHEETS["two darts"][0], "dart ends") == 2
     assert value(SHEETS["a bend"][0], "sharp bend") == pytest.approx(45, abs=1e-9)
     assert value(SHEETS["a jog"][0], "sharp bend") == pytest.approx(90, abs=1e-9)
     assert value(SHEETS["a jog"][0], "seam on a bulge") == 0

@@ -85,8 +85,8 @@ def slid(level, cut, thrift, energy, emphasis=None):
             for beyond, gap in ends:
                 shifted[:, beyond] -= length * np.exp(-0.5 * (gap / length) ** 2)
             trial = in_order(level, cut_by_fields(level.surface, shifted, level.labels(shifted), cut.uncut))[0]
-            if len(trial.end.face) == len(cut.end.face) and total(trial) < least:
-                cut, least, slides = trial, total(trial), slides + 1
+            if len(trial.end.face) == len(cut.end.face) and (reached := total(trial)) < least:
+                cut, least, slides = trial, reached, slides + 1
                 break
         else:
             number += 1

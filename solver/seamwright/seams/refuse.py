@@ -146,9 +146,9 @@ def shortest_link(seen, limit=0.04):
 
 
 def dart_ends(seen, share=0.25):
-    """How many darts end inside pieces, against a share of the tips; a left and a right one may always be, and a seam on its
-    own, around which a piece closes, has two ends that do not count."""
-    count, limit = int((seen.degree[seen.ends] == 1).sum()) - 2 * seen.lone_pieces, max(2, int(share * len(seen.tips)))
+    """How many darts end inside pieces, against a share of the tips; a seam on its own, around which a piece closes, has two
+    ends that do not count."""
+    count, limit = int((seen.degree[seen.ends] == 1).sum()) - 2 * seen.lone_pieces, max(1, int(share * len(seen.tips)))
     return _most("dart ends", count, limit, f"{count} darts end inside pieces; {limit} would do. Let a seam run through.")
 
 

@@ -32,20 +32,10 @@ def dome(cuts):
 
 def add_row(bm, rim, place):
     """Extrude the rim's edges and put every new point where `place(co)` says; returns the new rim's edges."""
-    new = set(bmesh.ops.extrude_edge_only(bm, edges=rim)["geom"])
+    new = bmesh.ops.extrude_edge_only(bm, edges=rim)["geom"]
     for vert in (item for item in new if isinstance(item, bmesh.types.BMVert)):
         vert.co = place(vert.co.copy())
-    _in_order(bm)
-    return [edge for edge in bm.edges if edge in new and edge.is_boundary]
-
-
-def _in_order(bm):
-    """Number points, edges and faces by where they are: an extrusion numbers what is new by chance, anew in every run."""
-    for items, middle in ((bm.verts, lambda vert: vert.co), (bm.edges, lambda edge: edge.verts[0].co + edge.verts[1].co),
-                          (bm.faces, lambda face: face.calc_center_median())):
-        order = sorted(items, key=lambda item: [round(c, 6) for c in middle(item)])
-        rank = {item: at for at, item in enumerate(order)}
-        items.sort(key=rank.get)
+    return [item for item in new if isinstance(item, bmesh.types.BMEdge) and item.is_boundary]
 
 
 def to_object(bm, name):

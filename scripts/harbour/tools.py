@@ -38,12 +38,30 @@ def add_row(bm, rim, place):
     return [item for item in new if isinstance(item, bmesh.types.BMEdge) and item.is_boundary]
 
 
+def _number_by_place(bm):
+    """Put points in order of their places, edges and faces in order of their points.
+
+    An extrusion numbers what is new by chance, anew in every run, and the patterns would differ with it. This is done once,
+    when the modelling is over: references to points, edges and faces are void after a sort.
+    """
+    for rank, vert in enumerate(sorted(bm.verts, key=lambda vert: tuple(vert.co))):
+        vert.index = rank
+    bm.verts.sort()
+    for items in (bm.edges, bm.faces):
+        for rank, item in enumerate(sorted(items, key=lambda item: sorted(vert.index for vert in item.verts))):
+            item.index = rank
+        items.sort()
+
+
 def to_object(bm, name):
-    """The bmesh as an object in the scene, with faces turned outward and shaded smooth."""
+    """The bmesh as an object in the scene, numbered by place, with faces turned outward and shaded smooth."""
+    _number_by_place(bm)
     bmesh.ops.recalc_face_normals(bm, faces=bm.faces[:])
     mesh = bpy.data.meshes.new(name)
     bm.to_mesh(mesh)
     bm.free()
+    for edge in mesh.edges:
+        edge.vertices = sorted(edge.vertices)  # modifiers number what they add along an edge from its first end
     thing = bpy.data.objects.new(name, mesh)
     bpy.context.scene.collection.objects.link(thing)
     smooth(thing)

@@ -69,6 +69,15 @@ def split_quads(quads):
     return np.stack([quads[:, [0, 1, 2]], quads[:, [0, 2, 3]]], axis=1).reshape(-1, 3)
 
 
+def sheet(count):
+    """Flat square of count x count quads, side 1."""
+    line = np.linspace(0, 1, count + 1)
+    x, y = np.meshgrid(line, line)
+    points = np.column_stack([x.ravel(), y.ravel(), np.zeros(x.size)])
+    corner = (np.arange(count)[:, None] * (count + 1) + np.arange(count)).ravel()
+    return points, np.column_stack([corner, corner + 1, corner + count + 2, corner + count + 1])
+
+
 def frustum(r1, r2, h, n, rings=None, closed=False):
     """Side of a cone cut off, radius r1 at z = 0 and r2 at z = h, n points around; `closed` adds both ends as n-gons."""
     rings = rings or max(1, round(np.hypot(r1 - r2, h) / (2 * np.pi * max(r1, r2) / n)))

@@ -42,8 +42,9 @@ def rows(names, counts, thrifts):
 
 def measured_row(form, thrift):
     """(Row, Pattern along edges) of a Form of one part."""
-    ladder, found, planes = stage(form, thrift)
+    ladder, found, _ = stage(form, thrift)
     through = network_of(ladder, found.cut)
+    ladder, found, planes = stage(form, thrift, along=~form.diagonal)
     along = cut_along(ladder.levels[-1], found.cut, form.polygon, form.diagonal, 1 / ladder.factor)
     free, bound = (network_cost(ladder, network, thrift) for network in (through, along))
     pattern = drawn(form, along, planes)

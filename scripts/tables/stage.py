@@ -52,10 +52,11 @@ def spent():
     return time.process_time() + children.ru_utime + children.ru_stime, time.perf_counter()
 
 
-def stage(form, thrift, symmetry="auto", seed=0):
-    """(Ladder, Found, planes) of the seam stage as `cover` runs it for a Form of one part."""
+def stage(form, thrift, symmetry="auto", seed=0, along=None):
+    """(Ladder, Found, planes) of the seam stage as `cover` runs it for a Form of one part; along (e,) bool: the edges that
+    seams are to keep to, if any."""
     planes = planes_of_symmetry(form.surface) if symmetry == "auto" else []
-    ladder = Ladder(form.surface, planes=planes, seed=seed)
+    ladder = Ladder(form.surface, planes=planes, seed=seed, along=along)
     found = seek(ladder, thrift)
     return ladder, found, ladder.planes
 

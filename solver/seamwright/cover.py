@@ -107,8 +107,11 @@ def _cover_part(form, part, wishes, goods, pieces, tell, notes):
 
 def _sought(ground, planes, begun, wishes, goods, pieces, tell, notes):
     """(Tailored of a Ground, the planes it keeps), from scratch or from a Network begun with; pieces: a wished number."""
+    for_thrift = begun is None and (wishes.thrift is not None or pieces is not None)
+    # the search for the goods counts lengths through faces on either route: as edges count them, it ended with more metres
+    along = ~ground.diagonal if for_thrift and wishes.route == "edges" else None
     ladder = Ladder(ground.surface, ground.price, planes, seed=int(wishes.seed), patch=ground.patch,
-                    strict=not isinstance(wishes.symmetry, str))
+                    strict=not isinstance(wishes.symmetry, str), along=along)
 
     def explicit(cut):
         return ground.network(ladder.levels[-1], cut, wishes.route, 1 / ladder.factor)
@@ -118,10 +121,10 @@ def _sought(ground, planes, begun, wishes, goods, pieces, tell, notes):
         result, kept = improve(tailor, begun, wishes.thrift, wishes.energy, pieces, tell)
         if kept:
             notes.append("Start: no better seams were found from there, so they are as they were.")
-    elif wishes.thrift is None and pieces is None:
-        result = without_stubs(tailor.judges, sized(ground, tailor, tailor.run(tell), wishes.route), tailor.planes)
-    else:
+    elif for_thrift:
         result = _for_thrift(ladder, tailor, wishes, pieces, tell)
+    else:
+        result = without_stubs(tailor.judges, sized(ground, tailor, tailor.run(tell), wishes.route), tailor.planes)
     return (result if pieces is None else joined(tailor, result, pieces)), ladder.planes
 
 

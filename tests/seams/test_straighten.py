@@ -2,7 +2,7 @@
 
 import numpy as np
 import pytest
-from forms import icosphere, starfish, torus, wrapped_grid
+from forms import icosphere, sheet, starfish, torus, wrapped_grid
 from parted import cells
 from seamwright.form.form import Form
 from seamwright.form.mirror import Plane, planes
@@ -14,15 +14,6 @@ from seamwright.seams.route import cut_along
 from seamwright.seams.straighten import corridor, mirrored, straightened
 from seamwright.seams.symmetric import Mirror
 from seamwright.seams.topology import make_disks
-
-
-def sheet(count):
-    """Flat square of count x count quads, side 1."""
-    line = np.linspace(0, 1, count + 1)
-    x, y = np.meshgrid(line, line)
-    points = np.column_stack([x.ravel(), y.ravel(), np.zeros(x.size)])
-    corner = (np.arange(count)[:, None] * (count + 1) + np.arange(count)).ravel()
-    return points, np.column_stack([corner, corner + 1, corner + count + 2, corner + count + 1])
 
 
 def network_along(form, path):

@@ -12,6 +12,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from .cut import rises
+from .edgewise import stepped
 from .level import triangle_stiffness
 from .nodes import Nodes
 
@@ -86,7 +87,7 @@ def evaluate(level, cut, thrift, energy, weights=None, gradient=True, emphasis=N
     each = np.bincount(labels, per_point * mass)
     distortion = float(each.sum())
     price, gain = nodes.prices(level, cut)
-    length, pull, dearer = _length(nodes, price)
+    length, pull, dearer = _length(level, nodes, price)
     slope = None
     if gradient:
         at_nodes = [np.append(values, 0.0)[at] for values in (u, p, per_mass)]
@@ -107,11 +108,21 @@ def _pull(area, rise, share, u, p, per_mass):
     return area[:, None, None] * (inner[:, None, None] * rise + share * turn)
 
 
-def _length(nodes, price):
-    """(priced seam length, (N, 2) its gradient by the nodes' positions, (N,) by the price at the cuts)."""
+def _steps(level, nodes):
+    """(length (s,) of the seams' segments, along edges where the level counts so; (s, 2) length times its gradient by their
+    heads)."""
     a, b = nodes.seams.T
     along = nodes.place[b] - nodes.place[a]
-    length = np.maximum(np.linalg.norm(along, axis=1), 1e-30)
+    if level.edgewise is not None:
+        length, slope = stepped(along, level.edgewise[nodes.within])
+        return length, length[:, None] * slope
+    return np.maximum(np.linalg.norm(along, axis=1), 1e-30), along
+
+
+def _length(level, nodes, price):
+    """(priced seam length, (N, 2) its gradient by the nodes' positions, (N,) by the price at the cuts)."""
+    a, b = nodes.seams.T
+    length, along = _steps(level, nodes)
     mean = 0.5 * (price[a] + price[b])
     force = (mean / length)[:, None] * along
     both = np.append(a, b)
@@ -127,7 +138,7 @@ def borders(level, cut):
     nodes = Nodes(level, cut)
     a, b = nodes.seams.T
     price = nodes.prices(level, cut)[0]
-    length = np.linalg.norm(nodes.place[b] - nodes.place[a], axis=1) * 0.5 * (price[a] + price[b])
+    length = _steps(level, nodes)[0] * 0.5 * (price[a] + price[b])
     i, j = cut.labels[nodes.point[nodes.sides]].T
     count = int(cut.labels.max()) + 1
     found = np.bincount(i * count + j, length, minlength=count * count).reshape(count, count)

@@ -5,6 +5,7 @@ import numpy as np
 from ..form.coarsen import coarsen
 from ..form.laplacian import smoothed_defects, smoothing
 from ..form.measure import total_area
+from .edgewise import covectors, sampled
 from .level import Level, scaled
 from .symmetric import Symmetry
 from .whole import on_rung
@@ -20,18 +21,19 @@ class Ladder:
 
     surface: a Surface. price (n,) factor on seam length. planes: list of Planes of symmetry that networks are to keep, at
     right angles. seed: of the coarse levels. patch (n,) number of the patch that each point stays in one region with, -1 for
-    none. strict: all planes are kept, whatever that costs. `factor`: lengths on the levels over lengths in metres; planes:
-    those that are kept.
+    none. along (e,) bool: the edges that seams are to keep to, None where they may run through faces. strict: all planes are
+    kept, whatever that costs. `factor`: lengths on the levels over lengths in metres; planes: those that are kept.
     """
 
-    def __init__(self, surface, price=None, planes=(), rungs=RUNGS, seed=0, patch=None, strict=False):
+    def __init__(self, surface, price=None, planes=(), rungs=RUNGS, seed=0, patch=None, strict=False, along=None):
         fine, self.factor = scaled(surface, total_area(surface))
         n = len(fine.points)
         price = np.ones(n) if price is None else price
         self.planes, self.strict = list(planes), strict
         smoother = smoothing(fine)  # the metric in which seams move there, too: one factorisation less
         load = smoothed_defects(fine, smoother=smoother)
-        self.levels = [Level(fine, load, price, _symmetry(fine, planes, self.factor), patch, smoother)]
+        steps = None if along is None else covectors(fine, along)
+        self.levels = [Level(fine, load, price, _symmetry(fine, planes, self.factor), patch, smoother, steps)]
         self.owners, self.carriers = [np.arange(n)], []
         surface, owner, scale = fine, np.arange(n), 1.0
         for count in sorted(rungs, reverse=True):  # each rung is made of the one above it
@@ -44,7 +46,8 @@ class Ladder:
                 scale *= more
                 self.levels.insert(0, Level(surface, np.bincount(owner, load), np.bincount(owner, price) / size,
                                             _symmetry(surface, planes, self.factor * scale),
-                                            None if patch is None else on_rung(surface, owner, patch)))
+                                            None if patch is None else on_rung(surface, owner, patch),
+                                            edgewise=None if along is None else sampled(steps, surface, fine, owner)))
                 self.owners.insert(0, owner)
 
     def keep(self, number):

@@ -3,6 +3,7 @@
 Lengths on a level are scaled so that the form's area is 4 pi (the scale on which thrift is counted).
 """
 
+from copy import copy
 from functools import cached_property
 
 import numpy as np
@@ -11,6 +12,7 @@ from scipy.sparse import csc_matrix, csr_matrix
 from ..form.laplacian import Factor, cotangent_laplacian
 from ..form.measure import areas, vertex_areas
 from ..form.surface import Surface
+from .edgewise import in_planes
 from .whole import united
 
 FORM_AREA = 4 * np.pi
@@ -19,11 +21,14 @@ FORM_AREA = 4 * np.pi
 class Level:
     """surface: Surface at scale (area near 4 pi). load (n,) curvature, radians. price (n,) factor on the seam's length.
     symmetry: the Symmetry that networks here keep, or None. patch (n,) number of the patch that each point has to stay in
-    one region with, -1 for none; or None. smoother: the metric in which seams move, if at hand."""
+    one region with, -1 for none; or None. smoother: the metric in which seams move, if at hand. edgewise (m, J, 3): how a
+    step in each triangle counts where seams keep to edges (see there), in the triangle's own plane (m, J, 2) from then on;
+    or None."""
 
-    def __init__(self, surface, load, price=None, symmetry=None, patch=None, smoother=None):
+    def __init__(self, surface, load, price=None, symmetry=None, patch=None, smoother=None, edgewise=None):
         self.surface, self.symmetry = surface, symmetry
         self.patch = None if patch is None or patch.max() < 0 else patch
+        self.edgewise = None if edgewise is None else in_planes(edgewise, surface)
         self.fixed = None  # (n,) label of points that keep theirs, -1 for others; or None
         if smoother is not None:
             self.smoother = smoother
@@ -32,6 +37,12 @@ class Level:
         self.areas = areas(surface)
         self.mass = vertex_areas(surface)
         self.density = np.divide(self.load, self.mass, out=np.zeros_like(self.load), where=self.mass > 0)
+
+    def plain(self):
+        """The level on which seams count through faces."""
+        level = copy(self)
+        level.edgewise = None
+        return level
 
     @cached_property
     def edge_length(self):

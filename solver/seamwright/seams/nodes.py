@@ -10,9 +10,9 @@ class Nodes:
 
     place (N, 2) in the face's plane; point (N,) the level's point there, n at cuts and middles; corner (N,) which corner of
     its face, 3 at cuts and middles. faces (f,) cut; face (t,), table (t, 3): sub-triangles over the nodes. seams (s, 2)
-    segments over the nodes, sides (s, 2) a corner on either side of each. cuts (c,) nodes, edges (c,) the edge each lies on,
-    ends (c, 2) the corners its share counts from and to, sign (c,) -1 where it counts from the edge's larger point.
-    middles (q,) nodes, around (q, 3) the cuts each lies between.
+    segments over the nodes, within (s,) the face of each, sides (s, 2) a corner on either side. cuts (c,) nodes, edges (c,)
+    the edge each lies on, ends (c, 2) the corners its share counts from and to, sign (c,) -1 where it counts from the edge's
+    larger point. middles (q,) nodes, around (q, 3) the cuts each lies between.
     """
 
     def __init__(self, level, cut):
@@ -46,8 +46,8 @@ class Nodes:
         return price, high - low
 
 
-SHAPES = {"place": (2,), "point": (), "corner": (), "faces": (), "face": (), "table": (3,), "seams": (2,), "sides": (2,),
-          "cuts": (), "edges": (), "ends": (2,), "sign": (), "middles": (), "around": (3,)}
+SHAPES = {"place": (2,), "point": (), "corner": (), "faces": (), "face": (), "table": (3,), "seams": (2,), "within": (),
+          "sides": (2,), "cuts": (), "edges": (), "ends": (2,), "sign": (), "middles": (), "around": (3,)}
 DTYPES = {"place": float, "sign": float}
 
 
@@ -66,7 +66,8 @@ def _laid_out(level, cut, kind, first):
     return {
         "place": place, "point": point, "corner": corner, "faces": kind.face,
         "face": np.repeat(kind.face, len(kind.table)), "table": base[:, :, None] + kind.table,
-        "seams": base[:, :, None] + kind.seams, "sides": base[:, :, None] + np.array(sides),
+        "seams": base[:, :, None] + kind.seams, "within": np.repeat(kind.face, len(kind.seams)),
+        "sides": base[:, :, None] + np.array(sides),
         "cuts": base + 3 + np.arange(cuts), "edges": kind.edges, "ends": base[:, :, None] + np.array(cut_ends(kind)).T,
         "sign": np.where(kind.tails == level.surface.edges[kind.edges, 0], 1.0, -1.0),
         "middles": base[:, 0] + 6 if middle else np.zeros(0, dtype=np.int64),

@@ -88,13 +88,9 @@ def seek(ladder, thrift, energy="square", pieces=None, progress=None, darts=True
     levels = ladder.levels
     level = levels[0]
     cells = sorted({*(2, 3, 4, 5, 7, 10), *((pieces, pieces + 2) if pieces else ())})
-    pool = [settle(level, cut_by_fields(level.surface, from_labels(level, labels)), labels, thrift, energy)
-            for labels in starts(level, cells)]
-    for steps, kept in TRIALS:
-        if steps:
-            pool = [simplify(level, flow(level, found.fields, thrift, energy, steps=steps), thrift, energy, pieces)
-                    for found in pool]
-        pool = _best(pool, pieces)[:kept]
+    pool = _begun(level, cells, thrift, energy, pieces)
+    if level.edgewise is not None:  # its grid hinders seams on their way, so here they are sought without it, too
+        pool += _begun(level.plain(), cells, thrift, energy, pieces)
     if pieces is not None and all(found.count < pieces for found in pool):
         pool = [enriched(level, pool[0], thrift, energy, pieces)]
     points, emphasis = Points(ladder), [None] * len(levels)
@@ -121,6 +117,18 @@ def seek(ladder, thrift, energy="square", pieces=None, progress=None, darts=True
     if emphasis[-1] is not None:  # the cost without it
         found = settle(found.level, found.cut, found.cut.labels, thrift, energy, found.converged, found.cut.uncut)
     return found
+
+
+def _begun(level, cells, thrift, energy, pieces):
+    """List of the best Founds of the first level, from several starts; cells (k,): how many regions these have."""
+    pool = [settle(level, cut_by_fields(level.surface, from_labels(level, labels)), labels, thrift, energy)
+            for labels in starts(level, cells)]
+    for steps, kept in TRIALS:
+        if steps:
+            pool = [simplify(level, flow(level, found.fields, thrift, energy, steps=steps), thrift, energy, pieces)
+                    for found in pool]
+        pool = _best(pool, pieces)[:kept]
+    return pool
 
 
 def _with_darts(ladder, rung, found, thrift, energy, pieces):

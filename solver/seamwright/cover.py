@@ -34,6 +34,8 @@ from .seams.whole import kept_whole, united
 from .wishes import Wishes
 
 MIRRORED = 0.005  # share of the form's size within which seams are symmetric
+RESTLESS = ("Seams: they were still moving when the steps for that ran out, so less seam or stretch may be had. Improve the "
+            "seams of this pattern, or try another thrift.")
 PLAIN_THRIFT = 0.1  # price of a metre of seam where a number of pieces is wished and no thrift
 
 
@@ -118,24 +120,27 @@ def _sought(ground, planes, begun, wishes, goods, pieces, tell, notes):
 
     tailor = Tailor(ladder, explicit, goods, wishes.comfort, wishes.grain)
     if begun is not None:
-        result, kept = improve(tailor, begun, wishes.thrift, wishes.energy, pieces, tell)
-        if kept:
+        result, found = improve(tailor, begun, wishes.thrift, wishes.energy, pieces, tell)
+        if found is None:
             notes.append("Start: no better seams were found from there, so they are as they were.")
     elif for_thrift:
-        result = _for_thrift(ladder, tailor, wishes, pieces, tell)
+        result, found = _for_thrift(ladder, tailor, wishes, pieces, tell)
     else:
         result = without_stubs(tailor.judges, sized(ground, tailor, tailor.run(tell), wishes.route), tailor.planes)
+        found = None
+    if found is not None and not found.converged:
+        notes.append(RESTLESS)
     return (result if pieces is None else joined(tailor, result, pieces)), ladder.planes
 
 
 def _for_thrift(ladder, tailor, wishes, pieces, tell):
-    """The Tailored of the best network for a thrift; without darts, where they make a piece lie over itself."""
+    """(Tailored, Found) of the best network for a thrift; without darts, where they make a piece lie over itself."""
     for darts in (True, False):
         found = seek(ladder, wishes.thrift or PLAIN_THRIFT, wishes.energy, pieces, tell, darts)
         met = tailor.real(len(ladder.levels) - 1, found.cut)
         if found.cut.uncut is None or not any(one.crossings for one in met.judged):
             break
-    return without_stubs(tailor.judges, tailor.untangled(met), tailor.planes)
+    return without_stubs(tailor.judges, tailor.untangled(met), tailor.planes), found
 
 
 def _given(form, part, wishes):

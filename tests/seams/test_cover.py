@@ -9,7 +9,10 @@ import pytest
 import seamwright as sw
 from forms import cap, cube, ellipsoid, frustum, icosphere, starfish, together, torus, wrapped_grid
 from seamwright.form.measure import areas
+from seamwright.form.mirror import planes
 from seamwright.form.surface import Surface
+from seamwright.seams import seek
+from seamwright.seams.descend import REST, descend
 from seamwright.seams.ladder import Ladder
 from seamwright.seams.study import seam_energy
 from shapely.geometry import Polygon
@@ -234,3 +237,20 @@ def test_a_seed_decides_the_coarse_levels():
     surface = sw.Form(*ellipsoid(1.0, 0.7, 0.5, 4)).surface
     first, again, other = (Ladder(surface, seed=seed).levels[0].surface.points for seed in (0, 0, 1))
     assert first.tobytes() == again.tobytes() != other.tobytes()
+
+
+def test_seams_that_did_not_come_to_rest_are_told_of(monkeypatch):
+    """With the steps that there are the flow ends at rest; after hardly any it does not, and says so. More from there on
+    would then gain much: more than the share of the total that counts as rest."""
+    form, wishes = sw.Form(*ellipsoid(1.4, 1.0, 0.9, 3)), sw.Wishes(goods="spandex", thrift=0.1)
+    ended = sw.cover(form, wishes)
+    assert not any(note.startswith("Seams:") for note in ended.notes)
+    for name, few in (("TRIALS", ((0, 7), (1, 3))), ("STEPS", ()), ("FLOWS", 0)):
+        monkeypatch.setattr(seek, name, few)
+    hurried = sw.cover(form, wishes)
+    assert any(note.startswith("Seams: they were still moving") for note in hurried.notes)
+    ladder = Ladder(form.surface, planes=planes(form.surface))
+    found = seek.seek(ladder, 0.1)
+    assert not found.converged
+    on = descend(ladder.levels[-1], found.fields, 0.1, steps=40, uncut=found.cut.uncut)
+    assert on.converged and on.cost.total < (1 - REST) * found.cost.total

@@ -8,7 +8,7 @@ from seamwright.fit.foresee import QUANTILE, area_quantile
 from seamwright.form.form import Form
 from seamwright.form.measure import total_area
 from seamwright.seams.cut import cut_by_fields
-from seamwright.seams.descend import descend
+from seamwright.seams.descend import LAST, REST, descend
 from seamwright.seams.energy import evaluate
 from seamwright.seams.fields import redistance
 from seamwright.seams.ladder import Ladder
@@ -40,6 +40,11 @@ def test_says_how_it_ended():
     assert long.converged and long.steps < 400
     rest = descend(level, long.fields, 0.2, steps=20, tolerance=1e-3)
     assert rest.cost.total > 0.99 * long.cost.total  # where it came to rest there is little left to gain
+    enough = next(end for end in (descend(level, fields, 0.2, steps=steps) for steps in range(3, 60, 3)) if end.converged)
+    before = enough.history[-1 - LAST :][0]
+    assert before - enough.history[-1] < REST * before
+    more = descend(level, enough.fields, 0.2, steps=60)
+    assert more.cost.total > (1 - 2 * REST) * enough.cost.total
 
 
 def test_halves_of_a_sphere_become_equal():

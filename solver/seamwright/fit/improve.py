@@ -17,10 +17,10 @@ COARSE = 1  # rung on which splits are tried
 
 
 def improve(tailor, network, thrift, energy, pieces, tell):
-    """(Tailored, whether it is still what was there) for a Network on the tailor's part. pieces: wished number or None.
+    """(Tailored, its Found or None where it is still what was there) for a Network on the tailor's part.
 
-    With a thrift the total, the price of the pieces with it, is not higher than before; without one neither length nor
-    distortion is. A wished number of pieces that was not there before goes before that.
+    pieces: a wished number. With a thrift the total, the price of the pieces with it, is not higher than before; without one
+    neither length nor distortion is. A wished number of pieces that was not there before goes before that.
     """
     ladder = tailor.ladder
     tell(0.1, "improving seams")
@@ -43,8 +43,8 @@ def improve(tailor, network, thrift, energy, pieces, tell):
             more = met.network.pieces[0] - network.pieces[0]
             better = after.total + PIECE_PRICE * more <= before.total
         if better:
-            return met, False
-    return tailor.untangled(tailor.judges.all(network)), True
+            return met, found
+    return tailor.untangled(tailor.judges.all(network)), None
 
 
 def _less_of_both(level, begin, energy, before):

@@ -12,11 +12,14 @@ from .fields import redistance
 MEMORY = 6
 FARTHEST = 2.0  # edge lengths a seam may move in one step
 ROUND = 8  # steps between two redistancings
+LAST = 4  # steps at the end by which it is told whether the flow came to rest:
+REST = 0.005  # they lower the total by less than this share; what many more steps would gain is then less, too (measured)
 
 
 @dataclass
 class Descent:
-    """Where the flow ended: fields (n, K), cut, cost; steps; converged (False: the steps ran out); history of totals."""
+    """Where the flow ended: fields (n, K), cut, cost; steps; converged (False: the steps ran out before it came to rest);
+    history of totals."""
 
     fields: np.ndarray
     cut: object
@@ -66,7 +69,9 @@ def descend(level, fields, thrift, energy="square", weights=None, steps=30, tole
             history.append(cost.total)
             if small == 2:
                 break
-    return Descent(fields, cut, cost, taken, small >= 2 or stuck >= 2, history)
+    before = history[max(len(history) - 1 - LAST, 0)]
+    resting = before - history[-1] < REST * before
+    return Descent(fields, cut, cost, taken, small >= 2 or stuck >= 2 or resting, history)
 
 
 def _fields(level, cut, count):

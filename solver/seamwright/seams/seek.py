@@ -16,6 +16,7 @@ MOST_PIECES = 40
 SPLIT_STEPS = 12  # of flow after a split
 STEPS = ((1000, 24), (3000, 12), (12000, 6))  # points up to which a level takes so many steps; a finer one takes
 LAST_STEPS = 1
+FLOWS = 4  # more of as many steps, as long as the seams are not at rest and the score falls
 LOPSIDED = 0.95  # share of the score down to which seams may become cheaper by keeping but one plane of two
 TWINS = 0.98  # times the score with a left and a right piece: of a seam between them part can be left out alone
 DEAR = 1.05  # share of the score up to which seams may become dearer by running through tips
@@ -106,7 +107,7 @@ def seek(ladder, thrift, energy="square", pieces=None, progress=None, darts=True
                          for (fields, uncut), found in zip(begun, pool, strict=True) if found.count < pieces]
             if not top or pieces is not None:
                 pool = [simplify(level, found, thrift, energy, pieces) for found in pool]
-            pool = _best(pool, pieces)[:1]
+            pool = [_rested(_best(pool, pieces)[0], steps=steps_on(level), **common)]
         if darts and rung == for_darts:
             pool = [_with_darts(ladder, rung, pool[0], thrift, energy, pieces)]
         if rung == points.rung:
@@ -129,6 +130,18 @@ def _begun(level, cells, thrift, energy, pieces):
                     for found in pool]
         pool = _best(pool, pieces)[:kept]
     return pool
+
+
+def _rested(found, steps, **common):
+    """The Found after more flow where it had not come to rest."""
+    for _ in range(FLOWS):
+        if found.converged:
+            break
+        more = flow(found.level, found.fields, steps=steps, uncut=found.cut.uncut, **common)
+        if more.score >= found.score or more.count != found.count:
+            break
+        found = more
+    return found
 
 
 def _with_darts(ladder, rung, found, thrift, energy, pieces):

@@ -6,11 +6,12 @@ import numpy as np
 import pytest
 import seamwright as sw
 from forms import dumbbell, ellipsoid, frustum, starfish
-from seamwright.seams.begun import network_of_labels, network_of_pattern, point_shares
+from scipy.spatial import cKDTree
+from seamwright.seams.begun import network_of_labels, network_of_pattern, point_shares, regions_of
 from seamwright.seams.cut import cut_by_fields
 from seamwright.seams.energy import evaluate
 from seamwright.seams.fields import from_labels
-from seamwright.seams.flow import PIECE_PRICE
+from seamwright.seams.flow import PIECE_PRICE, flow
 from seamwright.seams.ladder import Ladder
 from seamwright.seams.network import Network, cut_through
 from seamwright.seams.opened import opened
@@ -67,7 +68,7 @@ def test_a_pattern_is_read_back_as_the_network_it_came_from():
     assert back.length() == pytest.approx(seams, rel=1e-12)
     sources = np.concatenate([piece.source for piece in pattern.pieces])
     assert sorted(back.source.tolist()) == sorted(sources.tolist())
-    shares = point_shares(pattern.form.surface, back, 1.0)
+    shares = point_shares(pattern.form.surface, back, 1.0, back.pieces[1])
     np.testing.assert_allclose(shares.sum(axis=1), 1)
     for number, piece in enumerate(pattern.pieces):  # points whose whole neighbourhood is in one piece belong to it alone
         alone = np.flatnonzero(shares[:, number] > 1 - 1e-9)
@@ -145,6 +146,31 @@ def test_marked_edges_are_a_start():
 def test_a_wished_number_from_a_start():
     pattern = sw.cover(egg(), sw.Wishes(goods="spandex", start=oblique(), pieces=4))
     assert len(pattern.pieces) == 4
+
+
+def test_darts_of_a_start_are_read_back_and_kept():
+    """One piece with a single seam: its two ends are read back where they are, and stay near there when it is improved."""
+    form = sw.Form(*ellipsoid(1.4, 1.0, 0.9, 3))
+    start = sw.cover(form, sw.Wishes(goods="spandex", thrift=0.1))
+    assert len(start.pieces) == 1
+    ladder = Ladder(form.surface)
+    level, begun = ladder.levels[-1], network(start)
+    labels, uncut = regions_of(level, begun, ladder.factor)
+    found = flow(level, from_labels(level, labels), 0.1, steps=1, uncut=uncut)
+    before = network_cost(ladder, begun, 0.1)
+    assert found.count == 1 and len(found.cut.end.face) == 2
+    assert found.cost.total == pytest.approx(before.total, rel=0.05)
+    ends = level.surface.points[level.surface.triangles[found.cut.end.face]].mean(axis=1) / ladder.factor
+    assert cKDTree(ends).query(tips(begun))[0].max() < 2 * form.surface.edge_lengths.mean()
+    after = sw.cover(form, sw.Wishes(goods="spandex", thrift=0.1, start=start))
+    assert len(after.pieces) == 1 and network_cost(ladder, network(after), 0.1).total <= before.total
+    assert cKDTree(tips(network(after))).query(tips(begun))[0].max() < 0.1 * np.ptp(form.points[:, 0])
+
+
+def tips(network):
+    """(k, 3) the points where one seam ends."""
+    ends = np.bincount(network.surface.edges[network.seam].ravel(), minlength=len(network.surface.points)) == 1
+    return network.surface.points[ends]
 
 
 def test_a_start_with_darts_is_not_made_worse():

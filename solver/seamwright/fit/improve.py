@@ -2,10 +2,11 @@
 
 import numpy as np
 
-from ..seams.begun import point_shares
+from ..seams.begun import regions_of
 from ..seams.darts import opened_up
-from ..seams.fields import from_labels, smoothed
+from ..seams.fields import from_labels
 from ..seams.flow import PIECE_PRICE, flow
+from ..seams.panels import panels
 from ..seams.seek import enriched, simplify, steps_on
 from ..seams.starts import tidied
 from ..seams.study import network_cost
@@ -26,11 +27,11 @@ def improve(tailor, network, thrift, energy, pieces, tell):
     tell(0.1, "improving seams")
     price = 0.0 if thrift is None else thrift
     before = network_cost(ladder, network, price, energy)
-    begin = smoothed(ladder.levels[-1], point_shares(ladder.levels[-1].surface, network, ladder.factor), 1.0).argmax(axis=1)
+    begin, uncut = regions_of(ladder.levels[-1], network, ladder.factor)
     if thrift is None and pieces is None:
-        found = _less_of_both(ladder.levels[-1], begin, energy, before)
+        found = _less_of_both(ladder.levels[-1], begin, uncut, energy, before)
     else:
-        found = _less_in_all(ladder, begin, thrift or before.distortion / before.length, energy, pieces)
+        found = _less_in_all(ladder, begin, uncut, thrift or before.distortion / before.length, energy, pieces)
     tell(0.7, "flattening pieces")
     if found is not None:
         met = tailor.untangled(tailor.real(len(ladder.levels) - 1, found.cut))
@@ -47,28 +48,31 @@ def improve(tailor, network, thrift, energy, pieces, tell):
     return tailor.untangled(tailor.judges.all(network)), None
 
 
-def _less_of_both(level, begin, energy, before):
+def _less_of_both(level, begin, uncut, energy, before):
     """The Found with less length and less distortion than a Cost, by trying prices; None where none was met."""
     price, factor, way = before.distortion / max(before.length, 1e-12), FACTOR, 0
-    fields = from_labels(level, tidied(level, begin))
+    fields = from_labels(level, begin)
     for _ in range(TRIES):
-        found = flow(level, fields, price, energy, steps=TRY)
+        found = flow(level, fields, price, energy, steps=TRY, uncut=uncut)
         longer, worse = found.cost.length > before.length, found.cost.distortion > before.distortion
         if not longer and not worse:
             return found
         turn = 1 if longer else -1
         factor = factor**0.5 if turn == -way else factor
         price, way, fields = price * factor**turn, turn, found.fields
+        uncut = found.cut.uncut
     return None
 
 
-def _less_in_all(ladder, begin, thrift, energy, pieces):
-    """The Found of least score, from the form's points' labels on, with splits and merges."""
+def _less_in_all(ladder, begin, uncut, thrift, energy, pieces):
+    """The Found of least score, from the form's points' labels and the pairs of one piece on, with splits and merges."""
     levels = ladder.levels
     top, rung = len(levels) - 1, min(COARSE, len(levels) - 1)
     level = levels[top]
-    found = flow(level, from_labels(level, tidied(level, begin)), thrift, energy, steps=3 * TRY)
+    found = flow(level, from_labels(level, begin), thrift, energy, steps=3 * TRY, uncut=uncut)
     pool = [simplify(level, found, thrift, energy, pieces)]
+    if uncut is not None:
+        begin = panels(level.surface, begin, uncut).piece[begin]  # coarse, darts are found anew
     level = levels[rung]
     votes = np.zeros((len(level.surface.points), int(begin.max()) + 1))
     np.add.at(votes, (ladder.owners[rung], begin), levels[top].mass)

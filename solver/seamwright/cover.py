@@ -11,7 +11,7 @@ from .errors import CoverError
 from .fit.darts import shortest, without_stubs
 from .fit.foresee import reach, stretch_weight
 from .fit.goods import get
-from .fit.improve import improve
+from .fit.improve import improve, less_in_all, rank
 from .fit.join import joined
 from .fit.sewn import closed
 from .fit.sizes import is_strip, narrowest, sized
@@ -136,7 +136,11 @@ def _sought(ground, planes, begun, wishes, goods, pieces, tell, notes):
 def _for_thrift(ladder, tailor, wishes, pieces, tell):
     """(Tailored, Found) of the best network for a thrift; without darts, where they make a piece lie over itself."""
     for darts in (True, False):
-        found = seek(ladder, wishes.thrift or PLAIN_THRIFT, wishes.energy, pieces, tell, darts)
+        thrift = wishes.thrift or PLAIN_THRIFT
+        found = seek(ladder, thrift, wishes.energy, pieces, tell, darts)
+        if darts and not found.converged:  # what fell to bits on its way is another start
+            again = less_in_all(ladder, found.cut.labels, found.cut.uncut, thrift, wishes.energy, pieces)
+            found = min(found, again, key=lambda one: rank(one, pieces))
         met = tailor.real(len(ladder.levels) - 1, found.cut)
         if found.cut.uncut is None or not any(one.crossings for one in met.judged):
             break

@@ -31,7 +31,7 @@ def improve(tailor, network, thrift, energy, pieces, tell):
     if thrift is None and pieces is None:
         found = _less_of_both(ladder.levels[-1], begin, uncut, energy, before)
     else:
-        found = _less_in_all(ladder, begin, uncut, thrift or before.distortion / before.length, energy, pieces)
+        found = less_in_all(ladder, begin, uncut, thrift or before.distortion / before.length, energy, pieces)
     tell(0.7, "flattening pieces")
     if found is not None:
         met = tailor.untangled(tailor.real(len(ladder.levels) - 1, found.cut))
@@ -64,8 +64,9 @@ def _less_of_both(level, begin, uncut, energy, before):
     return None
 
 
-def _less_in_all(ladder, begin, uncut, thrift, energy, pieces):
-    """The Found of least score, from the form's points' labels and the pairs of one piece on, with splits and merges."""
+def less_in_all(ladder, begin, uncut, thrift, energy, pieces):
+    """The Found of least score on a Ladder, begun with labels (n,) of the form's points and uncut (K, K) as in `Cut`: from
+    there on, or from coarse copies of its pieces with splits, merges and darts."""
     levels = ladder.levels
     top, rung = len(levels) - 1, min(COARSE, len(levels) - 1)
     level = levels[top]
@@ -84,4 +85,9 @@ def _less_in_all(ladder, begin, uncut, thrift, energy, pieces):
             fields = ladder.lift(richer.fields, higher - 1)
             richer = flow(levels[higher], fields, thrift, energy, steps=TRY, uncut=richer.cut.uncut)
         pool.append(simplify(levels[top], richer, thrift, energy, pieces))
-    return min(pool, key=lambda one: (0 if pieces is None else abs(one.count - pieces), one.score))
+    return min(pool, key=lambda one: rank(one, pieces))
+
+
+def rank(found, pieces):
+    """What a Found is sorted by: how far it is from the wished number of pieces, if any, then its score."""
+    return 0 if pieces is None else abs(found.count - pieces), found.score

@@ -31,18 +31,24 @@ def opened_up(level, found, thrift, energy="square", pieces=None):
     while True:
         use = level.diffusion(BLUR).solve(level.mass * np.abs(found.cost.u))
         trials = [settle(level, found.cut, labels, thrift, energy, uncut=uncut)
-                  for labels, uncut in openings(level, found.cut, use)]
+                  for labels, uncut in openings(level, found.cut, use) if panels(level.surface, labels, uncut).disk.all()]
         trials = sorted((trial for trial in trials if trial.score < WORSE * found.score), key=lambda trial: trial.score)
         better = []
         for trial in trials[:TRIED]:
-            flowed = flow(level, trial.fields, thrift, energy, steps=STEPS, uncut=trial.cut.uncut)
-            if rank(flowed) < rank(found) and lies_flat(level, flowed.cut):
+            flowed = flow(level, trial.fields, thrift, energy, steps=STEPS, uncut=trial.cut.uncut, slides=False)
+            if rank(flowed) < rank(found):
                 better.append(flowed)
             if len(better) == ENOUGH:
                 break
-        if not better:
+        for trial in sorted(better, key=rank):
+            flowed = flow(level, trial.fields, thrift, energy, steps=STEPS, uncut=trial.cut.uncut)
+            ahead = [one for one in sorted((flowed, trial), key=rank) if rank(one) < rank(found)]
+            best = next((one for one in ahead if lies_flat(level, one.cut)), None)
+            if best is not None:
+                found = best
+                break
+        else:
             return found
-        found = min(better, key=rank)
 
 
 def lies_flat(level, cut):

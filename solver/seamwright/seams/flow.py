@@ -47,14 +47,14 @@ class Found:
         return redistance(self.level, self.cut, int(self.cut.labels.max()) + 1)
 
 
-def flow(level, fields, thrift, energy="square", steps=20, emphasis=None, uncut=None, slides=False):
+def flow(level, fields, thrift, energy="square", steps=20, emphasis=None, uncut=None, slides=None):
     """Flow, then put the topology right (disks, no specks), and flow again as long as that changed it. Returns Found.
 
-    uncut (K, K) bool: pairs of regions that are of one piece, None for none; slides: the ends of darts are slid on a fine
-    level too.
+    uncut (K, K) bool: pairs of regions that are of one piece, None for none; slides: whether the ends of darts are slid, by
+    default on a coarse level.
     """
     cut, changed = in_order(level, cut_by_fields(level.surface, fields, level.labels(fields), uncut))
-    sliding = slides or len(level.mass) <= COARSE
+    sliding = len(level.mass) <= COARSE if slides is None else slides
     for _ in range(REPAIRS):
         if changed:
             fields = redistance(level, cut, int(cut.labels.max()) + 1)
@@ -77,19 +77,20 @@ def slid(level, cut, thrift, energy, emphasis=None):
     def total(cut):
         return evaluate(level, cut, thrift, energy, gradient=False, emphasis=emphasis).total
 
-    least, number, slides = total(cut), 0, 0
+    least, number, slides, last = total(cut), 0, 0, 0.0
     while number < len(cut.end.face):
         fields, ends = redistance(level, cut, len(cut.uncut)), _ends(level, cut, number)
-        for slide in SLIDES if slides < MOST_SLIDES * (number + 1) else ():
+        onward = [last] * (last != 0) + [slide for slide in SLIDES if slide not in (last, -last)]  # never straight back
+        for slide in onward if slides < MOST_SLIDES * (number + 1) else ():
             shifted, length = fields.copy(), slide * level.edge_length
             for beyond, gap in ends:
                 shifted[:, beyond] -= length * np.exp(-0.5 * (gap / length) ** 2)
             trial = in_order(level, cut_by_fields(level.surface, shifted, level.labels(shifted), cut.uncut))[0]
             if len(trial.end.face) == len(cut.end.face) and (reached := total(trial)) < least:
-                cut, least, slides = trial, reached, slides + 1
+                cut, least, slides, last = trial, reached, slides + 1, slide
                 break
         else:
-            number += 1
+            number, last = number + 1, 0.0
     return cut, slides > 0
 
 

@@ -78,12 +78,15 @@ def planes(surface, most=1):
     found = []
     while len(found) < most:
         square = [normal for normal in normals if _square(normal, found)]
-        good = [plane for plane in _refined(spread, nearest, square, tolerance)
-                if plane.error <= tolerance and _square(plane.normal, found)]
-        if not good:
+        likely = [plane for plane in _refined(spread, square, tolerance)
+                  if plane.error <= tolerance and _square(plane.normal, found)]
+        for plane in sorted(likely, key=lambda plane: max(plane.error / tolerance, EVEN) + _dislike(plane.normal)):
+            plane.error = _error(spread, nearest, plane)
+            if plane.error <= tolerance:
+                found.append(_between_points(surface, plane))
+                break
+        else:
             break
-        best = min(good, key=lambda plane: max(plane.error / tolerance, EVEN) + _dislike(plane.normal))
-        found.append(_between_points(surface, best))
     return found
 
 
@@ -177,7 +180,8 @@ class _Spread:
         return gaps
 
     def refined(self, normal, tolerance):
-        """The Plane near a candidate through the middle that matches best; error not yet measured."""
+        """The Plane near a candidate through the middle that matches best; its error the middle one of some points, which
+        are known to a curve between their neighbours."""
         plane = Plane(self.middle, normal, np.inf)
         points, normals = self.points[self._some], self.normals[self._some]
         for _ in range(12):
@@ -199,7 +203,8 @@ class _Spread:
             plane = Plane(plane.point + change[2] * plane.normal, turned, np.inf)
             if np.abs(change).max() < 1e-6 * self.size:
                 break
-        return Plane(self.middle + ((plane.point - self.middle) @ plane.normal) * plane.normal, plane.normal, np.inf)
+        point = self.middle + ((plane.point - self.middle) @ plane.normal) * plane.normal
+        return Plane(point, plane.normal, float(np.median(np.abs(off))))
 
 
 def _error(spread, nearest, plane):
@@ -240,15 +245,14 @@ def _directions(spread):
     return normals * np.where(normals[:, :1] < 0, -1.0, 1.0)
 
 
-def _refined(spread, nearest, normals, tolerance):
-    """List of Planes, measured, from the first TRIALS of the candidate normals that lie apart."""
+def _refined(spread, normals, tolerance):
+    """List of Planes, measured roughly, from the first TRIALS of the candidate normals that lie apart."""
     planes, tried = [], []
     for normal in normals:
         if len(planes) == TRIALS:
             break
         if all(abs(normal @ other) < np.cos(APART) for other in tried):
             plane = spread.refined(normal, tolerance)
-            plane.error = _error(spread, nearest, plane)
             planes.append(plane)
             tried += [normal, plane.normal]
     return planes

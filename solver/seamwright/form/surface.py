@@ -63,6 +63,14 @@ class Surface:
         return np.linalg.norm(self.points[self.edges[:, 1]] - self.points[self.edges[:, 0]], axis=1)
 
     @cached_property
+    def neighbours(self):
+        """csr (n, n): 1 + the edge (as a float) from each point to each point beside it."""
+        a, b = self.edges.T
+        number = np.arange(1.0, len(a) + 1)
+        rows, columns = np.concatenate([a, b]), np.concatenate([b, a])
+        return coo_matrix((np.concatenate([number, number]), (rows, columns)), shape=(len(self.points),) * 2).tocsr()
+
+    @cached_property
     def triangle_components(self):
         """(count, (m,) component of each triangle), joined through shared edges."""
         return components_through(self, np.ones(len(self.edges), dtype=bool))

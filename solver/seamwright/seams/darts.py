@@ -126,17 +126,17 @@ def _stretches(level, labels, band, use):
         if len(own) < LEAST:
             continue
         if touched[band[own]].any():
-            first = own[dijkstra(graph, directed=False, indices=own[0])[own].argmax()]
-            way = dijkstra(graph, directed=False, indices=first)[own]
+            first = own[dijkstra(graph, indices=own[0])[own].argmax()]
+            way = dijkstra(graph, indices=first)[own]
             yield band[own[way > 0.5 * way.max()]]
             yield band[own[way < 0.5 * way.max()]]
         else:
             first = int(own[use[band[own]].argmin()])
-            way = dijkstra(graph, directed=False, indices=first)[own]
+            way = dijkstra(graph, indices=first)[own]
             second = int(own[np.abs(way - 2 / 3 * way.max()).argmin()])
-            third = int(own[np.minimum(way, dijkstra(graph, directed=False, indices=second)[own]).argmax()])
+            third = int(own[np.minimum(way, dijkstra(graph, indices=second)[own]).argmax()])
             for middle in dict.fromkeys([first, second, third, *_on_planes(level, graph, band, own, use)]):
-                way = dijkstra(graph, directed=False, indices=middle)[own]
+                way = dijkstra(graph, indices=middle)[own]
                 yield band[own[way < OPENED * way.max()]]
 
 
@@ -154,7 +154,7 @@ def _nearest(level, inside, band, far):
     """(k,) points of `inside` that are nearer to the points `far` than to others of the band."""
     number = np.full(len(level.mass), -1)
     number[inside] = np.arange(len(inside))
-    _, _, source = dijkstra(graph_within(level, inside), directed=False, indices=number[band], min_only=True,
+    _, _, source = dijkstra(graph_within(level, inside), indices=number[band], min_only=True,
                             return_predecessors=True)
     return inside[np.isin(source, number[far])]
 

@@ -3,7 +3,7 @@
 from dataclasses import replace
 
 import numpy as np
-from scipy.sparse import coo_matrix
+from scipy.sparse import csr_matrix
 from scipy.sparse.csgraph import dijkstra
 
 from .cut import cut_faces
@@ -33,26 +33,25 @@ def redistance(level, cut, count):
         cut = replace(cut, **dict(zip(("two", "three", "end"), cut_faces(level.surface, cut.labels), strict=True)))
     for kind in cut.kinds:
         nodes, whole = seam_nodes(level, cut, kind)
-        around = cut.labels[whole]
-        for (a, b), sides in zip(kind.seams, seam_sides(kind), strict=True):
-            for corner in range(3):
-                gap = _segment_distance(nodes[:, corner], nodes[:, a], nodes[:, b])
-                for side in sides:
-                    points.append(whole[:, corner])
-                    regions.append(around[:, side])
-                    near.append(gap)
+        a, b = nodes[:, kind.seams.T][:, :, :, None].swapaxes(0, 1)
+        gap = _segment_distance(nodes[:, None, :3], a, b)  # (k, s, 3): of every seam from every corner
+        around = cut.labels[whole][:, seam_sides(kind)]  # (k, s, 2)
+        shape = (*gap.shape, 2)
+        points.append(np.broadcast_to(whole[:, None, :, None], shape).ravel())
+        regions.append(np.broadcast_to(around[:, :, None], shape).ravel())
+        near.append(np.broadcast_to(gap[..., None], shape).ravel())
     fields = np.full((n, count), -reach)
     if points:
         points, regions, near = map(np.concatenate, (points, regions, near))
-        edges, lengths = level.surface.edges, level.surface.edge_lengths
         order = np.lexsort((near, regions * n + points))
         points, regions, near = points[order], regions[order], near[order]
         first = np.ones(len(points), dtype=bool)
         first[1:] = (points[1:] != points[:-1]) | (regions[1:] != regions[:-1])
         points, regions, near = points[first], regions[first], np.maximum(near[first], 1e-12)
-        rows = np.concatenate([edges[:, 0], edges[:, 1], n + regions])
-        columns = np.concatenate([edges[:, 1], edges[:, 0], points])
-        graph = coo_matrix((np.concatenate([lengths, lengths, near]), (rows, columns)), shape=(n + count,) * 2).tocsr()
+        beside = level.surface.neighbours
+        lengths = level.surface.edge_lengths[beside.data.astype(np.int64) - 1]
+        before = np.concatenate([beside.indptr, beside.indptr[-1] + np.cumsum(np.bincount(regions, minlength=count))])
+        graph = csr_matrix((np.append(lengths, near), np.append(beside.indices, points), before), shape=(n + count,) * 2)
         gap = dijkstra(graph, indices=n + np.arange(count), limit=reach)[:, :n].T
         fields = -np.minimum(gap, reach)
     own = (np.arange(n), cut.labels)
@@ -62,6 +61,6 @@ def redistance(level, cut, count):
 
 def _segment_distance(point, a, b):
     along = b - a
-    share = ((point - a) * along).sum(1) / np.maximum((along * along).sum(1), 1e-300)
-    nearest = a + np.clip(share, 0, 1)[:, None] * along
-    return np.linalg.norm(point - nearest, axis=1)
+    share = ((point - a) * along).sum(-1) / np.maximum((along * along).sum(-1), 1e-300)
+    off = point - a - np.clip(share, 0, 1)[..., None] * along
+    return np.sqrt((off * off).sum(-1))

@@ -103,7 +103,7 @@ class Level:
         slots = np.full(len(rows), len(unique))  # one slot past the end swallows what touches an open edge
         slots[inside] = slot.ravel()
         pointers = np.concatenate([[0], np.cumsum(np.bincount(unique // count, minlength=count))])
-        return slots.reshape(-1, 3, 3), unique % count, pointers, count
+        return slots.reshape(-1, 3, 3), (unique % count).astype(np.int32), pointers, count
 
     @cached_property
     def stiffness(self):
@@ -128,7 +128,7 @@ class Level:
         data = self._base - np.bincount(slots[cut].ravel(), self.stiffness[cut].ravel(), none + 1)
         data = (data + np.bincount(places.ravel(), stiffness.ravel(), none + 1))[:-1]
         kept = np.abs(data) > 1e-12  # what lies across a seam is exactly zero: the blocks fall apart
-        before = np.concatenate([[0], np.cumsum(kept)])
+        before = np.concatenate([[0], np.cumsum(kept)]).astype(np.int32)  # what sparse matrices hold: then nothing is copied
         return Factor(csc_matrix((data[kept], rows[kept], before[pointers]), shape=(count, count)), ordered=True)
 
     @cached_property

@@ -7,7 +7,7 @@ three have fields like any region, the end slides with the flow, and the dart is
 from dataclasses import dataclass
 
 import numpy as np
-from scipy.sparse import coo_matrix
+from scipy.sparse import coo_matrix, csr_matrix
 from scipy.sparse.csgraph import connected_components
 
 from .topology import regions
@@ -29,8 +29,10 @@ def panels(surface, labels, uncut):
     ends, corner = labels[surface.edges], labels[surface.triangles]
     same = uncut | np.eye(len(uncut), dtype=bool)
     kept = ends[same[ends[:, 0], ends[:, 1]]]
-    count, piece = connected_components(coo_matrix((np.ones(len(kept)), tuple(kept.T)), shape=uncut.shape), directed=False)
-    clear = same[corner, np.roll(corner, -1, axis=1)].all(axis=1)
+    beside = np.zeros(uncut.shape)
+    beside[tuple(kept.T)] = 1
+    count, piece = connected_components(csr_matrix(beside), directed=False)
+    clear = same[corner, corner[:, [1, 2, 0]]].all(axis=1)
     euler = np.bincount(piece[labels], minlength=count) - np.bincount(piece[kept[:, 0]], minlength=count)
     return Panels(piece, euler + np.bincount(piece[corner[clear, 0]], minlength=count) == 1)
 

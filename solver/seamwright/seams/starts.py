@@ -27,9 +27,10 @@ def tidied(level, labels):
     """Labels whose regions are connected disks of a sensible size, symmetric where the level is to be."""
     labels = split_components(level.surface, level.united(labels))
     tables, speck = regions(level, labels), SPECK * level.mass.sum()
-    if (tables.euler != 1).any() or tables.area.min() < speck:
+    if (tables.euler != 1).any():
         labels = make_disks(level, labels)
-        labels = make_disks(level, absorb(level, labels, speck))
+    if (tables.euler != 1).any() or tables.area.min() < speck:
+        labels = absorb(level, labels, speck)
     if level.symmetry is None:
         return labels
     labels = symmetrised(level, level.symmetry, labels)

@@ -7,7 +7,7 @@ retracts onto them): a connected region is a disk exactly when points - edges + 
 from dataclasses import dataclass
 
 import numpy as np
-from scipy.sparse import coo_matrix
+from scipy.sparse import coo_matrix, csr_matrix
 from scipy.sparse.csgraph import connected_components, dijkstra
 
 from .whole import united
@@ -18,10 +18,11 @@ MOST_CELLS = 128
 
 def split_components(surface, labels):
     """(n,) labels renumbered 0..K-1 so that every connected region has its own, ordered by its first point."""
-    edges = surface.edges
-    same = edges[labels[edges[:, 0]] == labels[edges[:, 1]]]
-    graph = coo_matrix((np.ones(len(same)), (same[:, 0], same[:, 1])), shape=(len(labels),) * 2)
-    component = connected_components(graph, directed=False)[1]
+    beside = surface.neighbours
+    same = np.repeat(labels, np.diff(beside.indptr)) == labels[beside.indices]
+    before = np.concatenate([[0], np.cumsum(same)])[beside.indptr]
+    graph = csr_matrix((beside.data[same], beside.indices[same], before), shape=beside.shape)
+    component = connected_components(graph, connection="strong")[1]  # of a symmetric graph the same, and sooner
     first = np.unique(component, return_index=True)[1]
     number = np.empty(len(first), dtype=np.int64)
     number[np.argsort(first, kind="stable")] = np.arange(len(first))
@@ -42,19 +43,20 @@ class Regions:
 def regions(level, labels):
     """The Regions of connected labels 0..K-1."""
     surface, count = level.surface, int(labels.max()) + 1
-    ends = np.sort(labels[surface.edges], axis=1)
-    corner = np.sort(labels[surface.triangles], axis=1)
-    inside = ends[:, 0] == ends[:, 1]
-    whole = corner[:, 0] == corner[:, 2]
+    a, b = labels[surface.edges].T
+    inside = a == b
+    corner = labels[surface.triangles]
+    like = corner == corner[:, [1, 2, 0]]
+    whole = like[:, 0] & like[:, 1]
     euler = (
         np.bincount(labels, minlength=count)
-        - np.bincount(ends[inside, 0], minlength=count)
+        - np.bincount(a[inside], minlength=count)
         + np.bincount(corner[whole, 0], minlength=count)
     )
-    across = ends[~inside, 0] * count + ends[~inside, 1]
-    keys, which = np.unique(across, return_inverse=True)
-    two = ~whole & ((corner[:, 0] == corner[:, 1]) | (corner[:, 1] == corner[:, 2]))
-    shared = np.searchsorted(keys, corner[two, 0] * count + corner[two, 2])
+    a, b = a[~inside], b[~inside]
+    keys, which = np.unique(np.minimum(a, b) * count + np.maximum(a, b), return_inverse=True)
+    two = np.flatnonzero(~whole & like.any(axis=1))
+    shared = np.searchsorted(keys, corner[two].min(axis=1) * count + corner[two].max(axis=1))
     pairs = np.column_stack([keys // count, keys % count])
     edges_across = np.bincount(which.ravel(), minlength=len(keys))
     faces_across = np.bincount(shared, minlength=len(keys))
@@ -159,7 +161,7 @@ def through(level, inside, peak):
 
 
 def graph_within(level, inside):
-    """(k, k) csr of edge lengths among the points `inside`."""
+    """(k, k) csr of edge lengths among the points `inside`, both ways."""
     surface = level.surface
     number = np.full(len(surface.points), -1)
     number[inside] = np.arange(len(inside))
@@ -169,7 +171,8 @@ def graph_within(level, inside):
     if level.patch is not None:  # points of one patch are as good as one
         together = level.patch[surface.edges[kept]]
         lengths = np.where((together[:, 0] == together[:, 1]) & (together[:, 0] >= 0), 1e-9 * lengths, lengths)
-    return coo_matrix((lengths, (rows, columns)), shape=(len(inside),) * 2).tocsr()
+    both = (np.concatenate([rows, columns]), np.concatenate([columns, rows]))
+    return coo_matrix((np.concatenate([lengths, lengths]), both), shape=(len(inside),) * 2).tocsr()
 
 
 def _nearest(level, inside, graph, seeds):
@@ -180,7 +183,7 @@ def _nearest(level, inside, graph, seeds):
 
 def _distance(graph, seeds):
     """(distance, index of the nearest seed) along edges; points no seed reaches go to seed 0 at a large distance."""
-    gap, _, source = dijkstra(graph, directed=False, indices=seeds, min_only=True, return_predecessors=True)
+    gap, _, source = dijkstra(graph, indices=seeds, min_only=True, return_predecessors=True)
     place = np.zeros(graph.shape[0], dtype=np.int64)
     place[seeds] = np.arange(len(seeds))
     return np.where(np.isfinite(gap), gap, 1e6), np.where(source >= 0, place[np.maximum(source, 0)], 0)

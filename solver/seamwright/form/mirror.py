@@ -76,17 +76,23 @@ def planes(surface, most=1):
     rank = np.maximum(spread.misfit(normals) / tolerance, EVEN) + _dislike(normals)
     normals = normals[np.argsort(rank, kind="stable")]
     found = []
+
+    def rank(plane):
+        return max(plane.error / tolerance, EVEN) + _dislike(plane.normal)
+
     while len(found) < most:
         square = [normal for normal in normals if _square(normal, found)]
         likely = [plane for plane in _refined(spread, square, tolerance)
                   if plane.error <= tolerance and _square(plane.normal, found)]
-        for plane in sorted(likely, key=lambda plane: max(plane.error / tolerance, EVEN) + _dislike(plane.normal)):
-            plane.error = _error(spread, nearest, plane)
-            if plane.error <= tolerance:
-                found.append(_between_points(surface, plane))
-                break
-        else:
+        best = None
+        for plane in sorted(likely, key=rank):
+            if best is None or EVEN + _dislike(plane.normal) < rank(best):  # else it cannot be better
+                plane.error = _error(spread, nearest, plane)
+                if plane.error <= tolerance and (best is None or rank(plane) < rank(best)):
+                    best = plane
+        if best is None:
             break
+        found.append(_between_points(surface, best))
     return found
 
 

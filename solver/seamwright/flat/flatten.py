@@ -24,9 +24,10 @@ class Flattening:
     notes: list = field(default_factory=list)
 
 
-def flatten(surface):
+def flatten(surface, tolerance=1e-5):
     """Least symmetric Dirichlet energy over all flattenings of a disk (Smith, Schaefer 2015). Returns Flattening.
 
+    tolerance: share of the energy; a step that promises less is the last.
     Raises CoverError if the surface is no disk. Whether the flat boundary crosses itself is for `overlap` to say.
     """
     loop = disk_loop(surface)
@@ -34,7 +35,7 @@ def flatten(surface):
     flat, note = start(surface, rest, loop)
     if flat is None:
         raise CoverError(f"A piece of {len(rest.triangles)} triangles cannot be laid flat: {note}. Split it with a seam.")
-    done = relax(rest, flat, DIRICHLET)
+    done = relax(rest, flat, DIRICHLET, tolerance)
     notes = [note] if note else []
     if not done.converged:
         notes.append(f"the flattening was still improving after {done.iterations} steps")

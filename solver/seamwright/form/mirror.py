@@ -20,6 +20,10 @@ SHARE = 0.99
 """Share of the area that has to lie within it: a few stray points do no harm."""
 SPREAD, SOURCES = 4000, 250
 """Points spread over the surface, and how many of them are mirrored in a trial."""
+AXES = 6
+"""Axes that are always tried: of the coordinates, and of inertia."""
+FEW, KEPT = 50, 80
+"""Points that are mirrored first where there are many directions, and how many of these go on to the real trial."""
 ALIKE = 0.15
 """Moments of inertia nearer than this share are taken as equal: every direction between their axes is tried."""
 FAN, GLOBE = 60, 240
@@ -73,8 +77,11 @@ def planes(surface, most=1):
     nearest = Nearest(surface)
     tolerance = NEAR * spread.size
     normals = _directions(spread)
-    rank = np.maximum(spread.misfit(normals) / tolerance, EVEN) + _dislike(normals)
-    normals = normals[np.argsort(rank, kind="stable")]
+    if len(normals) > KEPT:  # the axes stay: of a ball's planes the level one would never be among the best
+        rough = np.maximum(spread.misfit(normals, FEW) / tolerance, EVEN) + _dislike(normals)
+        normals = normals[np.union1d(np.argsort(rough, kind="stable")[:KEPT], np.arange(AXES))]
+    fine = np.maximum(spread.misfit(normals, SOURCES) / tolerance, EVEN) + _dislike(normals)
+    normals = normals[np.argsort(fine, kind="stable")]
     found = []
 
     def rank(plane):
@@ -174,13 +181,14 @@ class _Spread:
         gap, at = self._tree.query(np.column_stack([points, self._weight * normals]))
         return gap, at
 
-    def misfit(self, normals):
-        """(k,) metres: mean distance of mirrored points to their match for planes through the middle, far ones cut off."""
-        gaps = np.empty(len(normals))
+    def misfit(self, normals, sources):
+        """(k,) metres: mean distance of so many mirrored points to their match for planes through the middle, far ones cut
+        off."""
+        gaps, some = np.empty(len(normals)), self._some[:sources]
         for k, normal in enumerate(normals):
             plane = Plane(self.middle, normal, np.inf)
-            image = plane.mirrored(self.points[self._some])
-            gap, at = self._match(image, plane.turned(self.normals[self._some]))
+            image = plane.mirrored(self.points[some])
+            gap, at = self._match(image, plane.turned(self.normals[some]))
             off = np.abs(np.einsum("kx,kx->k", image - self.points[at], self.normals[at]))
             gaps[k] = np.where(gap < 2 * self.size / np.sqrt(SPREAD), off, np.minimum(gap, 0.1 * self.size)).mean()
         return gaps

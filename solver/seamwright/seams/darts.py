@@ -3,12 +3,15 @@
 So two pieces become one with a seam that ends inside it, and where it ends is then for the flow to find (see `panels`).
 """
 
+from itertools import islice
+
 import numpy as np
 from scipy.sparse.csgraph import connected_components, dijkstra
 
 from ..errors import CoverError
 from ..flat import flatten, overlaps
-from .flow import flow, settle
+from .fields import redistance
+from .flow import flow, settle, slid
 from .network import cut_through
 from .panels import fused, panels
 from .topology import graph_within
@@ -17,9 +20,10 @@ BLUR = 0.4  # length over which u is evened out to tell how useful a stretch of 
 OPENED = 0.12  # share of half a ring of seam that is left out at first; the flow widens it
 LEAST = 12  # points on both sides of a seam under which it is too short to leave out part of it
 WORSE = 1.05  # times the score, above which a trial is not worth a flow
-TRIED = 4  # most trials that flow
-ENOUGH = 2  # of them that serve
+TRIED = 6  # most trials that flow
+ENOUGH = 2  # of them that serve, unless all of those lie over themselves
 STEPS = 8  # of their flow
+ROUGHLY = 1e-2  # share of its energy to which a piece is flattened to see whether it lies over itself
 
 
 def opened_up(level, found, thrift, energy="square", pieces=None):
@@ -29,26 +33,37 @@ def opened_up(level, found, thrift, energy="square", pieces=None):
         return 0 if pieces is None else abs(one.count - pieces), one.score
 
     while True:
-        use = level.diffusion(BLUR).solve(level.mass * np.abs(found.cost.u))
-        trials = [settle(level, found.cut, labels, thrift, energy, uncut=uncut)
-                  for labels, uncut in openings(level, found.cut, use) if panels(level.surface, labels, uncut).disk.all()]
-        trials = sorted((trial for trial in trials if trial.score < WORSE * found.score), key=lambda trial: trial.score)
-        better = []
-        for trial in trials[:TRIED]:
-            flowed = flow(level, trial.fields, thrift, energy, steps=STEPS, uncut=trial.cut.uncut, slides=False)
-            if rank(flowed) < rank(found):
-                better.append(flowed)
-            if len(better) == ENOUGH:
-                break
-        for trial in sorted(better, key=rank):
-            flowed = flow(level, trial.fields, thrift, energy, steps=STEPS, uncut=trial.cut.uncut)
-            ahead = [one for one in sorted((flowed, trial), key=rank) if rank(one) < rank(found)]
-            best = next((one for one in ahead if lies_flat(level, one.cut)), None)
-            if best is not None:
-                found = best
-                break
-        else:
+        ahead, onward = _ahead(level, found, rank, thrift, energy), None
+        while onward is None and (some := list(islice(ahead, ENOUGH))):
+            onward = _lengthened(level, found, sorted(some, key=rank), rank, thrift, energy)
+        if onward is None:
             return found
+        found = onward
+
+
+def _ahead(level, found, rank, thrift, energy):
+    """Yield flowed networks with a stretch of seam left out that rank before a Found, the most promising first."""
+    use = level.diffusion(BLUR).solve(level.mass * np.abs(found.cost.u))
+    trials = [settle(level, found.cut, labels, thrift, energy, uncut=uncut)
+              for labels, uncut in openings(level, found.cut, use) if panels(level.surface, labels, uncut).disk.all()]
+    trials = sorted((trial for trial in trials if trial.score < WORSE * found.score), key=lambda trial: trial.score)
+    for trial in trials[:TRIED]:
+        flowed = flow(level, trial.fields, thrift, energy, steps=STEPS, uncut=trial.cut.uncut, slides=False)
+        if rank(flowed) < rank(found):
+            yield flowed
+
+
+def _lengthened(level, found, trials, rank, thrift, energy):
+    """The first of the trials, the ends of its darts slid, that ranks before a Found and lies flat; None for none."""
+    for trial in trials:
+        either, cut = [trial], slid(level, trial.cut, thrift, energy)
+        if cut is not trial.cut:
+            fields = redistance(level, cut, len(cut.uncut))
+            either.append(flow(level, fields, thrift, energy, steps=STEPS, uncut=cut.uncut, slides=False))
+        for one in sorted(either, key=rank):
+            if rank(one) < rank(found) and lies_flat(level, one.cut):
+                return one
+    return None
 
 
 def lies_flat(level, cut):
@@ -58,7 +73,7 @@ def lies_flat(level, cut):
     for piece in np.unique(one[one == other]):
         part = network.piece_surface(piece)[0]
         try:
-            flat = flatten(part).flat
+            flat = flatten(part, ROUGHLY).flat
         except CoverError:
             return False
         if overlaps(flat, part.boundary_loops[0]):

@@ -61,15 +61,15 @@ def flow(level, fields, thrift, energy="square", steps=20, emphasis=None, uncut=
         end = descend(level, fields, thrift, energy, steps=steps, emphasis=emphasis, uncut=cut.uncut)
         cut, changed = in_order(level, end.cut)
         if sliding and len(cut.end.face):
-            cut, moved = slid(level, cut, thrift, energy, emphasis)
-            changed, sliding = changed or moved, False
+            still, cut = cut, slid(level, cut, thrift, energy, emphasis)
+            changed, sliding = changed or cut is not still, False
         if not changed:
             return Found(level, cut, end.cost, end.converged)
     return settle(level, cut, cut.labels, thrift, energy, end.converged, cut.uncut)
 
 
 def slid(level, cut, thrift, energy, emphasis=None):
-    """(Cut with the ends of darts moved on or back, whether any was).
+    """The Cut with the ends of darts moved on or back, itself if none was.
 
     From face to face the total has small steps, as the mesh does not resolve what happens around an end; the descent stops
     at them, so here an end is tried a little farther on and a little farther back, for as long as that gains.
@@ -91,7 +91,7 @@ def slid(level, cut, thrift, energy, emphasis=None):
                 break
         else:
             number, last = number + 1, 0.0
-    return cut, slides > 0
+    return cut
 
 
 def _ends(level, cut, number):

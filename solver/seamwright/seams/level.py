@@ -29,6 +29,7 @@ class Level:
         self.surface, self.symmetry = surface, symmetry
         self.patch = None if patch is None or patch.max() < 0 else patch
         self.edgewise = None if edgewise is None else in_planes(edgewise, surface)
+        self._diffusion = None, None  # length, Factor
         self.fixed = None  # (n,) label of points that keep theirs, -1 for others; or None
         if smoother is not None:
             self.smoother = smoother
@@ -152,9 +153,11 @@ class Level:
         return cotangent_laplacian(self.surface)
 
     def diffusion(self, length):
-        """Factor of M + length^2 L over all points."""
-        mass = csc_matrix((self.mass, (np.arange(len(self.mass)),) * 2), shape=self.laplacian.shape)
-        return Factor((mass + length**2 * self.laplacian).tocsc())
+        """Factor of M + length^2 L over all points; the last one is kept."""
+        if self._diffusion[0] != length:
+            mass = csc_matrix((self.mass, (np.arange(len(self.mass)),) * 2), shape=self.laplacian.shape)
+            self._diffusion = length, Factor((mass + length**2 * self.laplacian).tocsc())
+        return self._diffusion[1]
 
 
 def triangle_stiffness(corners):

@@ -7,7 +7,7 @@ from scipy.sparse import csr_matrix
 from scipy.sparse.csgraph import connected_components, dijkstra
 
 from .measure import open_points, total_area, vertex_areas, vertex_normals
-from .nearest import closest_on_triangles
+from .nearest import feet_on_planes
 from .surface import Surface
 
 CREASE = 1.0
@@ -43,8 +43,11 @@ class Coarse:
         row = np.repeat(np.arange(len(points)), many)
         at = (np.cumsum(around) - around)[self.owner[row]] + np.arange(len(row)) - first[row]
         chosen = triangles[corner[at] // 3]
-        share, off = closest_on_triangles(points[row], self.surface.points[chosen])
-        best = np.lexsort((off, row))[first]
+        share = np.maximum(feet_on_planes(points[row], self.surface.points[chosen])[0], 0)  # drawn in to the triangle
+        share /= share.sum(axis=1, keepdims=True)
+        off = np.linalg.norm(points[row] - np.einsum("kc,kcx->kx", share, self.surface.points[chosen]), axis=1)
+        best = np.flatnonzero(off == np.minimum.reduceat(off, first)[row])
+        best = best[np.diff(row[best], prepend=-1) > 0]
         ends = np.arange(0, share[best].size + 1, 3)
         return csr_matrix((share[best].ravel(), chosen[best].ravel(), ends), shape=(len(points), count))
 

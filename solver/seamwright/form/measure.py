@@ -6,18 +6,17 @@ import numpy as np
 def edge_vectors(surface):
     """(m, 3, 3) metres; row k of a triangle runs from corner k to corner k+1."""
     corners = surface.points[surface.triangles]
-    return np.roll(corners, -1, axis=1) - corners
+    return corners[:, [1, 2, 0]] - corners
 
 
 def area_vectors(surface):
     """(m, 3) square metres: the outward normal of each triangle, as long as its area."""
-    sides = edge_vectors(surface)
-    return 0.5 * np.cross(sides[:, 0], sides[:, 1])
+    return surface.area_vectors
 
 
 def areas(surface):
     """(m,) square metres."""
-    return np.linalg.norm(area_vectors(surface), axis=1)
+    return surface.areas
 
 
 def angles(surface):

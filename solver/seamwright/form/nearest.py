@@ -84,6 +84,15 @@ def _more_points(surface, step):
 
 def closest_on_triangles(points, corners):
     """(barycentric (k, 3), distance (k,)) of the point of each triangle (k, 3, 3) nearest to each of points (k, 3)."""
+    share, flat = feet_on_planes(points, corners)
+    out = np.flatnonzero(flat | (share < 0).any(axis=1))
+    share[out] = _closest_on_sides(points[out], corners[out])
+    return share, np.linalg.norm(points - np.einsum("kc,kcx->kx", share, corners), axis=1)
+
+
+def feet_on_planes(points, corners):
+    """(barycentric (k, 3) of the foot of each of points (k, 3) on the plane of each triangle (k, 3, 3), (k,) bool: triangles
+    too flat for that)."""
     a, b, c = corners[:, 0], corners[:, 1], corners[:, 2]
     ab, ac, ap = b - a, c - a, points - a
     bb, cc, bc = (np.einsum("kx,kx->k", *pair) for pair in ((ab, ab), (ac, ac), (ab, ac)))
@@ -92,10 +101,7 @@ def closest_on_triangles(points, corners):
     flat = area <= 1e-14 * bb * cc
     area = np.where(flat, 1.0, area)
     v, w = (cc * pb - bc * pc) / area, (bb * pc - bc * pb) / area
-    share = np.column_stack([1 - v - w, v, w])
-    out = np.flatnonzero(flat | (share < 0).any(axis=1))
-    share[out] = _closest_on_sides(points[out], corners[out])
-    return share, np.linalg.norm(points - np.einsum("kc,kcx->kx", share, corners), axis=1)
+    return np.column_stack([1 - v - w, v, w]), flat
 
 
 def _closest_on_sides(points, corners):

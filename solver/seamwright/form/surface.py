@@ -63,6 +63,17 @@ class Surface:
         return np.linalg.norm(self.points[self.edges[:, 1]] - self.points[self.edges[:, 0]], axis=1)
 
     @cached_property
+    def area_vectors(self):
+        """(m, 3) square metres: the outward normal of each triangle, as long as its area."""
+        a, b, c = (self.points[self.triangles[:, k]] for k in range(3))
+        return 0.5 * np.cross(b - a, c - b)
+
+    @cached_property
+    def areas(self):
+        """(m,) square metres."""
+        return np.linalg.norm(self.area_vectors, axis=1)
+
+    @cached_property
     def neighbours(self):
         """csr (n, n): 1 + the edge (as a float) from each point to each point beside it."""
         a, b = self.edges.T

@@ -12,7 +12,6 @@ from .starts import starts, tidied
 from .topology import through
 
 TRIALS = ((0, 7), (6, 3))  # on the first rung: steps of flow for every network, then how many of the best go on
-RACE = 3, 2  # on the next: steps for every network, then how many of the best go on
 MOST_PIECES = 40
 SPLIT_STEPS = 12  # of flow after a split
 STEPS = ((1000, 24), (3000, 12), (12000, 6))  # points up to which a level takes so many steps; a finer one takes
@@ -102,11 +101,6 @@ def seek(ladder, thrift, energy="square", pieces=None, progress=None, darts=True
         if rung or top:  # the first rung is done, unless it is the form itself
             begun = [(ladder.lift(found.fields, rung - 1) if rung else found.fields, found.cut.uncut) for found in pool]
             common = dict(thrift=thrift, energy=energy, emphasis=emphasis[rung])
-            if len(begun) > RACE[1]:
-                pool = [simplify(level, flow(level, fields, steps=RACE[0], uncut=uncut, **common), thrift, energy, pieces)
-                        for fields, uncut in begun]
-                pool = _best(pool, pieces)[: RACE[1]]
-                begun = [(found.fields, found.cut.uncut) for found in pool]
             pool = [flow(level, fields, steps=steps_on(level), uncut=uncut, **common) for fields, uncut in begun]
             if pieces is not None:  # the price of seams may dissolve what is wished: then as few steps as can be
                 pool += [flow(level, fields, steps=1, uncut=uncut, **common)

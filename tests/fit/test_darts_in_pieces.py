@@ -9,6 +9,7 @@ from seamwright.fit.judge import judge
 from seamwright.fit.measure import measure
 from seamwright.fit.resigned import resigned
 from seamwright.fit.tailored import Judges
+from seamwright.form.measure import angle_defects
 from seamwright.form.mirror import Plane
 from seamwright.form.surface import Surface
 from seamwright.seams.network import Network
@@ -110,3 +111,17 @@ def test_a_sharp_tip_does_not_spoil_the_rest_of_a_piece():
     assert after < before
     assert not kept.crossings
     assert (measure(points, faces, kept.flat, felt).stretch > -1).all()
+
+
+def test_a_short_dart_is_not_led_on_into_what_is_flat():
+    """A plane sheet with a cone near its edge, where darts of 0.7 m are the least: beyond the cone's foot the two sides of
+    one would lie on each other. Where the sheet is a cap instead, the dart goes on."""
+    points, faces = forms.disk(1.0, 20)
+    place = np.array([0.8, 0.0, 0.25])
+    cone = np.maximum(0.0, 0.25 - np.linalg.norm(points[:, :2] - place[:2], axis=1))
+    for height, led_on in ((cone, False), (cone - 0.1 * (points**2).sum(axis=1), True)):
+        part = Surface(np.column_stack([points[:, :2], height]), faces)
+        way, = darts._ways_from_edge(part, [place], np.ones(len(part.edges), dtype=bool), 0.7)
+        length = np.linalg.norm(np.diff(part.points[way], axis=0), axis=1).sum()
+        assert 0.7 < length < 1.0 if led_on else length < 0.5
+        assert np.abs(angle_defects(part)[way[-1]]) > darts.FLAT

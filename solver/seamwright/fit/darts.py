@@ -8,7 +8,7 @@ from scipy.sparse import coo_matrix
 from scipy.sparse.csgraph import dijkstra
 
 from ..errors import CoverError
-from ..form.measure import areas, open_points, sum_at_points
+from ..form.measure import angle_defects, areas, open_points, sum_at_points
 from ..seams.opened import edges_in
 from ..seams.twins import twin_pieces
 from .spare import with_images
@@ -18,6 +18,7 @@ MOST = 3  # darts a piece
 GAIN = 0.97  # share of the use that a dart must bring it down to
 SHORTEST = 0.025  # metres [common practice: what is shorter is eased in; a dart ends 10 mm or more before its point]
 SMALL_FORM = 0.1  # share of the form's size from which no dart counts as short
+FLAT = 1e-6  # radians of curvature at a point, under which the form is flat there and a dart that ends there does not open
 NARROWEST = 3  # points: a way to the edge of fewer makes no dart
 APART = 0.1  # share of the form's size: a place that is nearer to its mirror image gets one dart, not two
 
@@ -158,18 +159,22 @@ def _worst_place(part, each):
 
 def _ways_from_edge(part, places, allowed, least):
     """List of (q,): for each place (3,) the points of the shortest way along the allowed edges (e,) from the piece's edge to
-    the point nearest to it; where that is no `least` metres away from that edge, on to one that is. Empty without one."""
+    the point nearest to it; where that is no `least` metres away from that edge, on to one that is, unless the form is
+    flat there. Empty without one."""
     rim, ends = open_points(part), part.edges[allowed]
     inside = ~rim[ends].any(axis=1)
     every, inner = (_graph(len(rim), one, length) for one, length in
                     ((ends, part.edge_lengths[allowed]), (ends[inside], part.edge_lengths[allowed][inside])))
     gap, back, _ = dijkstra(every, directed=False, indices=np.flatnonzero(rim), min_only=True, return_predecessors=True)
     far, reached = np.isfinite(gap) & (gap >= least), np.isfinite(gap) & ~rim
+    flat = np.abs(angle_defects(part)) < FLAT
     ways = []
     for place in places if far.any() else ():
         point = np.where(reached, np.linalg.norm(part.points - place, axis=1), np.inf).argmin()
         on, before = dijkstra(inner, directed=False, indices=point, return_predecessors=True)
         tip = np.where(far, on, np.inf).argmin()
+        if flat[tip]:  # the two sides of a dart would lie on each other there
+            tip = point
         way = _followed(back, point)[::-1] + _followed(before, tip)[::-1][1:]
         ways.append(np.array(way if len(set(way)) == len(way) else _followed(back, tip)[::-1]))
     return ways or [np.zeros(0, dtype=np.int64)]

@@ -10,6 +10,7 @@ from scipy.sparse.csgraph import connected_components, dijkstra
 
 from ..errors import CoverError
 from ..flat import flatten, overlaps
+from .fields import redistance
 from .flow import flow, settle, slid
 from .network import cut_through
 from .panels import fused, panels
@@ -57,8 +58,8 @@ def _lengthened(level, found, trials, rank, thrift, energy):
     for trial in trials:
         either, cut = [trial], slid(level, trial.cut, thrift, energy)
         if cut is not trial.cut:
-            either.append(settle(level, cut, cut.labels, thrift, energy, uncut=cut.uncut))
-            either.append(flow(level, either[-1].fields, thrift, energy, steps=STEPS, uncut=cut.uncut, slides=False))
+            fields = redistance(level, cut, len(cut.uncut))
+            either.append(flow(level, fields, thrift, energy, steps=STEPS, uncut=cut.uncut, slides=False))
         for one in sorted(either, key=rank):
             if rank(one) < rank(found) and lies_flat(level, one.cut):
                 return one

@@ -16,7 +16,7 @@ MOST_PIECES = 40
 SPLIT_STEPS = 12  # of flow after a split
 STEPS = ((1000, 24), (3000, 12), (12000, 6))  # points up to which a level takes so many steps; a finer one takes
 LAST_STEPS = 1
-FLOWS = 4  # more of as many steps, as long as the seams are not at rest and the score falls
+FLOWS = 4  # more of as many steps, as long as the seams are not at rest and the score falls; on a fine level but one
 LOPSIDED = 0.95  # share of the score down to which seams may become cheaper by keeping but one plane of two
 TWINS = 0.98  # times the score with a left and a right piece: of a seam between them part can be left out alone
 DEAR = 1.05  # share of the score up to which seams may become dearer by running through tips
@@ -134,7 +134,7 @@ def _begun(level, cells, thrift, energy, pieces):
 
 def _rested(found, steps, **common):
     """The Found after more flow where it had not come to rest."""
-    for _ in range(FLOWS):
+    for _ in range(FLOWS if len(found.level.mass) <= COARSE else 1):
         if found.converged:
             break
         more = flow(found.level, found.fields, steps=steps, uncut=found.cut.uncut, **common)

@@ -5,7 +5,7 @@ A dart is sewn from some length on; a shorter one is left out, or made so long. 
 
 import numpy as np
 from scipy.sparse import coo_matrix
-from scipy.sparse.csgraph import dijkstra
+from scipy.sparse.csgraph import connected_components, dijkstra
 
 from ..errors import CoverError
 from ..form.measure import angle_defects, areas, open_points, sum_at_points
@@ -15,11 +15,12 @@ from .spare import with_images
 from .tailored import ENOUGH, Tailored
 
 MOST = 3  # darts a piece
-GAIN = 0.97  # share of the use that a dart must bring it down to
+GAIN = 0.9  # share of what a piece is beyond its limits that darts must bring it down to
 SHORTEST = 0.025  # metres [common practice: what is shorter is eased in; a dart ends 10 mm or more before its point]
 SMALL_FORM = 0.1  # share of the form's size from which no dart counts as short
 FLAT = 1e-6  # radians of curvature at a point, under which the form is flat there and a dart that ends there does not open
 NARROWEST = 3  # points: a way to the edge of fewer makes no dart
+SMALL = 0.1  # share of what a piece is beyond its limits, from which a stretch of it gets a dart of its own
 APART = 0.1  # share of the form's size: a place that is nearer to its mirror image gets one dart, not two
 
 
@@ -33,7 +34,8 @@ def darted(judges, met, planes=()):
     for _ in range(MOST):
         found = {}
         for piece, group in _groups(met, planes):
-            for wanted in (group, {piece: group[piece][:1]}):  # the one side alone where the other does not gain by it
+            # the one side alone, and one place alone, where the others do not gain by it
+            for wanted in (group, *({piece: places} for places in (group[piece], *([one] for one in group[piece])))):
                 trials = {one: _with_darts(judges, met, one, places) for one, places in wanted.items()}
                 if None not in trials.values():
                     found.update(trials)
@@ -111,7 +113,7 @@ def _groups(met, planes):
     for piece in beyond:
         if piece in had:
             continue
-        group = {piece: [_worst_place(network.piece_surface(piece)[0], judged[piece].each)]}
+        group = {piece: _worst_places(network.piece_surface(piece)[0], judged[piece].each)}
         for plane, twin in twins:
             for one, places in [(int(twin[one]), list(places)) for one, places in group.items() if twin[one] >= 0]:
                 theirs = group.setdefault(one, [])
@@ -128,7 +130,8 @@ def _with_darts(judges, met, piece, places):
     part, _, triangles = network.piece_surface(piece)
     edge_of = edges_in(network, part, triangles)
     ways = _ways_from_edge(part, places, network.allowed[edge_of], shortest(network.surface_area))
-    if any(len(way) < NARROWEST for way in ways):
+    ways = [way for way in ways if len(way) >= NARROWEST]
+    if not ways:
         return None
     edges = np.concatenate([edge_of[part.edge_index(np.column_stack([way[:-1], way[1:]]))] for way in ways])
     cut = network.with_seams(edges).part_surface(triangles)[0]
@@ -138,7 +141,13 @@ def _with_darts(judges, met, piece, places):
         one = judges.piece(cut)
     except CoverError:
         return None
-    return (edges, one) if one.utilisation < GAIN * old.utilisation and not one.crossings else None
+    gains = _beyond(part, one.each) < GAIN * _beyond(part, old.each)
+    return (edges, one) if gains and not one.crossings else None
+
+
+def _beyond(part, each):
+    """Square metres of a piece, weighted by what its triangles (t,) use beyond the limits."""
+    return float(areas(part) @ np.maximum(each - ENOUGH, 0))
 
 
 def _sewn_in(met, found):
@@ -149,12 +158,21 @@ def _sewn_in(met, found):
     return Tailored(met.network.with_seams(np.concatenate([edges for edges, _ in found.values()])), judged)
 
 
-def _worst_place(part, each):
-    """(3,) the inner point around which the triangles (t,) use most of the limits, by area."""
+def _worst_places(part, each):
+    """List of (3,): the inner points around which the triangles (t,) use most of the limits, one for every strained stretch
+    of the piece, the worst first."""
     area = areas(part)
     around = sum_at_points(part, np.repeat((area * each)[:, None], 3, axis=1))
-    mean = around / np.maximum(sum_at_points(part, np.repeat(area[:, None], 3, axis=1)), 1e-300)
-    return part.points[np.argmax(np.where(open_points(part), -1.0, mean))]
+    mean = np.where(open_points(part), 0.0, around / sum_at_points(part, np.repeat(area[:, None], 3, axis=1)))
+    mass = sum_at_points(part, np.repeat(area[:, None] / 3, 3, axis=1))
+    strained = mean > ENOUGH
+    within = strained[part.edges].all(axis=1)
+    graph = _graph(len(mean), part.edges[within], part.edge_lengths[within])
+    stretch = connected_components(graph, directed=False)[1]
+    beyond = np.bincount(stretch, mass * np.maximum(mean - ENOUGH, 0))
+    found = [np.argmax(np.where(stretch == one, mean, -1.0)) for one in np.argsort(-beyond, kind="stable")
+             if beyond[one] > SMALL * beyond.sum()]
+    return [part.points[one] for one in found] or [part.points[mean.argmax()]]
 
 
 def _ways_from_edge(part, places, allowed, least):

@@ -1,34 +1,34 @@
 """The cheapest network that fits the goods: weights per piece, so that each piece uses its limits fully and no more.
 
-One price for stretch cannot serve a whole form: a limb and a back need different ones. So every piece has its own weight on
-its distortion, raised while the piece asks too much of the goods and lowered while it asks little; pieces far beyond are
-split, neighbours whose union still fits are merged. All on coarse levels, by the foreseen use; the real flattening
-calibrates later (`judge`).
+It begins with what the seam stage finds. One price for stretch cannot serve a whole form: a limb and a back need different
+ones. So every piece has its own weight on its distortion, raised while the piece asks too much of the goods and lowered
+while it asks little: the multiplier of its limit, and a piece beyond it is split as soon as that pays under its weight.
+Neighbours whose union still fits are merged. All on a coarse level, by the foreseen use; the real flattening calibrates
+later (`judge`).
 """
 
 from dataclasses import dataclass, replace
 
 import numpy as np
 
-from ..seams.cut import cut_by_fields, recut
+from ..seams.cut import recut
 from ..seams.descend import descend
 from ..seams.energy import evaluate
-from ..seams.fields import from_labels, redistance
+from ..seams.fields import redistance
 from ..seams.merging import merges
-from ..seams.starts import starts, tidied
-from ..seams.topology import nearer, regions, through
-from .foresee import largest, stretch_weight
+from ..seams.seek import enriched, seek
+from ..seams.starts import tidied
+from ..seams.topology import nearer, through
+from .foresee import largest
 
+THRIFTS = (1.0, 0.4, 0.15)  # of the seam stage, where a piece that uses the limits everywhere has a distortion of its area
+ROUNDS = 6  # rounds before the networks are compared
 STEPS = 6  # flow steps in a round
 RESTS = (12, 6)  # flow steps after a lift, which leaves the seams as rough as the rung below, and after weighing anew
-HALVINGS = (2, 2, 4)  # rounds on the first rung, before each but the first of which the worse half of the starts is left out
-CELLS = (2, 3, 4, 6, 9)  # sizes of the cells among the starts
-TOO_MUCH = 3.0  # use of the limits at which a piece is split at once
-PATIENCE = 4  # rounds running that a piece may be beyond its limits before it is split
 ROOM = 0.97  # foreseen use under which a union may be merged
 OVER = 1.02  # foreseen use that counts as beyond
 MOST_PIECES = 40
-SMALLEST_SPLIT = 0.02  # share of the form's area under which a piece is not split
+PIECE = 0.2  # length of seam, on the levels' scale, that a piece more is worth
 HURRY = 1.5  # power of the use by which a weight changes in a round
 SWAY = (0.6, 1.8)  # bounds on one change of a weight
 LEARNT = (0.4, 3.0)  # bounds on the real use over the foreseen one
@@ -47,7 +47,6 @@ class State:
     length: float
     strictness: np.ndarray
     peaks: np.ndarray  # (K,) point of every region at which the most is foreseen
-    strained: int = 0  # rounds running in which some piece was beyond its limits
 
     @property
     def rank(self):
@@ -61,19 +60,20 @@ class Search:
     def __init__(self, ladder, reach):
         self.ladder, self.reach = ladder, reach
 
-    def begin(self):
-        """The States of the first rung, best first."""
-        level = self.ladder.levels[0]
-        weight = stretch_weight(self.reach)
-        strictness = np.ones(len(self.ladder.owners[0]))
-        pool = []
-        for labels in starts(level, CELLS):
-            cut = cut_by_fields(level.surface, from_labels(level, labels))
-            pool.append(self._state(0, cut, labels, np.full(len(labels), weight), strictness))
-        for turn, count in enumerate(HALVINGS):
-            pool = pool[: (len(pool) + 1) // 2] if turn else pool
-            pool = sorted((self.rounds(0, state, count) for state in pool), key=lambda state: state.rank)
-        return pool
+    def begin(self, rung):
+        """The States on a rung to go on from, best first: what the seam stage finds for several prices of seam, then weighed
+        until every piece uses its limits."""
+        pool = [self.rounds(rung, self.sought(rung, thrift), ROUNDS) for thrift in THRIFTS]
+        return sorted(pool, key=lambda state: state.rank)
+
+    def sought(self, rung, thrift):
+        """The State of the network that the seam stage finds on a rung."""
+        ladder = self.ladder.up_to(rung)
+        energy = (lambda u: (u / self.reach) ** 2, lambda u: 2 * u / self.reach**2)
+        found = enriched(ladder.levels[-1], seek(ladder, thrift, energy, darts=False), thrift, energy)
+        labels = found.cut.labels
+        weights = np.full(len(labels), 1 / (thrift * self.reach**2))
+        return self._state(rung, found.cut, labels, weights, np.ones(len(self.ladder.owners[rung])))
 
     def lifted(self, rung, state, rests=RESTS):
         """The State one rung up, after so many flow steps and weighing anew, time after time."""
@@ -96,28 +96,38 @@ class Search:
         use = self._use(rung, state.cut.labels, u, local[owner])[0]
         factor = np.clip(real / np.maximum(use, 1e-6), *LEARNT)[state.cut.labels]
         strictness = (local * np.exp(level.diffusion(BLUR).solve(level.mass * np.log(factor))))[owner]
-        state = self._state(rung, state.cut, state.cut.labels, state.weights[state.cut.labels], strictness, state.strained)
+        state = self._state(rung, state.cut, state.cut.labels, state.weights[state.cut.labels], strictness)
         state.weights = state.weights * np.clip(real**HURRY, *SWAY)
         return state
 
     def rounds(self, rung, state, count):
-        """Flow, weigh, split and merge for `count` rounds; the best State met."""
+        """Flow, merge, weigh and split for `count` rounds; the best State met."""
         best = None
         for turn in range(count):
-            if turn == 0 or turn < count - 2:  # what is split needs a round or two to settle
-                state = self.split(rung, state, self._overdone(rung, state)[:1])
+            if 0 < turn < count - 2:  # what is split needs a round or two to settle
+                state = self._split_if_paid(rung, state)
             end = self._flow(rung, state.fields, state)
             state = self._merge(rung, self._after(rung, state, end.cut))
             if best is None or state.rank < best.rank:
                 best = replace(state)
-            state.strained = state.strained + 1 if state.use.max() > OVER else 0
             state.weights = state.weights * np.clip(state.use**HURRY, *SWAY)
         return best
+
+    def _split_if_paid(self, rung, state):
+        """The State with a region split that is beyond its limits, where that brings down the total."""
+        beyond = [region for region in np.argsort(-state.use, kind="stable") if state.use[region] > OVER]
+        total = self._flow(rung, state.fields, state).cost.total if beyond else 0.0
+        for region in beyond:
+            trial = self.split(rung, state, [region])
+            end = self._flow(rung, trial.fields, trial)
+            if end.cost.total + PIECE * (len(trial.use) - len(state.use)) < total:
+                return self._after(rung, trial, end.cut)
+        return state
 
     def _after(self, rung, state, cut):
         """The State after a flow from `state` has ended in `cut`."""
         labels = tidied(self.ladder.levels[rung], cut.labels)
-        return self._state(rung, cut, labels, state.weights[cut.labels], state.strictness, state.strained)
+        return self._state(rung, cut, labels, state.weights[cut.labels], state.strictness)
 
     def _on(self, rung, values):
         """(N,) mean of values at the form's points over each of the level's points."""
@@ -140,7 +150,7 @@ class Search:
         order = np.lexsort((-asked, labels))
         return largest(level, labels, asked) / self.reach, order[np.unique(labels[order], return_index=True)[1]]
 
-    def _state(self, rung, cut, labels, point_weights, strictness, strained=0):
+    def _state(self, rung, cut, labels, point_weights, strictness):
         level = self.ladder.levels[rung]
         cut = recut(level.surface, cut, labels)
         count = int(labels.max()) + 1
@@ -152,14 +162,7 @@ class Search:
             for twins in level.symmetry.partners(labels, count):
                 weights = np.sqrt(weights * weights[twins])
                 use = np.maximum(use, use[twins])
-        return State(cut, redistance(level, cut, count), weights, use, cost.length, strictness, peaks, strained)
-
-    def _overdone(self, rung, state):
-        """Regions far beyond their limits, or beyond them for long, worst first."""
-        areas = regions(self.ladder.levels[rung], state.cut.labels).area
-        limit = TOO_MUCH if state.strained < PATIENCE else 1.15
-        beyond = np.flatnonzero((state.use > limit) & (areas > SMALLEST_SPLIT * areas.sum()))
-        return beyond[np.argsort(-state.use[beyond], kind="stable")]
+        return State(cut, redistance(level, cut, count), weights, use, cost.length, strictness, peaks)
 
     def split(self, rung, state, which, places=None):
         """The State with the regions `which` cut in two, as far as MOST_PIECES allows.
@@ -210,7 +213,7 @@ class Search:
                 cut = recut(level.surface, state.cut, trial)
                 cost = evaluate(level, cut, 1.0, "square", gradient=False)
                 if self._use(rung, trial, cost.u, state.strictness)[0][grown].max() <= ROOM:
-                    state = self._state(rung, cut, trial, state.weights[labels], state.strictness, state.strained)
+                    state = self._state(rung, cut, trial, state.weights[labels], state.strictness)
                     break
                 refused.add(trial.tobytes())
             else:

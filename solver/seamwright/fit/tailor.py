@@ -1,7 +1,7 @@
 """From the foreseen to the real: flatten the pieces, learn where the foresight erred, search again, drop spare seams.
 
-The learning happens on a coarse rung, where a flattening costs little; the form itself only confirms, and is corrected
-where it does not.
+A middle rung decides, as coarser ones strain where the form does not; the form itself only confirms, and is corrected where
+it does not.
 """
 
 import numpy as np
@@ -13,24 +13,23 @@ from .foresee import reach
 from .lessons import lobes, piece_of_region, spread, worst
 from .pairs import paired
 from .resigned import resigned
-from .search import MOST_PIECES, Search
+from .search import Search
 from .sewn import sewn, uneven
 from .sizes import excess
 from .spare import dropped, put_back, without_nearest
 from .tailored import ENOUGH, Judges, Tailored
 
-FINE_ENOUGH = 1200  # points of the rung on which the foresight learns: coarser ones strain where the form does not
+SEEKING = 1200  # points of the rung on which networks are sought: on coarser ones limbs are too angular
 DECIDING = 3000  # points of the rung on which the network is settled: on a finer one it fits as well, or nearly
-FINALISTS = 2  # networks that have learnt, of which spare seams are dropped
-NEARLY = 0.93  # a network that fits, up to MARGIN, and has a piece this near its limits is not worth another lesson
-DEAR = 1.5  # nor one whose rank is so many times that of the best one after its lessons
-FAR = 1.25  # nor is it worth a try on a finer rung where it still is so many times the best one's
-LESSONS = 3  # most flattenings of a network on a rung
-ROUNDS = 5  # rounds after each
+FINALISTS = 2  # networks that are settled
+SHORTER = 0.97  # share of the length of one that fits, from which another is worth that
 CONFIRMATIONS = 4  # most flattenings of a network on the rung that decides, with a lesson between
 LAST_CONFIRMATIONS = 3  # and of the form itself, where that is finer
+ROUNDS = 2  # rounds of the search after a lesson
+AIM = 0.97  # use of the limits that a lesson aims at: the next flattening differs by some hundredths
+BADLY = 1.1  # use from which a piece is split where lessons and darts did not do
 CARRIED = (3,)  # flow steps on rungs finer than the one that decides
-MARGIN = 1.03  # use under which a seam is dropped on the learning rung: what the form itself needs is put back
+MARGIN = 1.03  # use under which a seam is dropped on the rung that decides: what a finer form needs is put back
 MOST_SPLITS = 12  # of pieces that still lie over themselves at the end
 
 
@@ -50,36 +49,22 @@ class Tailor:
     def run(self, tell):
         """The cheapest Tailored found whose pieces fit, or the least strained one met. tell(share, words) as it goes."""
         top = len(self.ladder.levels) - 1
-        learning, deciding = self.rung_with(FINE_ENOUGH), self.rung_with(DECIDING)
+        seeking, deciding = self.rung_with(SEEKING), self.rung_with(DECIDING)
         tell(0.0, "trying seams")
-        pool = self.search.begin()
-        for rung in range(1, learning + 1):
-            pool = [self.search.lifted(rung, state) for state in pool]
-        tell(0.2, "fitting pieces")
-        schooled = []
-        for state in pool:
-            dear = DEAR * min((met.rank for _, met in schooled), default=np.inf)
-            schooled.append(self.schooled(learning, state, dear))
-        schooled = sorted(schooled, key=_rank)[:FINALISTS]
-        tell(0.4, "dropping spare seams")
-        finals = [(state, *self.dropped(met, MARGIN)) for state, met in schooled if met.rank <= FAR * schooled[0][1].rank]
-        tell(0.5, "refining seams")
+        pool = self.search.begin(seeking)
+        tell(0.3, "fitting pieces")
         best = None
-        for state, _, spare in sorted(finals, key=_rank):
-            for rung in range(learning + 1, deciding + 1):
+        for state in pool[:FINALISTS]:
+            for rung in range(seeking + 1, deciding + 1):
                 state = self.search.lifted(rung, state)
-            found = self.confirmed(deciding, state, spare, CONFIRMATIONS)
-            if deciding == top:  # with its darts the dearer one may be the one that fits
-                found = darted(self.judges, self.untangled(found[0]), self.planes), *found[1:]
-            best = found if best is None else min(best, found, key=_fits_first)
-            if best[0].fits:
-                break
+            if best is None or not best[0].fits or state.length < SHORTER * best[1].length:
+                found = self.settled(deciding, state)
+                best = min(best or found, found, key=_fits_first)
         met, state, spare = best
         if deciding < top:
-            spare = spare + self.dropped(met, halves=False)[1]
+            tell(0.7, "flattening pieces")
             for rung in range(deciding + 1, top + 1):
                 state = self.search.lifted(rung, state, CARRIED)
-            tell(0.8, "flattening pieces")
             met = self.confirmed(top, state, spare, LAST_CONFIRMATIONS)[0]
             met = darted(self.judges, self.untangled(met), self.planes)
         # what a coarser rung thought needed, the form itself may not
@@ -104,29 +89,24 @@ class Tailor:
             network = without_nearest(network, places)
         return self.judges.all(network)
 
-    def schooled(self, rung, state, dear):
-        """(State, Tailored) best met while the foresight learns from real flattening. What begins with a rank beyond `dear`
-        learns nothing."""
-        best, vain = None, 0
-        for lesson in range(LESSONS):
-            met = self.real(rung, state.cut)
-            better = best is None or met.rank < best[1].rank
-            best, vain = ((state, met), 0) if better else (best, vain + 1)
-            near = NEARLY < met.use <= MARGIN and not any(one.crossings for one in met.judged)
-            done = near or vain == 2 or len(met.judged) >= MOST_PIECES or best[1].rank > dear
-            if done or lesson == LESSONS - 1:
-                return best
-            state = self.taught(rung, state, met, ROUNDS)
+    def settled(self, rung, state):
+        """(Tailored, its State, the places left out) of a State after its lessons, without spare seams; on the form itself
+        with darts, as with them the dearer of two may be the one that fits."""
+        top = rung == len(self.ladder.levels) - 1
+        met, state, _ = self.confirmed(rung, state, [], CONFIRMATIONS)
+        met, spare = self.dropped(met, ENOUGH if top else MARGIN)
+        return darted(self.judges, self.untangled(met), self.planes) if top else met, state, spare
 
     def confirmed(self, rung, state, spare, most):
         """(Tailored, its State, the places left out), the best of at most so many, corrected while it does not fit."""
         best = None
         for turn in range(most):
             met, spare = self.with_needed(rung, state, spare)
-            best = (met, state, spare) if best is None else min(best, (met, state, spare), key=_fits_first)
-            if best[0].fits or turn == most - 1 or len(met.judged) >= MOST_PIECES:
+            best = min(best or (met, state, spare), (met, state, spare), key=_fits_first)
+            if best[0].fits or turn == most - 1:
                 return best
-            state = self.taught(rung, state, met, 2, insist=turn == most - 2)
+            lesson = self.parted if turn == most - 2 else self.taught  # as weights alone did not do it
+            state = self.search.rounds(rung, lesson(rung, state, met), ROUNDS)
 
     def with_needed(self, rung, state, spare):
         """(Tailored without the spare seams, what of them was spare indeed): where a piece does not fit for want of a seam
@@ -143,22 +123,29 @@ class Tailor:
                 return met, spare
             met, spare = trial, fewer
 
-    def taught(self, rung, state, met, rounds, insist=False):
-        """The State after what `met` teaches: weights by the real use; pieces that lie over themselves split there."""
+    def taught(self, rung, state, met):
+        """The State after what `met` teaches: weights by the real use of its pieces."""
         level = self.ladder.levels[rung]
         own = piece_of_region(level, state.cut.labels, met)
         use = np.array([one.utilisation for one in met.judged])
-        state = self.search.learnt(rung, state, use[own], spread(level, met))
-        if insist:  # weights alone did not do it: a seam through the worst place
-            state.peaks = worst(level, met)[own]
-            state = self.search.split(rung, state, np.flatnonzero(use[own] > ENOUGH))
-            return self.search.rounds(rung, state, rounds)
+        return self.search.learnt(rung, state, use[own] / AIM, spread(level, met))
+
+    def parted(self, rung, state, met):
+        """The State, taught, with what lies over itself in `met` split between its lobes; where nothing does, what is beyond
+        its limits by far through its worst place."""
+        level = self.ladder.levels[rung]
+        state = self.taught(rung, state, met)
+        own = piece_of_region(level, state.cut.labels, met)
         crossed = [region for region, piece in enumerate(own) if met.judged[piece].crossings]
         parts = [met.network.piece_surface(own[region])[0] for region in crossed]
         places = [part.points[lobes(part, met.judged[own[region]])] * self.ladder.factor
                   for part, region in zip(parts, crossed, strict=True)]
         state = self.search.split(rung, state, crossed, places)
-        return self.search.rounds(rung, state, rounds)
+        if not crossed:
+            state.peaks = worst(level, met)[own]
+            use = np.array([one.utilisation for one in met.judged])
+            state = self.search.split(rung, state, np.flatnonzero(use[own] > BADLY))
+        return state
 
     def untangled(self, met):
         """Tailored in which no piece lies over itself: what still does is split on the mesh, between the lobes."""
@@ -202,11 +189,6 @@ def finished(met, planes, goods, comfort, grain=None):
         return found
     other = Tailored(met.network, sewn(met.network, laid.judged, *wishes))
     return min(found, other, key=uneven)  # seams that go together come first
-
-
-def _rank(found):
-    """The rank of a (State, Tailored, ...)."""
-    return found[1].rank
 
 
 def _fits_first(found):

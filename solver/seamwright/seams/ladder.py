@@ -1,5 +1,7 @@
 """The ladder of levels from a few hundred points up to the form itself, and how fields climb it."""
 
+from copy import copy
+
 import numpy as np
 
 from ..form.coarsen import coarsen
@@ -49,6 +51,14 @@ class Ladder:
                                             None if patch is None else on_rung(surface, owner, patch),
                                             edgewise=None if along is None else sampled(steps, surface, fine, owner)))
                 self.owners.insert(0, owner)
+
+    def up_to(self, rung):
+        """The Ladder of the levels up to a rung, as if that were the form."""
+        found = copy(self)
+        first = np.unique(self.owners[rung], return_index=True)[1]
+        found.levels, found.carriers = self.levels[: rung + 1], self.carriers[:rung]
+        found.owners = [owner[first] for owner in self.owners[: rung + 1]]
+        return found
 
     def keep(self, number):
         """From now on networks keep but one of the planes."""

@@ -14,6 +14,7 @@ from .topology import through
 TRIALS = ((0, 7), (6, 3))  # on the first rung: steps of flow for every network, then how many of the best go on
 MOST_PIECES = 40
 SPLIT_STEPS = 12  # of flow after a split
+LEAST = 1.5  # length of seam, on the levels' scale, that distortion has to be worth before a split is tried
 STEPS = ((1000, 24), (3000, 12), (12000, 6))  # points up to which a level takes so many steps; a finer one takes
 LAST_STEPS = 1
 FLOWS = 4  # more of as many steps, as long as the seams are not at rest and the score falls; on a fine level but one
@@ -48,29 +49,29 @@ def simplify(level, found, thrift, energy="square", pieces=None):
 
 
 def enriched(level, found, thrift, energy="square", pieces=None):
-    """Split regions through the point of most stretch, one at a time, the best first, while that lowers the score (or while
-    there are fewer than the wished pieces). Returns the flowed Found."""
-    while True:
-        count = found.count
-        if count >= (pieces or MOST_PIECES):
-            return found
-        fields = [from_labels(level, labels) for labels in _splits(level, found)]
-        trials = [flow(level, one, thrift, energy, steps=SPLIT_STEPS) for one in fields]
-        if pieces is None:
-            trials = [simplify(level, trial, thrift, energy) for trial in trials]
-            trials = [trial for trial in trials if trial.score < found.score]
-        else:
-            trials = [trial for trial in trials if count < trial.count <= pieces]
-        if not trials:
-            return found
-        found = min(trials, key=lambda trial: trial.score)
+    """Split regions through the point of most stretch, one at a time, that with most distortion first, while that lowers the
+    score (or while there are fewer than the wished pieces, then the best of them). Returns the flowed Found."""
+    while found.count < (pieces or MOST_PIECES):
+        better = []
+        for labels in _splits(level, found, 0.0 if pieces else LEAST * thrift):
+            trial = flow(level, from_labels(level, labels), thrift, energy, steps=SPLIT_STEPS)
+            if pieces is None:
+                trial = simplify(level, trial, thrift, energy)
+            if found.count < trial.count <= pieces if pieces else trial.score < found.score:
+                better.append(trial)
+            if better and pieces is None:
+                break
+        if not better:
+            break
+        found = min(better, key=lambda trial: trial.score)
+    return found
 
 
-def _splits(level, found):
-    """Labels (n,) after the split of one region, for each, the one with most distortion first."""
+def _splits(level, found, least):
+    """Labels (n,) after the split of one region, for each of more than the least distortion, the one with most first."""
     labels, u = found.cut.labels, np.abs(found.cost.u)
     met = {labels.tobytes()}
-    for region in np.argsort(-np.bincount(labels, level.mass * u * u), kind="stable"):
+    for region in (one for one in np.argsort(-found.cost.each, kind="stable") if found.cost.each[one] > least):
         inside = np.flatnonzero(labels == region)
         half = through(level, inside, inside[u[inside].argmax()])
         trial = labels.copy()

@@ -68,7 +68,7 @@ def test_goods_that_take_more_need_less_seam():
 def test_what_is_learnt_does_not_compound():
     ladder = Ladder(Surface(*FORMS["egg"]))
     search = Search(ladder, reach(goods.get("felt"), 0.0))
-    state = search.begin()[0]
+    state = search.begin(0)[0]
     rung = 0
     real = np.linspace(0.8, 1.4, len(state.use))
     local = 1 + 0.5 * np.sin(3 * ladder.levels[rung].surface.points[:, 0])

@@ -3,7 +3,7 @@
 import numpy as np
 
 from ..errors import CoverError
-from .spare import with_images
+from .spare import halves, with_images
 from .tailored import Tailored
 
 
@@ -24,7 +24,7 @@ def joined(tailor, met, pieces):
 
 def without(tailor, met, chain):
     """Tailored without a chain, or where that leaves no disk without part of it (a dart is then left)."""
-    for some in ([chain], _halves(chain)):
+    for some in ([chain], halves(chain)):
         trials = [_trial(tailor, met, with_images(met.network, one, tailor.planes)) for one in some]
         trials = [trial for trial in trials if trial is not None]
         if trials:
@@ -54,13 +54,3 @@ def _trial(tailor, met, group):
             return None
     trial = Tailored(network, judged)
     return None if any(one.crossings for one in judged) else trial
-
-
-def _halves(chain):
-    """The halves of a chain, each from its end inward; of a closed one, parted at two places and at two between them."""
-    half = len(chain) // 2
-    if len(chain) < 8:
-        return []
-    if chain[0] != chain[-1]:
-        return [chain[: half + 1], chain[half:]]
-    return [np.roll(chain[:-1], -turn)[: half + 1] for turn in (0, half // 2, half, half + half // 2)]

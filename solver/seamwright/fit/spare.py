@@ -12,7 +12,7 @@ LOPSIDED = 0.05  # share of all seam from which one of two that are mirror image
 NEAR = 0.15  # a chain on another rung is the same one when its middle is this near, as a share of the form's size
 
 
-def dropped(judges, met, planes, reach, limit=ENOUGH, halves=True):
+def dropped(judges, met, planes, reach, limit=ENOUGH, parts=True):
     """(Tailored, what was left out): seam chains dropped, longest first, while the piece they leave is a disk, within
     the limit and not over itself; then halves of chains, so that darts are left. On a symmetric form a chain goes
     together with its mirror image. What was left out: for each the places (3, 3) of its begin, middle and end."""
@@ -20,7 +20,7 @@ def dropped(judges, met, planes, reach, limit=ENOUGH, halves=True):
     most = HOPELESS / _typical(met, reach) * reach  # log scale above which no piece is worth a try
     while True:
         chains = sorted(met.network.chains, key=lambda chain: -_length(met.network, chain))
-        for chain in chains + [half for whole in chains if halves for half in _halves(whole)]:
+        for chain in chains + [half for whole in chains if parts for half in halves(whole)]:
             key, whole = _key(chain), refused.get(_key(_whole(chain, chains)), 0.0)
             if key in refused or whole > HOPELESS:
                 continue
@@ -87,10 +87,15 @@ def _without(judges, met, group, limit, most):
     return Tailored(trial, judged), worst
 
 
-def _halves(chain):
-    """The two halves of a chain, each from its end inward, if it is long enough to leave a dart."""
-    middle = len(chain) // 2
-    return [chain[: middle + 1], chain[middle:]] if len(chain) >= 8 and chain[0] != chain[-1] else []
+def halves(chain):
+    """The halves of a chain, each from its end inward, so that darts are left; of a closed one, parted at two places and at
+    two between them. None of a short one."""
+    half = len(chain) // 2
+    if len(chain) < 8:
+        return []
+    if chain[0] != chain[-1]:
+        return [chain[: half + 1], chain[half:]]
+    return [np.roll(chain[:-1], -turn)[: half + 1] for turn in (0, half // 2, half, half + half // 2)]
 
 
 def _whole(half, chains):

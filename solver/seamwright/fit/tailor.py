@@ -25,7 +25,8 @@ FINALISTS = 2  # networks that are settled
 SHORTER = 0.97  # share of the length of one that fits, from which another is worth that
 CONFIRMATIONS = 4  # most flattenings of a network on the rung that decides, with a lesson between
 LAST_CONFIRMATIONS = 3  # and of the form itself, where that is finer
-ROUNDS = 2  # rounds of the search after a lesson
+MORE = 2  # times that a network that does not fit is split and settled again
+ROUNDS = 4  # rounds of the search after a lesson
 AIM = 0.97  # use of the limits that a lesson aims at: the next flattening differs by some hundredths
 BADLY = 1.1  # use from which a piece is split where lessons and darts did not do
 CARRIED = (3,)  # flow steps on rungs finer than the one that decides
@@ -60,6 +61,11 @@ class Tailor:
             if best is None or not best[0].fits or state.length < SHORTER * best[1].length:
                 found = self.settled(deciding, state)
                 best = min(best or found, found, key=_fits_first)
+        for _ in range(MORE):
+            if best[0].fits:
+                break
+            found = self.settled(deciding, self.parted(deciding, best[1], best[0]))
+            best = min(best, found, key=_fits_first)
         met, state, spare = best
         if deciding < top:
             tell(0.7, "flattening pieces")
@@ -68,16 +74,16 @@ class Tailor:
             met = self.confirmed(top, state, spare, LAST_CONFIRMATIONS)[0]
             met = darted(self.judges, self.untangled(met), self.planes)
         # what a coarser rung thought needed, the form itself may not
-        return met if deciding < top else self.dropped(met, halves=False)[0]
+        return met if deciding < top else self.dropped(met, parts=False)[0]
 
     def rung_with(self, points):
         """The first rung of so many points, or the last."""
         levels = self.ladder.levels
         return next((rung for rung, level in enumerate(levels) if len(level.free) >= points), len(levels) - 1)
 
-    def dropped(self, met, limit=ENOUGH, halves=True):
+    def dropped(self, met, limit=ENOUGH, parts=True):
         """(Tailored, places of what was left out): see `spare.dropped`."""
-        return dropped(self.judges, met, self.planes, self.search.reach, limit, halves)
+        return dropped(self.judges, met, self.planes, self.search.reach, limit, parts)
 
     def real(self, rung, cut, spare=()):
         """The Tailored of a cut, every piece flattened for the goods; spare: places (3, 3) of stretches to leave out."""

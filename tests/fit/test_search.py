@@ -33,7 +33,7 @@ def metres(pattern):
 
 
 @pytest.mark.parametrize(("form", "name", "comfort"), [
-    ("sphere", "felt", 0.0), ("torus", "canvas", 0.0), ("egg", "jersey", 0.5)
+    ("sphere", "felt", 0.0), ("sphere", "canvas", 0.0), ("torus", "felt", 0.0), ("egg", "jersey", 0.5)
 ])
 def test_no_seam_can_go_without_straining_a_piece(form, name, comfort):
     pattern = covered(form, name, comfort)

@@ -27,8 +27,9 @@ class Tailored:
 
     @property
     def fits(self):
-        """True when no piece is beyond its limits or over itself."""
-        return self.use <= ENOUGH and not any(one.crossings for one in self.judged)
+        """True when no piece is beyond its limits or over itself, and no seam where there must be none."""
+        barred = self.network.seam & ~self.network.allowed
+        return self.use <= ENOUGH and not any(one.crossings for one in self.judged) and not barred.any()
 
     @property
     def rank(self):
